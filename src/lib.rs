@@ -1,0 +1,10 @@
+//! gapwright: the magnetic field of round cores and coils, with a guaranteed interval of the inductance.
+//!
+//! `input` → `model` → `geometry` → `mesh` → `adapt` (`fem`, `solve`, `bound`) → `results` → `report`.
+
+pub mod geometry;
+pub mod mesh;
+pub mod model;
+pub mod results;
+pub mod solve;
+pub mod units;

@@ -1,0 +1,34 @@
+//! `Outline` → [`Mesh`] by spade and our own size field; newest-vertex bisection. Knows no material.
+
+use crate::geometry::{Cap, RegionId};
+use crate::model::Point;
+
+/// Which chart a triangle lives in.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Chart {
+    /// The real half plane inside the cap polygon; triangles counter-clockwise.
+    Inside,
+    /// The mapped exterior, sector of that facet; triangles clockwise, y = x/g(x)², infinity at the cap's centre.
+    Cap(u8),
+}
+
+/// Conforming triangulation of the inside and of the mapped exterior, glued along the cap polygon.
+///
+/// Local edges of a triangle [a, b, c] are (a,b), (b,c), (c,a); local edge 0 is the refinement edge.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Mesh {
+    /// Coordinates in the vertex's own chart [m].
+    pub points: Vec<Point>,
+    /// On the axis (poles and infinity included): ψ = 0 there.
+    pub on_axis: Vec<bool>,
+    pub triangles: Vec<[u32; 3]>,
+    pub triangle_edges: Vec<[u32; 3]>,
+    pub edges: Vec<[u32; 2]>,
+    pub regions: Vec<RegionId>,
+    pub charts: Vec<Chart>,
+    /// Ends of the edge whose midpoint a vertex is; `[u32::MAX; 2]` in the first mesh.
+    pub parents: Vec<[u32; 2]>,
+    /// Number of vertices after each round, first mesh included.
+    pub level_sizes: Vec<usize>,
+    pub cap: Cap,
+}
