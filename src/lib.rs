@@ -5,6 +5,7 @@
 pub mod geometry;
 pub mod mesh;
 pub mod model;
+pub mod report;
 pub mod results;
 pub mod solve;
 pub mod units;

@@ -1,7 +1,8 @@
 //! What `check` says: the sheet's dimensions, turns and materials read back, and the hand sum's figures.
 
-use super::numbers::{clip, engineering, millimeters, percent, wrap};
+use super::numbers::{clip, millimeters, percent, wrap};
 use crate::model::{Across, Law, Model, Winding};
+use crate::units::engineering;
 use crate::units::{CubicMeter, Henry, Meter, PerHenry, SquareMeter};
 
 /// Effective parameters of the closed core (IEC 60205).
@@ -45,7 +46,9 @@ pub fn check_screen(model: &Model, understood: &Understood) -> String {
     for line in wrap(&model.title, WIDTH) {
         text.push_str(&format!("{line}\n"));
     }
-    text.push_str("  Read and found in order. Lengths in mm, r from the axis, z from the middle.\n");
+    text.push_str(
+        "  Read and found in order. Lengths in mm, r from the axis, z from the middle.\n",
+    );
     materials(&mut text, model);
     core(&mut text, model);
     gaps(&mut text, model, understood);
@@ -79,7 +82,9 @@ fn materials(text: &mut String, model: &Model) {
     text.push_str("\nMaterials\n");
     for material in &model.materials {
         let law = match &material.law {
-            Law::Constant { permeability } => format!("relative permeability {permeability}, constant"),
+            Law::Constant { permeability } => {
+                format!("relative permeability {permeability}, constant")
+            }
             Law::Table(table) => format!(
                 "B-H table of {} points up to {} at {}",
                 table.b.len(),
@@ -142,7 +147,7 @@ fn gaps(text: &mut String, model: &Model, understood: &Understood) {
         line(text, &gap.name, &format!("{} {across}{center}", millimeters(gap.length)));
     }
     for (name, reluctance) in &understood.gaps {
-        let plain = engineering(*reluctance, "/H", 4);
+        let plain = engineering(*reluctance, "1/H", 4);
         line(text, &format!("l/(µ0 A) of {}", clip(name, 11)), &plain);
     }
 }
@@ -154,8 +159,11 @@ fn windings(text: &mut String, model: &Model) {
         for section in &winding.sections {
             let [inner, outer] = section.radii.map(millimeters);
             let [bottom, top] = section.heights.map(millimeters);
-            let turns =
-                if winding.sections.len() > 1 { format!("{} turns, ", section.turns) } else { String::new() };
+            let turns = if winding.sections.len() > 1 {
+                format!("{} turns, ", section.turns)
+            } else {
+                String::new()
+            };
             line(text, "", &format!("{turns}r {inner} to {outer}, z {bottom} to {top}"));
         }
     }
@@ -179,11 +187,13 @@ fn parts(text: &mut String, model: &Model) {
     for part in &model.parts {
         let span = |of: &dyn Fn(&crate::model::Corner) -> f64| {
             let values = part.outline.iter().map(of);
-            let (low, high) = values.fold((f64::MAX, f64::MIN), |(low, high), v| (low.min(v), high.max(v)));
+            let (low, high) =
+                values.fold((f64::MAX, f64::MIN), |(low, high), v| (low.min(v), high.max(v)));
             format!("{} to {}", millimeters(low), millimeters(high))
         };
         let (r, z) = (span(&|c| c.at.r), span(&|c| c.at.z));
-        let material = model.materials.get(usize::from(part.material.0)).map_or("", |m| m.name.as_str());
+        let material =
+            model.materials.get(usize::from(part.material.0)).map_or("", |m| m.name.as_str());
         let n = part.outline.len();
         line(text, &part.name, &format!("{n} corners, r {r}, z {z}, of {material}"));
     }
@@ -231,7 +241,13 @@ mod tests {
 
     fn understood() -> Understood {
         Understood {
-            effective: Some(EffectiveCore { area: 92e-6, length: 37e-3, volume: 3.4e-6, c1: 400.0, c2: 4.4e6 }),
+            effective: Some(EffectiveCore {
+                area: 92e-6,
+                length: 37e-3,
+                volume: 3.4e-6,
+                c1: 400.0,
+                c2: 4.4e6,
+            }),
             ungapped_inductance_factor: Some(6.2e-6),
             gaps: vec![("post gap".to_string(), 2.947e6)],
             hand_inductance_factor: Some(380e-9),
@@ -241,7 +257,41 @@ mod tests {
 
     #[test]
     fn the_sheet_is_read_back() {
-        expect![[""]].assert_eq(&check_screen(&fixture::model(), &understood()));
+        expect![[r#"
+            Buoy charger choke
+              Read and found in order. Lengths in mm, r from the axis, z from the middle.
+
+            Materials
+              soft_ferrite            relative permeability 2000, constant
+
+            Core
+              post                    Ø 11.5, hole Ø 5.4
+              wall                    Ø 21.2 to Ø 25.5
+              end plates              Ø 25.5, 2.55 thick
+              window                  height 11
+              whole                   height 16.1
+
+            Gaps
+              post gap                0.3 ground out of the post
+              l/(µ0 A) of post gap    2.947 1/µH
+
+            Windings
+              main                    42 turns at 1.80 A
+                                      r 6.6 to 10.2, z −4.9 to 4.9
+
+            By hand
+              A_e                     92.00 mm²
+              l_e                     37.00 mm
+              V_e                     3400.0 mm³
+              C1                      0.4000 /mm
+              C2                      4.4000e-3 /mm³
+              A_L without any gap     6.200 µH
+              A_L of the hand sum     380.0 nH
+
+            Asked for
+              interval                0.1 % wide at most
+        "#]]
+        .assert_eq(&check_screen(&fixture::model(), &understood()));
     }
 
     #[test]
@@ -251,13 +301,17 @@ mod tests {
         model.gaps.clear();
         model.materials.clear();
         let text = check_screen(&model, &Understood::default());
-        assert!(!text.contains("By hand") && !text.contains("Core") && text.contains("42 turns"), "{text}");
+        assert!(
+            !text.contains("By hand") && !text.contains("Core") && text.contains("42 turns"),
+            "{text}"
+        );
     }
 
     #[test]
     fn long_names_leave_the_columns_in_place() {
         let mut model = fixture::model();
-        model.windings[0].name = "a winding with a very long name indeed, longer than a column".to_string();
+        model.windings[0].name =
+            "a winding with a very long name indeed, longer than a column".to_string();
         for line in check_screen(&model, &understood()).lines() {
             assert!(line.chars().count() <= 80, "{line}");
         }

@@ -5,7 +5,8 @@ use std::fmt::Write;
 
 /// One line a probe point: name, place [m], B [T], H [A/m], ψ [Wb/rad].
 pub fn probes(probes: &[ProbeResult]) -> String {
-    let mut text = "probe,r [m],z [m],B_r [T],B_z [T],H_r [A/m],H_z [A/m],psi [Wb/rad]\n".to_string();
+    let mut text =
+        "probe,r [m],z [m],B_r [T],B_z [T],H_r [A/m],H_z [A/m],psi [Wb/rad]\n".to_string();
     for probe in probes {
         let name = field(&probe.name);
         for p in &probe.points {
@@ -17,10 +18,11 @@ pub fn probes(probes: &[ProbeResult]) -> String {
 
 /// One line a round: counts, and the ends of the quantity that `interval` speaks of (`quantity` names it).
 pub fn rounds(rounds: &[Round], quantity: &str) -> String {
-    let mut text =
-        format!("round,unknowns,triangles,Newton steps,CG iterations,{},{}\n", field(&format!("{quantity} low")), {
-            field(&format!("{quantity} high"))
-        });
+    let mut text = format!(
+        "round,unknowns,triangles,Newton steps,CG iterations,{},{}\n",
+        field(&format!("{quantity} low")),
+        { field(&format!("{quantity} high")) }
+    );
     for (i, round) in rounds.iter().enumerate() {
         let counts = format!(
             "{},{},{},{},{}",
@@ -46,7 +48,11 @@ fn row(text: &mut String, head: &str, values: &[f64]) {
 
 /// A CSV field, quoted where RFC 4180 wants it.
 fn field(text: &str) -> String {
-    if text.contains([',', '"', '\n', '\r']) { format!("\"{}\"", text.replace('"', "\"\"")) } else { text.to_string() }
+    if text.contains([',', '"', '\n', '\r']) {
+        format!("\"{}\"", text.replace('"', "\"\""))
+    } else {
+        text.to_string()
+    }
 }
 
 #[cfg(test)]

@@ -4,11 +4,12 @@ use super::vtk::FieldCells;
 use crate::geometry::{Cap, Leg, Outline, Region, RegionId, RegionKind};
 use crate::mesh::{Chart, Mesh};
 use crate::model::{
-    Accuracy, Across, Core, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Point, PotWall, Section, Winding,
+    Accuracy, Across, Core, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Point,
+    PotWall, Section, Winding,
 };
 use crate::results::{
-    GapResult, Guaranteed, HotSpot, LedgerRow, PartResult, ProbePoint, ProbeResult, RequirementResult, Results, Round,
-    Verdict, WindingResult,
+    GapResult, Guaranteed, HotSpot, LedgerRow, PartResult, ProbePoint, ProbeResult,
+    RequirementResult, Results, Round, Verdict, WindingResult,
 };
 use crate::solve::Solution;
 
@@ -32,11 +33,19 @@ pub(crate) fn results() -> Results {
         title: "Buoy charger choke".to_string(),
         n_unknowns: 2852,
         n_triangles: 1500,
-        rounds: vec![round(540, 680e-6, 720e-6), round(1100, 699e-6, 702e-6), round(2852, 700.3e-6, 700.95e-6)],
+        rounds: vec![
+            round(540, 680e-6, 720e-6),
+            round(1100, 699e-6, 702e-6),
+            round(2852, 700.3e-6, 700.95e-6),
+        ],
         wanted: 1e-3,
         reached: true,
         inductance: Some(Guaranteed { value: 700.616e-6, low: 700.301e-6, high: 700.949e-6 }),
-        inductance_factor: Some(Guaranteed { value: 397.175e-9, low: 396.997e-9, high: 397.365e-9 }),
+        inductance_factor: Some(Guaranteed {
+            value: 397.175e-9,
+            low: 396.997e-9,
+            high: 397.365e-9,
+        }),
         incremental_inductance: Some(700.616e-6),
         coenergy: Guaranteed { value: 1.135e-3, low: 1.1345e-3, high: 1.1355e-3 },
         energy: 1.135e-3,
@@ -68,7 +77,12 @@ pub(crate) fn results() -> Results {
         hot_spots: vec![
             HotSpot { part: "post".to_string(), r: 5.6e-3, z: 5.6e-3, flux_density: 0.512 },
             HotSpot { part: "post".to_string(), r: 5.6e-3, z: -5.6e-3, flux_density: 0.511 },
-            HotSpot { part: "lower plate".to_string(), r: 10.5e-3, z: -5.7e-3, flux_density: 0.344 },
+            HotSpot {
+                part: "lower plate".to_string(),
+                r: 10.5e-3,
+                z: -5.7e-3,
+                flux_density: 0.344,
+            },
         ],
         parts: vec![PartResult {
             name: "post".to_string(),
@@ -108,7 +122,10 @@ pub(crate) fn results() -> Results {
             inductance: 700.6e-6,
             met: true,
         }],
-        notes: vec!["the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an average".to_string()],
+        notes: vec![
+            "the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an average"
+                .to_string(),
+        ],
     }
 }
 
@@ -134,10 +151,19 @@ pub(crate) fn model() -> Model {
             corner_radius: 0.0,
             joint: 0.0,
         }),
-        gaps: vec![Gap { name: "post gap".to_string(), across: Across::Post, length: 0.3e-3, center: 0.0 }],
+        gaps: vec![Gap {
+            name: "post gap".to_string(),
+            across: Across::Post,
+            length: 0.3e-3,
+            center: 0.0,
+        }],
         windings: vec![Winding {
             name: "main".to_string(),
-            sections: vec![Section { turns: 42.0, radii: [6.6e-3, 10.2e-3], heights: [-4.9e-3, 4.9e-3] }],
+            sections: vec![Section {
+                turns: 42.0,
+                radii: [6.6e-3, 10.2e-3],
+                heights: [-4.9e-3, 4.9e-3],
+            }],
             current: 1.8,
             ripple: 0.0,
         }],
@@ -174,13 +200,30 @@ pub(crate) fn outline() -> Outline {
         regions: vec![
             region("outside", RegionKind::Outside, false, vec![]),
             region("post", RegionKind::Leg(Leg::Post), true, post),
-            region("wall", RegionKind::Leg(Leg::Wall), true, vec![rectangle([10.6, 12.75], [-5.5, 5.5])]),
-            region("upper plate", RegionKind::Leg(Leg::UpperPlate), true, vec![rectangle([2.7, 12.75], [5.5, 8.05])]),
-            region("lower plate", RegionKind::Leg(Leg::LowerPlate), true, vec![rectangle([2.7, 12.75], [-8.05, -5.5])]),
-            region("post gap", RegionKind::Gap { gap: 0, leg: Leg::Post }, false, vec![rectangle(
-                [2.7, 5.75],
-                [-0.15, 0.15],
-            )]),
+            region(
+                "wall",
+                RegionKind::Leg(Leg::Wall),
+                true,
+                vec![rectangle([10.6, 12.75], [-5.5, 5.5])],
+            ),
+            region(
+                "upper plate",
+                RegionKind::Leg(Leg::UpperPlate),
+                true,
+                vec![rectangle([2.7, 12.75], [5.5, 8.05])],
+            ),
+            region(
+                "lower plate",
+                RegionKind::Leg(Leg::LowerPlate),
+                true,
+                vec![rectangle([2.7, 12.75], [-8.05, -5.5])],
+            ),
+            region(
+                "post gap",
+                RegionKind::Gap { gap: 0, leg: Leg::Post },
+                false,
+                vec![rectangle([2.7, 5.75], [-0.15, 0.15])],
+            ),
             region("main", winding, false, vec![rectangle([6.6, 10.2], [-4.9, 4.9])]),
         ],
         cap: Cap { center_z: 0.0, radius: 19e-3, n_facets: 8 },
@@ -237,7 +280,8 @@ pub(crate) fn field(n: usize) -> Field {
         let [p, q] = [points[a as usize], points[b as usize]];
         Point { r: 0.5 * (p.r + q.r), z: 0.5 * (p.z + q.z) }
     };
-    let bubble = |&[a, b]: &[u32; 2]| psi(middle(a, b)) - 0.5 * (vertex[a as usize] + vertex[b as usize]);
+    let bubble =
+        |&[a, b]: &[u32; 2]| psi(middle(a, b)) - 0.5 * (vertex[a as usize] + vertex[b as usize]);
     let solution = Solution { edge: edges.iter().map(bubble).collect(), vertex: vertex.clone() };
     let norm = |p: Point| flux_density(p)[0].hypot(flux_density(p)[1]);
     let b_corner = triangles.iter().map(|t| t.map(|v| norm(points[v as usize]))).collect();

@@ -17,7 +17,11 @@ pub fn result_json(results: &Results, times: Option<&StageTimes>) -> String {
 
 /// The JSON Schema of `result.json` (draft 2020-12).
 pub fn result_schema() -> serde_json::Value {
-    SchemaSettings::draft2020_12().for_serialize().into_generator().into_root_schema_for::<ResultFile>().to_value()
+    SchemaSettings::draft2020_12()
+        .for_serialize()
+        .into_generator()
+        .into_root_schema_for::<ResultFile>()
+        .to_value()
 }
 
 /// What `gapwright solve` answers; every number in SI units.
@@ -248,8 +252,13 @@ impl ResultFile {
                 .map(|r| RoundEntry { unknowns: r.n_unknowns, low: r.low, high: r.high })
                 .collect(),
             inductance: results.inductance.as_ref().map(|q| BoundedQuantity::new(q, "H")),
-            inductance_factor: results.inductance_factor.as_ref().map(|q| BoundedQuantity::new(q, "H")),
-            incremental_inductance: results.incremental_inductance.map(|value| Quantity { value, unit: "H" }),
+            inductance_factor: results
+                .inductance_factor
+                .as_ref()
+                .map(|q| BoundedQuantity::new(q, "H")),
+            incremental_inductance: results
+                .incremental_inductance
+                .map(|value| Quantity { value, unit: "H" }),
             coenergy: BoundedQuantity::new(&results.coenergy, "J"),
             energy: Quantity { value: results.energy, unit: "J" },
             windings: windings(results),
@@ -274,7 +283,12 @@ impl ResultFile {
 
 impl LedgerEntry {
     fn from_row(row: &LedgerRow) -> LedgerEntry {
-        LedgerEntry { region: row.region.clone(), share: row.share, reluctance: row.reluctance, hand: row.hand }
+        LedgerEntry {
+            region: row.region.clone(),
+            share: row.share,
+            reluctance: row.reluctance,
+            hand: row.hand,
+        }
     }
 }
 
@@ -312,7 +326,10 @@ fn gap_factors(results: &Results) -> GapFactors {
         plain_reluctance: g.plain_reluctance,
         force: g.force,
     };
-    GapFactors { inductance_based: results.inductance_based, gaps: results.gaps.iter().map(entry).collect() }
+    GapFactors {
+        inductance_based: results.inductance_based,
+        gaps: results.gaps.iter().map(entry).collect(),
+    }
 }
 
 fn hot_spots(results: &Results) -> Vec<HotSpotEntry> {

@@ -1,8 +1,9 @@
 //! `Results` → the screen of `solve`: the answer first, then where it comes from. At most 80 columns of text.
 
-use super::numbers::{clip, decimals_for, engineering, grouped, interval, percent, signed, wrap};
+use super::numbers::{clip, decimals_for, grouped, interval, percent, signed, wrap};
 use super::{StageTimes, shortfall};
 use crate::results::{Results, Verdict, WindingResult};
+use crate::units::engineering;
 use comfy_table::{CellAlignment, Table, presets};
 
 /// Columns of the screen.
@@ -31,7 +32,14 @@ pub fn solve_screen(results: &Results, look: &Look) -> String {
     }
     if let Some(sentence) = shortfall(results) {
         for (i, line) in wrap(&format!("Not reached: {sentence}."), WIDTH - 4).iter().enumerate() {
-            push(&mut text, &format!("{} {}", if i == 0 { "  !" } else { "   " }, paint(line, WARN, look.colour)));
+            push(
+                &mut text,
+                &format!(
+                    "{} {}",
+                    if i == 0 { "  !" } else { "   " },
+                    paint(line, WARN, look.colour)
+                ),
+            );
         }
     }
     answer(&mut text, results, look);
@@ -82,14 +90,21 @@ fn answer(text: &mut String, results: &Results, look: &Look) {
         (t.value, ends)
     };
     let is_estimate = !results.is_linear;
-    for (label, quantity) in [("A_L", &results.inductance_factor), ("inductance", &results.inductance)] {
+    for (label, quantity) in
+        [("A_L", &results.inductance_factor), ("inductance", &results.inductance)]
+    {
         if let Some(quantity) = quantity {
             let (value, ends) = bounded(quantity, "H");
             answer_line(text, label, &value, &ends);
         }
     }
     if let (true, Some(slope)) = (is_estimate, results.incremental_inductance) {
-        answer_line(text, "incremental", &engineering(slope, "H", 4), "slope of the flux linkage at this current");
+        answer_line(
+            text,
+            "incremental",
+            &engineering(slope, "H", 4),
+            "slope of the flux linkage at this current",
+        );
     }
     if is_estimate || results.inductance.is_none() {
         let (value, ends) = bounded(&results.coenergy, "J");
@@ -120,7 +135,12 @@ fn work(results: &Results, look: &Look) -> String {
 fn winding_line(text: &mut String, winding: &WindingResult) {
     let turns = format!("{} turns at {}", winding.turns, engineering(winding.current, "A", 3));
     let linkage = engineering(winding.flux_linkage, "Wb", 4);
-    answer_line(text, &clip(&winding.name, LABEL_WIDTH - 1), &linkage, &format!("flux linkage of {turns}"));
+    answer_line(
+        text,
+        &clip(&winding.name, LABEL_WIDTH - 1),
+        &linkage,
+        &format!("flux linkage of {turns}"),
+    );
 }
 
 fn verdict_lines(text: &mut String, verdict: &Verdict, look: &Look) {
@@ -143,11 +163,20 @@ fn verdict_lines(text: &mut String, verdict: &Verdict, look: &Look) {
     }
 }
 
-fn requirement_line(text: &mut String, requirement: &crate::results::RequirementResult, look: &Look) {
+fn requirement_line(
+    text: &mut String,
+    requirement: &crate::results::RequirementResult,
+    look: &Look,
+) {
     let kind = if requirement.incremental { "incremental" } else { "apparent" };
-    let limit = |word: &str, value: Option<f64>| value.map(|v| format!("{word} {}", engineering(v, "H", 4)));
+    let limit = |word: &str, value: Option<f64>| {
+        value.map(|v| format!("{word} {}", engineering(v, "H", 4).replace(' ', "\u{a0}")))
+    };
     let limits: Vec<String> =
-        [limit("at least", requirement.least), limit("at most", requirement.most)].into_iter().flatten().collect();
+        [limit("at least", requirement.least), limit("at most", requirement.most)]
+            .into_iter()
+            .flatten()
+            .collect();
     let (verdict, code) = if requirement.met { ("kept", GOOD) } else { ("broken", WARN) };
     let rest = format!(
         "{kind}, {} at {}: wanted {}, {verdict}",
@@ -185,8 +214,12 @@ fn ledger(text: &mut String, results: &Results, look: &Look) {
         return;
     }
     // Reluctances are printed in 1/µH, so that their reciprocal sum is the A_L that stands above.
-    let decimals = decimals_for(1e-6 * results.ledger.iter().filter_map(|r| r.reluctance).fold(0.0, f64::max), 4);
-    let reluctance = |value: Option<f64>| value.map_or("–".to_string(), |v| signed(1e-6 * v, decimals));
+    let decimals = decimals_for(
+        1e-6 * results.ledger.iter().filter_map(|r| r.reluctance).fold(0.0, f64::max),
+        4,
+    );
+    let reluctance =
+        |value: Option<f64>| value.map_or("–".to_string(), |v| signed(1e-6 * v, decimals));
     let rows: Vec<Vec<String>> = results
         .ledger
         .iter()
@@ -196,7 +229,13 @@ fn ledger(text: &mut String, results: &Results, look: &Look) {
                 _ => String::new(),
             };
             let share = format!("{} %", signed(100.0 * row.share, 1));
-            vec![clip(&row.region, NAME_WIDTH), share, reluctance(row.reluctance), reluctance(row.hand), verdict]
+            vec![
+                clip(&row.region, NAME_WIDTH),
+                share,
+                reluctance(row.reluctance),
+                reluctance(row.hand),
+                verdict,
+            ]
         })
         .collect();
     heading(text, "Where the reluctance sits, in 1/µH", look);
@@ -229,7 +268,12 @@ fn gaps(text: &mut String, results: &Results, look: &Look) {
         .collect();
     push_table(text, &["", "own factor", "l/(µ0 A), 1/µH", "force", "by B²A/2µ0"], &rows);
     if let Some(factor) = results.inductance_based {
-        push(text, &format!("  One factor for the spreadsheet: N²/(R_core + R_gap/{factor:.3}) gives this inductance."));
+        push(
+            text,
+            &format!(
+                "  In the spreadsheet: N²/(R_core + R_gap/{factor:.3}) gives this inductance."
+            ),
+        );
     }
 }
 
@@ -317,7 +361,6 @@ fn timings(text: &mut String, results: &Results, times: &StageTimes, look: &Look
         .collect();
     push_table(text, &["", "time", "share"], &rows);
 }
-
 
 #[cfg(test)]
 mod tests;

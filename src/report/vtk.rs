@@ -5,7 +5,8 @@
 use crate::mesh::{Chart, Mesh};
 use crate::solve::Solution;
 use vtkio::model::{
-    Attribute, Attributes, ByteOrder, CellType, Cells, DataSet, UnstructuredGridPiece, Version, VertexNumbers, Vtk,
+    Attribute, Attributes, ByteOrder, CellType, Cells, DataSet, UnstructuredGridPiece, Version,
+    VertexNumbers, Vtk,
 };
 
 /// Cell values, one entry a triangle of the mesh (those of the cap are skipped in the file).
@@ -34,9 +35,14 @@ pub enum VtkError {
 ///
 /// ψ at a middle is ½(ψ_i + ψ_j) + edge coefficient, since the edge function 4λ_iλ_j is 1 there.
 /// Fails when an array does not match the mesh.
-pub fn field_vtu(mesh: &Mesh, solution: &Solution, cells: &FieldCells) -> Result<Vec<u8>, VtkError> {
+pub fn field_vtu(
+    mesh: &Mesh,
+    solution: &Solution,
+    cells: &FieldCells,
+) -> Result<Vec<u8>, VtkError> {
     check_lengths(mesh, solution, cells)?;
-    let inside: Vec<usize> = (0..mesh.triangles.len()).filter(|&t| mesh.charts[t] == Chart::Inside).collect();
+    let inside: Vec<usize> =
+        (0..mesh.triangles.len()).filter(|&t| mesh.charts[t] == Chart::Inside).collect();
     let nodes = number_nodes(mesh, solution, &inside);
     let n_cells = inside.len();
     let piece = UnstructuredGridPiece {
@@ -61,7 +67,8 @@ pub fn field_vtu(mesh: &Mesh, solution: &Solution, cells: &FieldCells) -> Result
         data: DataSet::inline(piece),
     };
     let mut bytes = vec![];
-    file.write_xml(&mut bytes).map_err(|e| VtkError::Writer(super::numbers::clip(&e.to_string(), 200)))?;
+    file.write_xml(&mut bytes)
+        .map_err(|e| VtkError::Writer(super::numbers::clip(&e.to_string(), 200)))?;
     Ok(bytes)
 }
 
@@ -128,7 +135,8 @@ fn node(mesh: &Mesh, solution: &Solution, key: usize) -> (f64, f64, f64) {
 
 fn cell_data(mesh: &Mesh, cells: &FieldCells, inside: &[usize]) -> Vec<Attribute> {
     let vectors = |name: &str, values: &[[f64; 2]]| {
-        let flat: Vec<f64> = inside.iter().flat_map(|&t| [values[t][0], values[t][1], 0.0]).collect();
+        let flat: Vec<f64> =
+            inside.iter().flat_map(|&t| [values[t][0], values[t][1], 0.0]).collect();
         Attribute::vectors(name).with_data(flat)
     };
     let scalars = |name: &str, value: &dyn Fn(usize) -> f64| {
@@ -154,8 +162,12 @@ mod tests {
 
     fn read_back(bytes: &[u8]) -> UnstructuredGridPiece {
         let file = Vtk::parse_xml(bytes).unwrap();
-        let DataSet::UnstructuredGrid { pieces, .. } = file.data else { panic!("not an unstructured grid") };
-        let Some(Piece::Inline(piece)) = pieces.into_iter().next() else { panic!("no inline piece") };
+        let DataSet::UnstructuredGrid { pieces, .. } = file.data else {
+            panic!("not an unstructured grid")
+        };
+        let Some(Piece::Inline(piece)) = pieces.into_iter().next() else {
+            panic!("no inline piece")
+        };
         *piece
     }
 
@@ -175,7 +187,9 @@ mod tests {
         let points: Vec<f64> = piece.points.into_vec().unwrap();
         let Attribute::DataArray(psi) = &piece.data.point[0] else { panic!("no array") };
         let psi: Vec<f64> = psi.data.clone().into_vec().unwrap();
-        let VertexNumbers::XML { connectivity, .. } = piece.cells.cell_verts else { panic!("legacy cells") };
+        let VertexNumbers::XML { connectivity, .. } = piece.cells.cell_verts else {
+            panic!("legacy cells")
+        };
         let cell = &connectivity[24..30];
         for k in 0..3 {
             let [i, j, m] = [cell[k], cell[(k + 1) % 3], cell[3 + k]].map(|n| n as usize);

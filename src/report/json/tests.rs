@@ -11,7 +11,8 @@ fn parsed(results: &Results, times: Option<&StageTimes>) -> Value {
 #[track_caller]
 fn check_against_schema(value: &Value) {
     let validator = jsonschema::validator_for(&result_schema()).unwrap();
-    let errors: Vec<String> = validator.iter_errors(value).map(|e| format!("{}: {e}", e.instance_path())).collect();
+    let errors: Vec<String> =
+        validator.iter_errors(value).map(|e| format!("{}: {e}", e.instance_path())).collect();
     assert!(errors.is_empty(), "{errors:#?}");
 }
 
@@ -91,7 +92,10 @@ fn the_keys_stand_in_the_promised_order() {
 fn numbers_survive_to_the_last_bit() {
     let results = fixture::results();
     let value = parsed(&results, None);
-    assert_eq!(value["probes"][0]["points"][0]["b_r"].as_f64().unwrap(), results.probes[0].points[0].b_r);
+    assert_eq!(
+        value["probes"][0]["points"][0]["b_r"].as_f64().unwrap(),
+        results.probes[0].points[0].b_r
+    );
     assert_eq!(value["inductance"]["high"].as_f64().unwrap(), results.inductance.unwrap().high);
     assert_eq!(value["parts"][0]["exceeded"]["5 %"].as_f64().unwrap(), 0.38);
 }
