@@ -51,8 +51,21 @@ impl Law {
         }
     }
 
+    /// (ν, dH/dB) at B.
+    pub fn reluctivity(&self, b: Tesla) -> (f64, f64) {
+        (self.field(b) / b, self.field(b) / b)
+    }
+
     /// w(B) = ∫₀ᴮ H dB [J/m³].
     pub fn energy_density(&self, b: Tesla) -> JoulePerCubicMeter {
         0.5 * b * self.field(b)
+    }
+
+    /// w*(H) [J/m³].
+    pub fn coenergy_density(&self, h: AmperePerMeter) -> JoulePerCubicMeter {
+        match self {
+            Law::Constant { permeability } => 0.5 * MU0 * permeability * h * h,
+            _ => unimplemented!("owner of model::law"),
+        }
     }
 }
