@@ -14,26 +14,17 @@ pub use fringing::{GapPole, corner, corner_permeance, factor, log, one_gap_lengt
 pub use poles::{gap_area, gap_pole};
 pub use verdict::{blame, verdict};
 
-use crate::geometry::Leg;
+use crate::geometry::{Leg, RegionKind};
 use crate::model::{Across, Core, Dimensions, Form, GapCorrection, Law, Model, Section, Winding};
-use crate::units::{Henry, MU0, PerHenry};
-
-/// What a row of the hand sum stands for.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Portion {
-    /// Leg or plate.
-    Iron,
-    Gap,
-    /// Residual gap of the mating faces.
-    Joint,
-}
+use crate::units::{Henry, MU0, PerHenry, Tesla};
 
 /// One reluctance of the hand sum.
 #[derive(Debug, Clone, PartialEq)]
 pub struct HandRow {
-    /// The ledger's name of the region.
+    /// Name of the region in the ledger, as the outline has it.
     pub region: String,
-    pub portion: Portion,
+    /// The region of the outline: `Leg`, `Gap` or `Joint`.
+    pub kind: RegionKind,
     /// With the gap correction [1/H].
     pub reluctance: PerHenry,
     /// Without it: l/(µA).
@@ -45,7 +36,7 @@ pub struct HandRow {
 /// The sum on paper of one closed magnetic path.
 #[derive(Debug, Clone, PartialEq)]
 pub struct HandSum {
-    /// Post, wall, plates, gaps in the sheet's order, joint.
+    /// Post, wall, plates, gaps in the sheet's order, joints.
     pub rows: Vec<HandRow>,
     /// Σ reluctance [1/H].
     pub total: PerHenry,
@@ -63,9 +54,9 @@ pub struct HandSum {
 }
 
 impl HandSum {
-    /// Hand value of a ledger region [1/H]; `None` where the sum has none (air, windings, parts).
-    pub fn reluctance(&self, region: &str) -> Option<PerHenry> {
-        self.rows.iter().find(|row| row.region == region).map(|row| row.reluctance)
+    /// Hand value of a region of the outline [1/H]; `None` where the sum has none (air, windings, parts).
+    pub fn reluctance(&self, kind: RegionKind) -> Option<PerHenry> {
+        self.rows.iter().find(|row| row.kind == kind).map(|row| row.reluctance)
     }
 }
 
@@ -91,7 +82,7 @@ pub enum NoHandSum {
 /// - post and wall: l/(µA), l net of every gap ground out of them
 /// - each plate: ln(r3/r2)/(2πµt) and its two corners, [`path`]
 /// - gaps: l/(µ0 A F) with the estimate's correction ("log" where none is stated), [`factor`]; a spacer gives a row a leg
-/// - "joint": joint/(µ0 A), summed over the legs whose faces mate (none with a spacer, not a leg whose gap is at z = 0)
+/// - joints: joint/(µ0 A) in each leg whose faces mate (none with a spacer, not a leg with a gap at z = 0)
 ///
 /// µ is the material's initial permeability. Errors: [`NoHandSum`].
 pub fn hand_sum(model: &Model) -> Result<HandSum, NoHandSum> {
@@ -107,7 +98,7 @@ pub fn hand_sum(model: &Model) -> Result<HandSum, NoHandSum> {
     let permeability = initial_permeability(&model.materials[usize::from(core.material.0)].law);
     let mut rows = iron_rows(model, &path, permeability);
     rows.extend(gap_rows(model, correction));
-    rows.extend(joint_row(model, core, &path));
+    rows.extend(joint_rows(model, core, &path));
     Ok(total(model, winding, rows, correction, permeability))
 }
 
@@ -135,54 +126,67 @@ fn total(
 /// Post, wall and plates, for the law's initial permeability.
 fn iron_rows(model: &Model, path: &Path, permeability: f64) -> Vec<HandRow> {
     let mu = MU0 * permeability;
-    let iron = |region: &str, c1: f64| row(region.into(), Portion::Iron, c1 / mu, 1.0);
+    let iron = |leg, c1: f64| row(leg_name(leg).into(), RegionKind::Leg(leg), c1 / mu, 1.0);
     let ground = |across| -> f64 {
         model.gaps.iter().filter(|g| g.across == across).map(|g| g.length).sum()
     };
     let plate = path.plate.disc.c1 + path.plate.wall_corner.c1 + path.plate.post_corner.c1;
     vec![
-        iron("post", (path.leg_length - ground(Across::Post)) / path.post_area),
-        iron("wall", (path.leg_length - ground(Across::Wall)) / path.wall_area),
-        iron("upper plate", plate),
-        iron("lower plate", plate),
+        iron(Leg::Post, (path.leg_length - ground(Across::Post)) / path.post_area),
+        iron(Leg::Wall, (path.leg_length - ground(Across::Wall)) / path.wall_area),
+        iron(Leg::UpperPlate, plate),
+        iron(Leg::LowerPlate, plate),
     ]
 }
 
 fn gap_rows(model: &Model, correction: GapCorrection) -> Vec<HandRow> {
     let mut rows = Vec::new();
     for (i, gap) in model.gaps.iter().enumerate() {
-        for (leg, leg_name) in [(Leg::Post, "post"), (Leg::Wall, "wall")] {
+        for leg in [Leg::Post, Leg::Wall] {
             let Some(pole) = gap_pole(model, i, leg) else { continue };
             let region = match gap.across {
-                Across::Spacer => format!("{} ({leg_name})", gap.name),
+                Across::Spacer => format!("{} {}", gap.name, leg_name(leg)),
                 Across::Post | Across::Wall => gap.name.clone(),
             };
             let plain = gap.length / (MU0 * pole.area());
-            rows.push(row(region, Portion::Gap, plain, factor(correction, &pole)));
+            rows.push(row(
+                region,
+                RegionKind::Gap { gap: i, leg },
+                plain,
+                factor(correction, &pole),
+            ));
         }
     }
     rows
 }
 
-/// Residual gap of the mating faces; no row without one.
-fn joint_row(model: &Model, core: &Core, path: &Path) -> Option<HandRow> {
-    let is_mated = |leg| {
-        let opens = |gap: &crate::model::Gap| {
-            poles::crosses(gap, leg) && 2.0 * gap.center.abs() <= gap.length
-        };
-        !model.gaps.iter().any(opens)
-    };
-    let mut plain = 0.0;
+/// Residual gaps of the mating faces; no rows without one.
+fn joint_rows(model: &Model, core: &Core, path: &Path) -> Vec<HandRow> {
+    let mut rows = Vec::new();
     for (leg, area) in [(Leg::Post, path.post_area), (Leg::Wall, path.wall_area)] {
-        if is_mated(leg) {
-            plain += core.joint / (MU0 * area);
+        let is_mated = !poles::spans(&model.gaps, leg)
+            .iter()
+            .any(|span| span.bottom <= 0.0 && 0.0 <= span.top);
+        if is_mated && 0.0 < core.joint {
+            let region = format!("{} joint", leg_name(leg));
+            rows.push(row(region, RegionKind::Joint(leg), core.joint / (MU0 * area), 1.0));
         }
     }
-    (0.0 < plain).then(|| row("joint".into(), Portion::Joint, plain, 1.0))
+    rows
 }
 
-fn row(region: String, portion: Portion, plain: PerHenry, factor: f64) -> HandRow {
-    HandRow { region, portion, reluctance: plain / factor, plain, factor }
+fn row(region: String, kind: RegionKind, plain: PerHenry, factor: f64) -> HandRow {
+    HandRow { region, kind, reluctance: plain / factor, plain, factor }
+}
+
+/// The outline's name of a leg or plate.
+fn leg_name(leg: Leg) -> &'static str {
+    match leg {
+        Leg::Post => "post",
+        Leg::Wall => "wall",
+        Leg::UpperPlate => "upper plate",
+        Leg::LowerPlate => "lower plate",
+    }
 }
 
 fn form_name(form: &Form) -> &'static str {
@@ -207,14 +211,14 @@ fn is_in_window(section: &Section, dimensions: &Dimensions) -> bool {
         && top <= dimensions.window_top + slack
 }
 
-/// Relative permeability at no field. To be replaced by the law's own `initial_permeability`.
+/// Flux density at which a law counts as having its initial permeability: some millionths of the earth's field.
+const NO_FIELD: Tesla = 1e-10;
+
+/// Relative permeability at no field. To be replaced by the law's own `initial_permeability` once it has one.
 fn initial_permeability(law: &Law) -> f64 {
     match law {
         Law::Constant { permeability } => *permeability,
         Law::Saturation { initial_permeability, .. } => *initial_permeability,
-        Law::Table(table) => {
-            let first = table.h.iter().zip(&table.b).find(|&(&h, &b)| 0.0 < h && 0.0 < b);
-            first.map_or(1.0, |(h, b)| b / (MU0 * h))
-        }
+        Law::Table(_) => NO_FIELD / (MU0 * law.field(NO_FIELD)),
     }
 }

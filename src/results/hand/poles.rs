@@ -46,8 +46,32 @@ pub fn gap_pole(model: &Model, gap_index: usize, leg: Leg) -> Option<GapPole> {
     })
 }
 
+/// Where a gap lies in a leg.
+pub(super) struct Span {
+    gap: usize,
+    pub bottom: Meter,
+    pub top: Meter,
+}
+
+/// The gaps of a leg by height; spacers are stacked about z = 0 in the sheet's order.
+pub(super) fn spans(gaps: &[Gap], leg: Leg) -> Vec<Span> {
+    let is_spacer = |gap: &&Gap| gap.across == Across::Spacer;
+    let mut stacked = -0.5 * gaps.iter().filter(is_spacer).map(|gap| gap.length).sum::<Meter>();
+    let mut spans = Vec::new();
+    for (gap, it) in gaps.iter().enumerate().filter(|(_, it)| crosses(it, leg)) {
+        let bottom = if is_spacer(&it) { stacked } else { it.center - 0.5 * it.length };
+        let top = bottom + it.length;
+        if is_spacer(&it) {
+            stacked = top;
+        }
+        spans.push(Span { gap, bottom, top });
+    }
+    spans.sort_by(|a, b| a.bottom.total_cmp(&b.bottom));
+    spans
+}
+
 /// True when `gap` lies in `leg`.
-pub(super) fn crosses(gap: &Gap, leg: Leg) -> bool {
+fn crosses(gap: &Gap, leg: Leg) -> bool {
     match leg {
         Leg::Post => gap.across != Across::Wall,
         Leg::Wall => gap.across != Across::Post,
@@ -84,25 +108,20 @@ struct Room {
 }
 
 impl Room {
-    /// Sorts the leg's gaps by height, joins those that touch and keeps the one that holds `gap_index`.
+    /// Joins gaps that touch and keeps the one that holds `gap_index`.
     fn around(gaps: &[Gap], gap_index: usize, leg: Leg) -> Room {
-        let mut order: Vec<usize> = (0..gaps.len()).filter(|&i| crosses(&gaps[i], leg)).collect();
-        order.sort_by(|&i, &j| faces(&gaps[i])[0].total_cmp(&faces(&gaps[j])[0]));
-
         let mut rooms: Vec<Room> = Vec::new();
         let mut wanted = 0;
-        for i in order {
-            let [bottom, top] = faces(&gaps[i]);
+        for Span { gap, bottom, top } in spans(gaps, leg) {
+            let length = gaps[gap].length;
             match rooms.last_mut() {
                 Some(last) if bottom <= last.top + TOUCHING => {
                     last.top = last.top.max(top);
-                    last.length += gaps[i].length;
+                    last.length += length;
                 }
-                _ => {
-                    rooms.push(Room { bottom, top, length: gaps[i].length, neighbours: [None; 2] })
-                }
+                _ => rooms.push(Room { bottom, top, length, neighbours: [None; 2] }),
             }
-            if i == gap_index {
+            if gap == gap_index {
                 wanted = rooms.len() - 1;
             }
         }
@@ -119,8 +138,4 @@ impl Room {
         let above = self.neighbours[1].map_or(end - self.top, |bottom| 0.5 * (bottom - self.top));
         [below.max(0.0), above.max(0.0)]
     }
-}
-
-fn faces(gap: &Gap) -> [Meter; 2] {
-    [gap.center - 0.5 * gap.length, gap.center + 0.5 * gap.length]
 }

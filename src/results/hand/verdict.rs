@@ -1,6 +1,7 @@
 //! The estimate against the field: how far off, and which reluctance is to blame.
 
-use super::{HandSum, Portion};
+use super::HandSum;
+use crate::geometry::RegionKind;
 use crate::model::{Claim, Estimate, GapCorrection};
 use crate::results::{LedgerRow, Verdict};
 use crate::units::{Henry, PerHenry};
@@ -106,7 +107,9 @@ struct Suspect {
 
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 enum Kind {
-    Row(Portion),
+    Iron,
+    Gap,
+    Joint,
     /// Air round a core without gaps.
     Air,
     /// A part that the sum does not know.
@@ -117,15 +120,18 @@ enum Kind {
 ///
 /// Bulging flux of a gap lies in the window, the windings, the hole and outside, so the ledger books its energy there:
 /// a gap alone has R/F² in the field where the hand sum has R/F. The air's reluctance is therefore given to the gaps,
-/// in proportion to their own; then the sum over iron, gaps and joint is N²/L on either side. Empty when the ledger
-/// has no reluctances (several currents).
+/// in proportion to their own; then the sum over iron, gaps and joints is N²/L on either side. Empty when the ledger
+/// has no reluctances (several currents) or no rows.
 fn suspects(hand: &HandSum, ledger: &[LedgerRow]) -> Vec<Suspect> {
+    if ledger.is_empty() {
+        return Vec::new();
+    }
     let mut suspects: Vec<Suspect> = hand
         .rows
         .iter()
         .map(|row| Suspect {
             name: row.region.clone(),
-            kind: Kind::Row(row.portion),
+            kind: kind_of(row.kind),
             field: 0.0,
             hand: Some(row.reluctance),
         })
@@ -133,7 +139,7 @@ fn suspects(hand: &HandSum, ledger: &[LedgerRow]) -> Vec<Suspect> {
     let mut air = 0.0;
     for row in ledger {
         let Some(field) = row.reluctance else { return Vec::new() };
-        if let Some(suspect) = suspects.iter_mut().find(|s| is_region_of(s, &row.region)) {
+        if let Some(suspect) = suspects.iter_mut().find(|s| s.name == row.region) {
             suspect.field += field;
         } else if hand.left_out.contains(&row.region) {
             suspects.push(Suspect {
@@ -150,15 +156,16 @@ fn suspects(hand: &HandSum, ledger: &[LedgerRow]) -> Vec<Suspect> {
     suspects
 }
 
-/// True for the region of that name; the legs of a joint ("joint (post)") count as the one joint.
-fn is_region_of(suspect: &Suspect, region: &str) -> bool {
-    let is_leg_of_joint =
-        suspect.kind == Kind::Row(Portion::Joint) && region.starts_with("joint (");
-    suspect.name == region || is_leg_of_joint
+fn kind_of(region: RegionKind) -> Kind {
+    match region {
+        RegionKind::Gap { .. } => Kind::Gap,
+        RegionKind::Joint(_) => Kind::Joint,
+        _ => Kind::Iron,
+    }
 }
 
 fn share_air(suspects: &mut Vec<Suspect>, air: PerHenry) {
-    let is_gap = |suspect: &&mut Suspect| suspect.kind == Kind::Row(Portion::Gap);
+    let is_gap = |suspect: &&mut Suspect| suspect.kind == Kind::Gap;
     let in_gaps: PerHenry = suspects.iter_mut().filter(is_gap).map(|gap| gap.field).sum();
     if 0.0 < in_gaps {
         suspects.iter_mut().filter(is_gap).for_each(|gap| gap.field *= 1.0 + air / in_gaps);
@@ -186,11 +193,11 @@ impl Suspect {
     /// "the post", "the post gap", "gap 2", "the gap `air`".
     fn title(&self) -> String {
         match self.kind {
-            Kind::Row(Portion::Gap) if !self.name.contains("gap") => {
+            Kind::Gap if !self.name.contains("gap") => {
                 format!("the gap `{}`", self.name)
             }
-            Kind::Row(Portion::Gap) if self.name.starts_with("gap ") => self.name.clone(),
-            Kind::Row(_) => format!("the {}", self.name),
+            Kind::Gap if self.name.starts_with("gap ") => self.name.clone(),
+            Kind::Iron | Kind::Gap | Kind::Joint => format!("the {}", self.name),
             Kind::Air => "the air round the core".into(),
             Kind::Part => format!("the part `{}`", self.name),
         }
@@ -208,10 +215,10 @@ impl Suspect {
 
     fn meaning(&self, hand: PerHenry) -> &'static str {
         match (self.kind, self.field < hand) {
-            (Kind::Row(Portion::Gap), true) => "its flux bulges more than the correction allows",
-            (Kind::Row(Portion::Gap), false) => "its flux bulges less than the correction allows",
-            (Kind::Row(Portion::Joint), true) => "part of the flux does not pass the mating faces",
-            (Kind::Row(Portion::Joint), false) => "the flux crowds at the mating faces",
+            (Kind::Gap, true) => "its flux bulges more than the correction allows",
+            (Kind::Gap, false) => "its flux bulges less than the correction allows",
+            (Kind::Joint, true) => "part of the flux does not pass the mating faces",
+            (Kind::Joint, false) => "the flux crowds at the mating faces",
             (_, true) => "part of the flux leaves it or takes a shorter way than the mean path",
             (_, false) => "its flux crowds, or its permeability has fallen below the initial one",
         }
