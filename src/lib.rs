@@ -3,6 +3,7 @@
 //! `input` → `model` → `geometry` → `mesh` → `adapt` (`fem`, `solve`, `bound`) → `results` → `report`.
 
 pub mod geometry;
+pub mod input;
 pub mod mesh;
 pub mod model;
 pub mod results;
