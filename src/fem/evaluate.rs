@@ -1,0 +1,1 @@
+//! Field values at points.
