@@ -3,7 +3,7 @@
 mod parse;
 mod print;
 
-pub use parse::{Dimension, QuantityError, Reading, decimal, read, reading};
+pub use parse::{Dimension, QuantityError, Reading, decimal, read, reading, spellings};
 pub use print::{ends, engineering, millimeters, number, percent};
 
 /// Length.

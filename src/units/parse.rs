@@ -166,6 +166,16 @@ pub fn decimal(digits: &str, power: i32) -> f64 {
     format!("{mantissa}e{}", exponent.saturating_add(power)).parse().unwrap_or(f64::NAN)
 }
 
+/// Every spelling of a unit of that dimension that [`read`] understands.
+pub fn spellings(dimension: Dimension) -> Vec<String> {
+    let special = SPECIAL.iter().filter(|s| s.1 == dimension).map(|s| s.0.to_string());
+    let prefixed = dimension
+        .base_unit()
+        .into_iter()
+        .flat_map(|base| PREFIXES.iter().map(move |(prefix, _)| format!("{prefix}{base}")));
+    prefixed.chain(special).collect()
+}
+
 fn finite(value: f64, text: &str) -> Result<f64, QuantityError> {
     if value.is_finite() {
         Ok(value)
