@@ -137,3 +137,5 @@ pub fn rounds(
         changed = bisect(&mut mesh, &marked, &mut carried);
     }
 }
+#[cfg(test)]
+mod scratch;

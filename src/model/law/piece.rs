@@ -47,7 +47,7 @@ impl Piece {
 
     /// The s with rise(s) = `rise` ≥ 0: Newton's method kept inside a shrinking bracket.
     ///
-    /// Stops where the next step or the defect is rounding; the slope is ≥ µ0, so there is one root.
+    /// Stops where the defect, or the one after the next step, is rounding; the slope is ≥ µ0, so there is one root.
     pub fn step_for(&self, rise: Tesla) -> AmperePerMeter {
         self.step_and_count(rise).0
     }
@@ -68,11 +68,14 @@ impl Piece {
             } else {
                 low = s;
             }
-            let newton = s - defect / self.slope(s);
+            let step = -defect / self.slope(s);
+            let newton = s + step;
             let inside = low <= newton && newton <= high;
             let next = if inside { newton } else { 0.5 * (low + high) };
+            // Taylor's formula ends at the cubic, so the defect after the step is known without taking it.
+            let defect_next = step * step * (c2 + c3 * (3.0 * s + step));
             // The Horner sum of `rise` is good to a few units of its last place: a smaller defect is noise.
-            let settled = (next - s).abs() <= f64::EPSILON * next
+            let settled = (inside && defect_next.abs() <= f64::EPSILON * rise)
                 || defect.abs() <= 4.0 * f64::EPSILON * rise;
             if settled {
                 return (next, count);

@@ -1,8 +1,8 @@
 //! The laws against each other, against quadrature, and against a published steel curve.
 
+mod random;
+
 use super::*;
-use proptest::prelude::*;
-use proptest::test_runner::RngSeed;
 
 /// Steel of TEAM workshop problem 13 up to 1.8 T: T. Nakata, N. Takahashi, K. Fujiwara et al., problem definition.
 const STEEL_H: [f64; 27] = [
@@ -50,9 +50,12 @@ fn assert_close(found: f64, wanted: f64, relative: f64, what: &str) {
     );
 }
 
-/// Tolerance of a round trip: a few roundings, one of them (that of the argument between) stretched by the law.
+/// Roundings of a cubic's sum, in units of its last place: its terms are up to 13 times as large as the sum.
+const CUBIC_ROUNDING: f64 = 16.0 * f64::EPSILON;
+
+/// Tolerance of a round trip: the rounding of the argument between is stretched by the law.
 fn round_trip_limit(elasticity: f64) -> f64 {
-    4.0 * f64::EPSILON * (1.0 + elasticity)
+    CUBIC_ROUNDING * (1.0 + elasticity)
 }
 
 #[track_caller]
@@ -173,8 +176,11 @@ fn every_law_round_trips() {
     }
     let steel = steel(Interpolation::Smooth);
     for k in 1..=4000 {
+        // The stated accuracy of the inverse for a real material.
         let b = 5e-4 * k as f64;
-        assert_close(steel.flux_density(steel.field(b)), b, 1e-14, "steel");
+        let h = steel.field(b);
+        assert_close(steel.flux_density(h), b, 1e-13, "steel, B");
+        assert_close(steel.field(steel.flux_density(h)), h, 1e-13, "steel, H");
     }
 }
 
@@ -319,7 +325,45 @@ fn inverse_of_a_smooth_table_takes_few_steps() {
     let steps: Vec<usize> = (1..18_000).map(|k| table.n_inverse_steps(1e-4 * k as f64)).collect();
     let most = steps.iter().max().copied().unwrap();
     let mean = steps.iter().sum::<usize>() as f64 / steps.len() as f64;
-    assert!(mean <= 4.5 && most <= 12, "mean {mean:.2}, most {most}");
+    assert!(mean <= 3.5 && most <= 8, "mean {mean:.2}, most {most}");
+}
+
+/// Steep, flat, steep: the limiter holds both ends of the middle cubic, whose slope nearly falls to µ0 half-way.
+const STEPPED_H: [f64; 4] = [0.0, 0.01, 66.81, 66.82];
+const STEPPED_B: [f64; 4] = [0.0, 0.0015, 0.2056, 0.2088];
+
+#[test]
+fn inverse_of_a_flat_cubic_stays_inside_its_bracket() {
+    // Newton's method alone leaves the interval near the flat middle and needs up to 16 steps to come back.
+    let table =
+        BhTable::new(STEPPED_H.to_vec(), STEPPED_B.to_vec(), Interpolation::Smooth).unwrap();
+    let law = Law::Table(table.clone());
+    for k in 1..20_000 {
+        let h = k as f64 / 300.0;
+        assert_round_trips(&law, h);
+        let n_steps = table.n_inverse_steps(law.flux_density(h));
+        assert!(n_steps <= 12, "{n_steps} steps at H = {h}");
+    }
+}
+
+#[test]
+fn slow_start_keeps_an_initial_permeability_of_half_the_first_secant() {
+    // The parabola through the three points starts downwards: ((2·100 + 20)·1e-3 − 100·2e-2)/120 < 0.
+    let law = table(&[0.0, 100.0, 120.0], &[0.0, 0.1, 0.5], Interpolation::Smooth);
+    let floor = MU0 + 0.5 * (1e-3 - MU0);
+    assert_close(law.initial_permeability(), floor / MU0, 1e-14, "µ_i");
+}
+
+#[test]
+fn long_tables_keep_the_legendre_pair_to_the_last_place() {
+    // A plain sum of 100 000 terms would be off by some hundred units of the last place.
+    let source = Law::saturation(2000.0, 0.45).unwrap();
+    let h: Vec<f64> = (0..100_001).map(|k| 0.03 * k as f64).collect();
+    let b: Vec<f64> = h.iter().map(|&h| source.flux_density(h)).collect();
+    let law = table(&h, &b, Interpolation::Linear);
+    for k in (1000..100_000).step_by(997) {
+        assert_legendre(&law, b[k]);
+    }
 }
 
 #[track_caller]
@@ -386,149 +430,4 @@ fn slope_a_rounding_below_vacuum_is_raised_and_more_is_refused() {
         assert_close(law.flux_density(1e5), 0.5 + MU0 * 99_900.0, 1e-15, "raised row");
     }
     assert_eq!(refused(&h, &b(1.1e-6)).0, Some(3));
-}
-
-/// Rows by steps: log-uniform in H over four decades and in permeability over five, one in four at vacuum slope.
-fn random_table() -> impl Strategy<Value = (Vec<f64>, Vec<f64>)> {
-    let step = (0.0..4.0f64, 0.0..5.0f64, 0..4u8);
-    proptest::collection::vec(step, 1..40).prop_map(|steps| {
-        let (mut h, mut b) = (vec![0.0], vec![0.0]);
-        for (log_step, log_permeability, kind) in steps {
-            let step = 10f64.powf(log_step);
-            let permeability = if kind == 0 { 1.0 } else { 10f64.powf(log_permeability) };
-            h.push(h[h.len() - 1] + step);
-            b.push(b[b.len() - 1] + MU0 * permeability * step);
-        }
-        (h, b)
-    })
-}
-
-fn interpolations() -> impl Strategy<Value = Interpolation> {
-    prop_oneof![Just(Interpolation::Smooth), Just(Interpolation::Linear)]
-}
-
-/// The same cases in every run.
-fn config() -> ProptestConfig {
-    ProptestConfig {
-        cases: 256,
-        rng_seed: RngSeed::Fixed(0x5eed_b0b1),
-        failure_persistence: None,
-        ..ProptestConfig::default()
-    }
-}
-
-/// Samples of a table: in every interval, at the knots, and past the end.
-fn samples(h: &[f64]) -> Vec<f64> {
-    let mut samples = Vec::new();
-    for pair in h.windows(2) {
-        samples.extend((1..=8).map(|k| pair[0] + (pair[1] - pair[0]) * k as f64 / 8.0));
-    }
-    samples.extend([1.5, 10.0, 1e3].map(|factor| factor * h[h.len() - 1]));
-    samples
-}
-
-proptest! {
-    #![proptest_config(config())]
-
-    #[test]
-    fn random_tables_round_trip_and_rise((h, b) in random_table(), interpolation in interpolations()) {
-        let law = table(&h, &b, interpolation);
-        let (mut h_before, mut b_before) = (0.0, 0.0);
-        for h in samples(&h) {
-            assert_round_trips(&law, h);
-            assert!(MU0 * (1.0 - 1e-12) <= law.permeability_differential(h), "dB/dH at {h}");
-            let b = law.flux_density(h);
-            // The rise is at least µ0 times the step, up to the rounding of B.
-            assert!(b_before + MU0 * (h - h_before) <= b * (1.0 + 4.0 * f64::EPSILON), "B falls before {h}");
-            (h_before, b_before) = (h, b);
-        }
-    }
-
-    #[test]
-    fn random_tables_are_continuous_at_their_rows((h, b) in random_table(), interpolation in interpolations()) {
-        let law = table(&h, &b, interpolation);
-        for i in 1..h.len() {
-            let (below, at) = (h[i] * (1.0 - f64::EPSILON), h[i]);
-            // One unit of H below the row: B may differ by that unit times the slope, and by rounding.
-            let most = law.permeability_differential_max();
-            let limit = 8.0 * f64::EPSILON * (law.flux_density(at) + most * at);
-            assert!((law.flux_density(below) - law.flux_density(at)).abs() <= limit, "B at row {}", i + 1);
-            let energy = law.energy_density(b[i]);
-            let jump = energy - law.energy_density(b[i] * (1.0 - f64::EPSILON));
-            assert!(jump.abs() <= 8.0 * f64::EPSILON * at * b[i], "w at row {}", i + 1);
-            assert_close(law.coenergy_density(below), law.coenergy_density(at), 1e-14 + 8.0 * f64::EPSILON * at * b[i] / law.coenergy_density(at), "w*");
-            if interpolation == Interpolation::Smooth && i + 1 < h.len() {
-                // Both cubics have the knot's slope; their sums round at the size of the largest slope.
-                let (left, right) = (law.permeability_differential(below), law.permeability_differential(at));
-                let bend = 12.0 * most * (at - below) / (h[i] - h[i - 1]);
-                assert!((left - right).abs() <= 32.0 * f64::EPSILON * most + bend, "slope at row {}", i + 1);
-            }
-        }
-    }
-
-    #[test]
-    fn random_tables_have_integrals_for_energies((h, b) in random_table(), interpolation in interpolations()) {
-        let law = table(&h, &b, interpolation);
-        let (mut energy, mut coenergy, mut crowding) = (0.0, 0.0, 0.0f64);
-        for i in 1..h.len() {
-            // Polynomials of degree ≤ 3 on each interval: one part of the rule is exact.
-            coenergy += gauss(h[i - 1], h[i], 1, |h| law.flux_density(h));
-            energy += gauss(h[i - 1], h[i], 1, |h| h * law.permeability_differential(h));
-            // The rule's own nodes round by ε·H, which a short interval feels as ε·H/length of itself.
-            crowding = crowding.max(h[i] / (h[i] - h[i - 1]));
-            let limit = 1e-14 + 4.0 * f64::EPSILON * crowding;
-            assert_close(law.coenergy_density(h[i]), coenergy, limit, "w*");
-            assert_close(law.energy_density(b[i]), energy, limit, "w");
-        }
-    }
-
-    #[test]
-    fn random_tables_have_legendre_energies(
-        (h, b) in random_table(),
-        interpolation in interpolations(),
-        probes in proptest::collection::vec((0.0..1.5f64, 0.0..1.5f64), 20),
-    ) {
-        let law = table(&h, &b, interpolation);
-        for h in samples(&h) {
-            let b = law.flux_density(h);
-            assert_legendre(&law, b);
-            assert_gap_is_not_negative(&law, b, h);
-        }
-        let (h_last, b_last) = law.last_point().unwrap();
-        for (h_share, b_share) in probes {
-            assert_gap_is_not_negative(&law, b_share * b_last, h_share * h_last);
-        }
-    }
-
-    #[test]
-    fn random_saturations_round_trip_with_legendre_energies(
-        log_permeability in 0.01..6.0f64,
-        polarisation in 0.01..3.0f64,
-        log_field in -6.0..8.0f64,
-        log_other in -6.0..8.0f64,
-    ) {
-        let law = Law::saturation(10f64.powf(log_permeability), polarisation).unwrap();
-        let h = 10f64.powf(log_field);
-        assert_round_trips(&law, h);
-        assert_legendre(&law, law.flux_density(h));
-        assert_gap_is_not_negative(&law, law.flux_density(h), 10f64.powf(log_other));
-        assert!(MU0 <= law.permeability_differential(h));
-    }
-
-    #[test]
-    fn random_knees_stand_a_brute_force_scan((h, b) in random_table(), interpolation in interpolations()) {
-        let law = table(&h, &b, interpolation);
-        let level = 0.2 * law.permeability_differential_max();
-        match law.knee() {
-            None => prop_assert!(level <= MU0),
-            Some(knee) => {
-                let field = law.field(knee);
-                // Beyond the knee (a hair for rounding) everything is below the level; just before it, not.
-                for h in samples(&h).into_iter().filter(|&h| field * (1.0 + 1e-9) < h) {
-                    prop_assert!(law.permeability_differential(h) < level * (1.0 + 1e-12));
-                }
-                prop_assert!(level * (1.0 - 1e-6) <= law.permeability_differential(field * (1.0 - 1e-12)));
-            }
-        }
-    }
 }
