@@ -2,29 +2,15 @@
 
 use super::numbers::{clip, millimeters, percent, wrap};
 use crate::model::{Across, Law, Model, Winding};
+use crate::results::hand::Effective;
 use crate::units::engineering;
-use crate::units::{CubicMeter, Henry, Meter, PerHenry, SquareMeter};
-
-/// Effective parameters of the closed core (IEC 60205).
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct EffectiveCore {
-    /// A_e [m²].
-    pub area: SquareMeter,
-    /// l_e [m].
-    pub length: Meter,
-    /// V_e [m³].
-    pub volume: CubicMeter,
-    /// C1 = Σ l/A [1/m].
-    pub c1: f64,
-    /// C2 = Σ l/A² [1/m³].
-    pub c2: f64,
-}
+use crate::units::{Henry, PerHenry};
 
 /// What was understood, beside the model: figures that other stages computed.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct Understood {
     /// `None` for a drum, a rod and free parts: their flux closes through air.
-    pub effective: Option<EffectiveCore>,
+    pub effective: Option<Effective>,
     /// A_L of the closed core without any gap [H].
     pub ungapped_inductance_factor: Option<Henry>,
     /// Name and l/(µ0 A) [1/H] of every gap.
@@ -85,12 +71,11 @@ fn materials(text: &mut String, model: &Model) {
             Law::Constant { permeability } => {
                 format!("relative permeability {permeability}, constant")
             }
-            Law::Table(table) => format!(
-                "B-H table of {} points up to {} at {}",
-                table.b.len(),
-                engineering(table.b.last().copied().unwrap_or(0.0), "T", 3),
-                engineering(table.h.last().copied().unwrap_or(0.0), "A/m", 3)
-            ),
+            Law::Table(table) => {
+                let (h, b) = material.law.last_point().unwrap_or((0.0, 0.0));
+                let [h, b] = [engineering(h, "A/m", 3), engineering(b, "T", 3)];
+                format!("B-H table of {} points up to {b} at {h}", table.rows().len())
+            }
             Law::Saturation { initial_permeability, flux_density } => format!(
                 "initial permeability {initial_permeability}, saturating towards {}",
                 engineering(*flux_density, "T", 3)
@@ -241,7 +226,8 @@ mod tests {
 
     fn understood() -> Understood {
         Understood {
-            effective: Some(EffectiveCore {
+            effective: Some(Effective {
+                area_min: 80e-6,
                 area: 92e-6,
                 length: 37e-3,
                 volume: 3.4e-6,
