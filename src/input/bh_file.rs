@@ -1,14 +1,10 @@
 //! CSV text with the header `H [A/m],B [T]` → a law; mistakes are placed in the CSV file.
 
 use super::diagnostic::Diagnostic;
-use super::law_standin as law;
 use super::{FILE_BYTES_MAX, size_message};
-use crate::model::{Interpolation, Law, LawError};
+use crate::model::{BhTable, Interpolation, Law, LawError};
 use std::ops::Range;
 use std::path::Path;
-
-/// What a B–H table has to look like.
-pub(super) const HELP: &str = "start at (0, 0) and let H and B rise from row to row, by at least µ0 (1.2566e-6 T per A/m)";
 
 const HEADER_HELP: &str = "write the first line `H [A/m],B [T]`, then one pair a line, decimal points, commas between";
 
@@ -29,12 +25,19 @@ pub(super) fn law(text: &str, file: &str, interpolation: Interpolation) -> Resul
     }
     let rows = rows(text).map_err(|(span, message, help)| fault(span, message, help))?;
     let (h, b) = rows.iter().map(|row| (row.h, row.b)).unzip();
-    match law::table(h, b, interpolation) {
-        Ok(table) => Ok(Law::Table(table)),
-        Err(LawError::Row { row, reason }) => {
-            let span = rows.get(row.wrapping_sub(1)).map_or(0..0, |row| row.span.clone());
-            Err(fault(span, format!("row {row}: {reason}"), HELP))
-        }
+    BhTable::new(h, b, interpolation).map(Law::Table).map_err(|error| {
+        let span = error.row().and_then(|row| rows.get(row - 1)).map_or(0..0, |row| row.span.clone());
+        let (message, help) = message_and_help(&error);
+        fault(span, message, &help)
+    })
+}
+
+/// A law's error says what is wrong and, behind a semicolon, what to do.
+pub(super) fn message_and_help(error: &LawError) -> (String, String) {
+    let text = error.to_string();
+    match text.split_once("; ") {
+        Some((message, help)) => (message.into(), help.into()),
+        None => (text, "write what the data sheet says".into()),
     }
 }
 

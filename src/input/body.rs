@@ -103,6 +103,9 @@ impl<'a> Reader<'a> {
                 PotWall::OuterLegsArea(self.number(fields, "outer_legs_area", kind, Bound::Positive))
             }
             (true, false) => PotWall::OuterDiameter(self.length(fields, "outer_diameter")),
+            (false, false) if ["outer_diameter", "outer_legs_area"].iter().any(|key| fields.has_misspelled(key)) => {
+                PotWall::OuterDiameter(f64::NAN)
+            }
             (false, false) => {
                 let help = "add `outer_diameter = 25.5`, or `outer_legs_area = \"95 mm²\"` for legs that are not round";
                 self.fault(fields.header_span(), "`[core]` lacks `outer_diameter` or `outer_legs_area`", help);
@@ -158,7 +161,7 @@ impl<'a> Reader<'a> {
 
     /// All gaps; `core` tells whether there is a core, and of which form.
     pub fn gaps(&mut self, top: &Fields<'a>, core: Option<&Core>) -> Vec<Gap> {
-        let has_core = top.has("core");
+        let has_core = top.has("core") || top.has_misspelled("core");
         let mut gaps = Vec::new();
         for fields in self.list(top, "gaps", &keys::GAP) {
             let index = gaps.len();

@@ -65,8 +65,8 @@ impl<'a> Reader<'a> {
     fn section(&mut self, fields: &Fields<'a>) -> Section {
         Section {
             turns: self.number(fields, "turns", Kind::Pure, Bound::Positive),
-            radii: self.ordered_pair(fields, "radii", ["inner", "outer"], Bound::NotNegative),
-            heights: self.ordered_pair(fields, "heights", ["bottom", "top"], Bound::Any),
+            radii: self.ordered_pair(fields, "radii", ["the inner radius", "the outer radius"], Bound::NotNegative),
+            heights: self.ordered_pair(fields, "heights", ["the bottom", "the top"], Bound::Any),
         }
     }
 

@@ -70,13 +70,10 @@ fn clip(text: &str, span: Range<usize>) -> Range<usize> {
 /// `text` is the sheet's text; a diagnostic about another file brings its own.
 pub fn render(diagnostic: &Diagnostic, text: &str, colour: bool) -> String {
     let text = diagnostic.own_text.as_deref().unwrap_or(text);
-    let place = format!("{}:{}:{}", diagnostic.file, diagnostic.line, diagnostic.column);
+    let headline = headline(diagnostic, colour);
     let shown = printable(text);
     if !has_snippet(&shown, diagnostic) {
-        return printable(&format!(
-            "{place}: {}\n  help: {}\n",
-            diagnostic.message, diagnostic.help
-        ));
+        return format!("{headline}\n  help: {}\n", printable(&diagnostic.help));
     }
     let file = printable(&diagnostic.file);
     let mark = |span: &Range<usize>, words: &str, color| {
@@ -84,22 +81,22 @@ pub fn render(diagnostic: &Diagnostic, text: &str, colour: bool) -> String {
             .with_message(printable(words))
             .with_color(color)
     };
-    let place = printable(&place);
     let span = clip(&shown, diagnostic.span.clone());
-    let mut report = Report::build(ReportKind::Custom(&place, Color::Red), (file.as_str(), span))
-        .with_config(Config::default().with_color(colour).with_index_type(IndexType::Byte))
-        .with_message(printable(&diagnostic.message))
-        .with_label(mark(&diagnostic.span, &diagnostic.label, Color::Red))
-        .with_help(printable(&diagnostic.help));
+    let mut labels = vec![mark(&diagnostic.span, &diagnostic.label, Color::Red)];
     if let Some((span, words)) = &diagnostic.also {
-        report = report.with_label(mark(span, words, Color::Yellow));
+        // In the order of the text, else the snippet is drawn in two pieces.
+        let at = usize::from(diagnostic.span.start <= span.start);
+        labels.insert(at, mark(span, words, Color::Yellow));
     }
+    let report = Report::build(ReportKind::Error, (file.as_str(), span))
+        .with_config(Config::default().with_color(colour).with_index_type(IndexType::Byte))
+        .with_labels(labels)
+        .with_help(printable(&diagnostic.help))
+        .finish();
     let mut bytes = Vec::new();
-    let written = report.finish().write((file.as_str(), Source::from(shown.as_str())), &mut bytes);
-    match written {
-        Ok(()) => trimmed(&String::from_utf8_lossy(&bytes)),
-        Err(_) => format!("{place}: {}\n  help: {}\n", diagnostic.message, diagnostic.help),
-    }
+    // Writing to memory cannot fail; should it, the headline still stands.
+    let _ = report.write((file.as_str(), Source::from(shown.as_str())), &mut bytes);
+    format!("{headline}\n{}", below_first_line(&String::from_utf8_lossy(&bytes)))
 }
 
 /// An empty file and an endless line have nothing to underline.
@@ -109,7 +106,7 @@ fn has_snippet(text: &str, diagnostic: &Diagnostic) -> bool {
         let span = clip(text, span.clone());
         let start = text[..span.start].rfind('\n').map_or(0, |at| at + 1);
         let end = text[span.start..].find('\n').map_or(text.len(), |at| span.start + at);
-        start < end && end - start <= SNIPPET_LINE_MAX
+        end - start <= SNIPPET_LINE_MAX && !text[start..end].trim().is_empty()
     })
 }
 
@@ -130,9 +127,17 @@ fn printable(text: &str) -> String {
     })
 }
 
-/// Without the blanks that the drawing leaves at line ends.
-fn trimmed(report: &str) -> String {
-    report.lines().map(|line| format!("{}\n", line.trim_end())).collect()
+/// `file:line:column: message`, bold red up to the message where colour is wanted.
+fn headline(diagnostic: &Diagnostic, colour: bool) -> String {
+    let (on, off) = if colour { ("\u{1b}[1;31m", "\u{1b}[0m") } else { ("", "") };
+    let place = format!("{}:{}:{}:", diagnostic.file, diagnostic.line, diagnostic.column);
+    let message = diagnostic.message.replace('\n', " ");
+    format!("{on}{}{off} {}", printable(&place), printable(&message))
+}
+
+/// The drawing below its own headline, without the blanks that it leaves at line ends.
+fn below_first_line(report: &str) -> String {
+    report.lines().skip(1).map(|line| format!("{}\n", line.trim_end())).collect()
 }
 
 #[cfg(test)]

@@ -80,6 +80,16 @@ const ALL: [&Table; 13] = [
     &ESTIMATE, &REQUIRE, &HOT_SPOTS,
 ];
 
+/// Keys of the top that are no tables.
+const TOP_VALUES: [&str; 2] = ["title", "length_unit"];
+
+/// What to write instead of an unknown table of the top.
+pub(super) fn table_advice(unknown: &str) -> String {
+    let tables: Vec<&str> = TOP.keys.iter().copied().filter(|key| !TOP_VALUES.contains(key)).collect();
+    let nearest = nearest(unknown, &tables).unwrap_or_default();
+    format!("the nearest known table is `{nearest}`; known here: {}", tables.join(", "))
+}
+
 /// What to write instead of an unknown key of `table`.
 pub(super) fn advice(table: &Table, unknown: &str) -> String {
     let known = table.keys.join(", ");
@@ -95,6 +105,9 @@ pub(super) fn advice(table: &Table, unknown: &str) -> String {
     }
 }
 
+/// Stands where no example would help.
+pub(super) const NO_EXAMPLE: &str = "…";
+
 /// Example of a value for a key that is missing.
 pub(super) fn example(key: &str) -> &'static str {
     match key {
@@ -108,6 +121,7 @@ pub(super) fn example(key: &str) -> &'static str {
         "height" => "16.1",
         "window_height" => "11.0",
         "turns" => "42",
+        "permeability" => "2000",
         "radii" => "[6.6, 10.2]",
         "heights" => "[-4.9, 4.9]",
         "outline" => "[[0, 0], [5, 0], [5, 2], [0, 2]]",
@@ -118,6 +132,6 @@ pub(super) fn example(key: &str) -> &'static str {
         "least" => "\"0.60 mH\"",
         "initial_permeability" => "2300",
         "flux_density" => "\"0.48 T\"",
-        _ => "…",
+        _ => NO_EXAMPLE,
     }
 }

@@ -2,11 +2,10 @@
 
 use super::bh_file;
 use super::keys;
-use super::law_standin as law;
 use super::nearest::nearest;
 use super::values::{Bound, Kind, list_words};
 use super::walk::{Fields, Reader, kind_of};
-use crate::model::{Interpolation, Law, LawError, Material, MaterialId, Subject};
+use crate::model::{BhTable, Interpolation, Law, Material, MaterialId, Subject};
 use crate::units::Dimension;
 use toml::Spanned;
 use toml::de::DeValue;
@@ -86,8 +85,11 @@ impl<'a> Reader<'a> {
         if initial.is_nan() || flux.is_nan() {
             return None;
         }
-        law::saturation(initial, flux)
-            .map_err(|LawError::Row { reason, .. }| self.fault(value.span(), reason, "write what the data sheet says, such as 2300"))
+        Law::saturation(initial, flux)
+            .map_err(|error| {
+                let (message, help) = bh_file::message_and_help(&error);
+                self.fault(value.span(), message, help);
+            })
             .ok()
     }
 
@@ -140,14 +142,14 @@ impl<'a> Reader<'a> {
         if n_before < self.diagnostics.len() {
             return None;
         }
-        match law::table(h, b, interpolation) {
-            Ok(table) => Some(Law::Table(table)),
-            Err(LawError::Row { row, reason }) => {
-                let span = rows.get(row.wrapping_sub(1)).unwrap_or(value).span();
-                self.fault(span, format!("`bh`, row {row}: {reason}"), bh_file::HELP);
-                None
-            }
-        }
+        BhTable::new(h, b, interpolation)
+            .map(Law::Table)
+            .map_err(|error| {
+                let span = error.row().and_then(|row| rows.get(row - 1)).unwrap_or(value).span();
+                let (message, help) = bh_file::message_and_help(&error);
+                self.fault(span, format!("`bh`: {message}"), help);
+            })
+            .ok()
     }
 
     /// The material that `key` names.

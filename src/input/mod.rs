@@ -8,7 +8,6 @@ mod body;
 mod coils;
 mod diagnostic;
 mod keys;
-mod law_standin;
 mod materials;
 mod nearest;
 mod place;
@@ -128,7 +127,7 @@ pub fn replace_material(sheet: &mut Sheet, name: &str, csv_text: &str, file: &st
     };
     let material = &mut sheet.model.materials[index];
     let interpolation = match &material.law {
-        Law::Table(table) => table.interpolation,
+        Law::Table(table) => table.interpolation(),
         _ => Interpolation::Smooth,
     };
     material.law = bh_file::law(csv_text, file, interpolation)?;
@@ -170,7 +169,8 @@ fn size_message(n_bytes: u64) -> String {
 
 /// The parser's own complaints about the text as TOML.
 fn syntax(errors: &[toml::de::Error], text: &str, name: &str) -> Vec<Diagnostic> {
-    let help = "write `key = value`, a table as `[core]`, one of a list as `[[gaps]]`, texts between double quotes";
+    let help = "write `key = value`, a table as `[core]`, one of a list as `[[gaps]]`; a text, and a number with \
+                a unit, stands between double quotes: \"0.3 mm\"";
     let placed = errors.iter().map(|error| {
         let span = error.span().unwrap_or(0..0);
         let message = format!("not valid TOML: {}", error.message().trim().replace('\n', "; "));

@@ -129,7 +129,13 @@ impl<'a> Reader<'a> {
         match complaint {
             None => value,
             Some(complaint) => {
-                let help = self.wanted(kind);
+                let help = match (value.is_finite(), bound) {
+                    (true, Bound::Whole(from, _)) => format!("write a whole number, at least {from}"),
+                    (true, Bound::Positive) if keys::example(key) != keys::NO_EXAMPLE => {
+                        format!("write a number greater than 0, such as {}", keys::example(key))
+                    }
+                    _ => self.wanted(kind),
+                };
                 self.fault(span, format!("`{key}` = {written} {complaint}"), help);
                 f64::NAN
             }
@@ -185,14 +191,11 @@ impl<'a> Reader<'a> {
 
     /// A pair in ascending order.
     pub fn ordered_pair(&mut self, fields: &Fields<'a>, key: &'static str, words: [&str; 2], bound: Bound) -> [f64; 2] {
-        let ends = self.pair(fields, key, &format!("[{}, {}]", words[0], words[1]), bound);
+        let ends = self.pair(fields, key, &format!("{} and {}", words[0], words[1]), bound);
         if ends[1] <= ends[0] {
             let span = fields.span(key);
-            let message = format!(
-                "`{key}` = {}: the {} end is not below the {} end",
-                self.written(&span), words[0], words[1]
-            );
-            let help = format!("write the {} one first, and leave some room between the two", words[0]);
+            let message = format!("`{key}` = {}: {} is not below {}", self.written(&span), words[0], words[1]);
+            let help = "write the smaller number first, and leave some room between the two";
             self.fault(span, message, help);
         }
         ends

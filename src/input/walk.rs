@@ -5,6 +5,7 @@
 
 use super::diagnostic::Diagnostic;
 use super::keys::{self, Table};
+use super::nearest::{distance, nearest};
 use crate::model::Subject;
 use std::collections::BTreeMap;
 use std::ops::Range;
@@ -47,6 +48,17 @@ impl<'a> Fields<'a> {
     /// The key's value is there.
     pub fn has(&self, key: &str) -> bool {
         self.entries.contains_key(key)
+    }
+
+    /// An unknown key is so near to this missing one that its own message says enough.
+    pub fn has_misspelled(&self, key: &str) -> bool {
+        const EDITS_MAX: usize = 2;
+        let known = self.table.keys;
+        self.entries.keys().map(|word| word.get_ref()).any(|word| {
+            !known.contains(&&**word)
+                && distance(word, key) <= EDITS_MAX
+                && nearest(word, known) == Some(key)
+        })
     }
 
     /// Bytes of the value, or of the header when the key is missing.
@@ -101,15 +113,18 @@ impl<'a> Reader<'a> {
         unknown.sort_by_key(|(key, _)| key.span().start);
         for (key, value) in unknown {
             let word: String = key.get_ref().chars().take(60).collect();
-            let what = match value.get_ref() {
-                DeValue::Table(_) if *table == keys::TOP => format!("unknown table `[{word}]`"),
-                DeValue::Array(list) if *table == keys::TOP && list.iter().any(|v| v.get_ref().is_table()) => {
-                    format!("unknown table `[[{word}]]`")
+            let is_top = *table == keys::TOP;
+            let (what, help) = match value.get_ref() {
+                DeValue::Table(_) if is_top => (format!("unknown table `[{word}]`"), keys::table_advice(&word)),
+                DeValue::Array(list) if is_top && list.iter().any(|v| v.get_ref().is_table()) => {
+                    (format!("unknown table `[[{word}]]`"), keys::table_advice(&word))
                 }
-                _ if *table == keys::TOP => format!("unknown key `{word}` at {}", table.shown),
-                _ => format!("unknown key `{word}` in {}", table.shown),
+                _ => {
+                    let preposition = if is_top { "at" } else { "in" };
+                    (format!("unknown key `{word}` {preposition} {}", table.shown), keys::advice(table, &word))
+                }
             };
-            self.fault(key.span(), what, keys::advice(table, &word));
+            self.fault(key.span(), what, help);
         }
         Fields { entries, header: (header.start, header.end), table }
     }
@@ -156,7 +171,7 @@ impl<'a> Reader<'a> {
     /// The value of a key that must be there; notes its absence.
     pub fn must(&mut self, fields: &Fields<'a>, key: &'static str) -> Option<&'a Spanned<DeValue<'a>>> {
         let value = fields.get(key);
-        if value.is_none() {
+        if value.is_none() && !fields.has_misspelled(key) {
             let message = format!("{} lacks `{key}`", fields.table.shown);
             let help = format!("add `{key} = {}`", keys::example(key));
             self.fault(fields.header_span(), message, help);
