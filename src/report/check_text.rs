@@ -5,6 +5,7 @@ use crate::model::{Across, Law, Model, Winding};
 use crate::results::hand::Effective;
 use crate::units::engineering;
 use crate::units::{Henry, PerHenry};
+use serde_json::json;
 
 /// What was understood, beside the model: figures that other stages computed.
 #[derive(Debug, Clone, PartialEq, Default)]
@@ -51,6 +52,36 @@ pub fn check_screen(model: &Model, understood: &Understood) -> String {
         }
     }
     text
+}
+
+/// What `check --json` prints: title, turns and the hand sum's figures in SI; null where there is none.
+pub fn check_json(model: &Model, understood: &Understood) -> String {
+    let effective = understood.effective.map(|e| {
+        json!({
+            "area": e.area, "length": e.length, "volume": e.volume, "c1": e.c1, "c2": e.c2, "area_min": e.area_min
+        })
+    });
+    let windings: Vec<_> = model
+        .windings
+        .iter()
+        .map(|w| json!({ "name": w.name, "turns": w.turns(), "current": w.current }))
+        .collect();
+    let gaps: Vec<_> = understood
+        .gaps
+        .iter()
+        .map(|(region, plain)| json!({ "region": region, "plain_reluctance": plain }))
+        .collect();
+    let file = json!({
+        "program": concat!("gapwright ", env!("CARGO_PKG_VERSION")),
+        "title": model.title,
+        "windings": windings,
+        "effective": effective,
+        "gaps": gaps,
+        "ungapped_inductance_factor": understood.ungapped_inductance_factor,
+        "hand_inductance_factor": understood.hand_inductance_factor,
+        "notes": understood.notes,
+    });
+    format!("{file:#}\n")
 }
 
 fn line(text: &mut String, label: &str, value: &str) {

@@ -54,6 +54,16 @@ pub fn solve_screen(results: &Results, look: &Look) -> String {
     text
 }
 
+/// One line of progress: "round 3   2 852 unknowns   interval 0.09 % wide".
+pub fn progress_line(round: usize, n_unknowns: usize, low: f64, high: f64) -> String {
+    let width = 2.0 * (high - low) / (high + low);
+    format!(
+        "round {round}   {} unknowns   interval {} wide",
+        grouped(n_unknowns),
+        percent(width, 2)
+    )
+}
+
 const BOLD: &str = "1";
 const GOOD: &str = "32";
 const WARN: &str = "33";
