@@ -1,4 +1,6 @@
 //! Integration tests, one binary: text in, text out.
 #![allow(clippy::unwrap_used)]
 
+mod architecture;
 mod messages;
+mod tidy;
