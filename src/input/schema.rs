@@ -71,7 +71,8 @@ quantity!(Ratio, Dimension::Ratio, "a bare ratio, or a text such as \"3 %\"");
 
 fn quantity_schema(dimension: Dimension, description: &str) -> Schema {
     let units = spellings(dimension).join("|").replace('^', "\\^");
-    let pattern = format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
+    let pattern =
+        format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
     json_schema!({
         "description": description,
         "anyOf": [{ "type": "number" }, { "type": "string", "pattern": pattern }],
