@@ -5,7 +5,7 @@ fn main() {
     let exact: f64 = std::env::args().nth(3).map_or(f64::NAN, |s| s.parse().unwrap());
     let text = std::fs::read_to_string(&path).unwrap();
     let sheet = match gapwright::input::read(&text, &path, &|p| {
-        std::fs::read_to_string(p).map_err(|e| e.to_string())
+        std::fs::read_to_string(std::path::Path::new(&path).with_file_name(p)).map_err(|e| e.to_string())
     }) {
         Ok(s) => s,
         Err(d) => {
