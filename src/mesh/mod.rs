@@ -2,6 +2,7 @@
 
 mod refine;
 mod size;
+mod smooth;
 #[cfg(test)]
 mod tests;
 mod topology;
