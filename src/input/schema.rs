@@ -71,7 +71,8 @@ quantity!(Ratio, Dimension::Ratio, "a bare ratio, or a text such as \"3 %\"");
 
 fn quantity_schema(dimension: Dimension, description: &str) -> Schema {
     let units = spellings(dimension).join("|").replace('^', "\\^");
-    let pattern = format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
+    let pattern =
+        format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
     json_schema!({
         "description": description,
         "anyOf": [{ "type": "number" }, { "type": "string", "pattern": pattern }],
@@ -349,4 +350,48 @@ struct HotSpots {
     count: Option<u32>,
     /// Radius of the disc over which B is averaged; 0.2 mm when left out.
     averaging: Option<Length>,
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::keys;
+    use super::*;
+    use std::collections::BTreeSet;
+
+    /// Property names of a definition, those of its alternatives included.
+    fn properties(definition: &Value) -> BTreeSet<String> {
+        let alternatives =
+            ["oneOf", "anyOf"].into_iter().filter_map(|key| definition[key].as_array());
+        let all = alternatives.flatten().chain([definition]);
+        all.filter_map(|d| d["properties"].as_object()).flat_map(|p| p.keys().cloned()).collect()
+    }
+
+    #[test]
+    fn the_schema_has_the_keys_of_the_reader() {
+        let root = schema();
+        let definitions = &root["$defs"];
+        for (definition, table) in [
+            (&root, &keys::TOP),
+            (&definitions["Material"], &keys::MATERIAL),
+            (&definitions["Saturation"], &keys::SATURATION),
+            (&definitions["Core"], &keys::CORE),
+            (&definitions["Gap"], &keys::GAP),
+            (&definitions["Winding"], &keys::WINDING),
+            (&definitions["Section"], &keys::SECTION),
+            (&definitions["Part"], &keys::PART),
+            (&definitions["Probe"], &keys::PROBE),
+            (&definitions["Accuracy"], &keys::ACCURACY),
+            (&definitions["Estimate"], &keys::ESTIMATE),
+            (&definitions["Require"], &keys::REQUIRE),
+            (&definitions["HotSpots"], &keys::HOT_SPOTS),
+        ] {
+            let wanted: BTreeSet<String> = table.keys.iter().map(|key| key.to_string()).collect();
+            assert_eq!(properties(definition), wanted, "{}", table.shown);
+        }
+    }
+
+    #[test]
+    fn null_is_nowhere_allowed() {
+        assert!(!schema().to_string().contains("null"));
+    }
 }

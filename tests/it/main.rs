@@ -2,3 +2,4 @@
 #![allow(clippy::unwrap_used)]
 
 mod messages;
+mod sheets;
