@@ -10,6 +10,7 @@
 
 mod bh_file;
 mod body;
+mod bounds;
 mod coils;
 mod diagnostic;
 mod keys;
@@ -25,6 +26,7 @@ pub use diagnostic::{Diagnostic, render};
 pub use schema::schema;
 
 use crate::model::{Interpolation, Law, Model};
+use crate::units::{Dimension, read as read_quantity};
 use std::path::Path;
 use toml::de::DeTable;
 use walk::{Fields, Reader, Spans};
@@ -148,6 +150,16 @@ pub fn replace_material(
     };
     material.law = bh_file::law(csv_text, file, interpolation)?;
     Ok(())
+}
+
+/// Reads a relative width of the interval ("0.01 %", "1e-4"), with the bounds that the sheet has for it.
+pub fn interval(text: &str) -> Result<f64, String> {
+    let value =
+        read_quantity(text, Dimension::Ratio, (0, 1.0)).map_err(|error| error.to_string())?;
+    match wishes::INTERVALS.complaint(value, bounds::RATIO) {
+        Some(complaint) => Err(format!("`{}` {complaint}", text.trim())),
+        None => Ok(value),
+    }
 }
 
 /// The text of a file's bytes, without a byte-order mark; or where they stop being UTF-8.

@@ -172,6 +172,7 @@ struct Saturation {
 #[schemars(tag = "form", rename_all = "lowercase", deny_unknown_fields)]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 enum Core {
+    #[schemars(extend("oneOf" = [{ "required": ["outer_diameter"] }, { "required": ["outer_legs_area"] }]))]
     Pot {
         material: String,
         /// Either this or `outer_legs_area`.
@@ -230,6 +231,7 @@ enum Across {
 /// Either `turns`, `radii`, `heights`, or `sections` in series.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("oneOf" = [{ "required": ["turns", "radii", "heights"] }, { "required": ["sections"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Winding {
     name: Option<String>,
@@ -274,6 +276,7 @@ enum Corner {
 /// One point `at`, or a line `from` … `to`.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("oneOf" = [{ "required": ["at"] }, { "required": ["from", "to"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Probe {
     name: Option<String>,
@@ -326,6 +329,7 @@ enum NamedCorrection {
 /// A promise; `least`, `most` or both.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("anyOf" = [{ "required": ["least"] }, { "required": ["most"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Require {
     winding: String,

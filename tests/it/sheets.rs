@@ -10,7 +10,7 @@ fn meshes() -> PathBuf {
 }
 
 /// Names and texts of all sheets, sorted.
-fn all() -> Vec<(String, String)> {
+pub fn all() -> Vec<(String, String)> {
     let entries = fs::read_dir(meshes()).unwrap().map(|entry| entry.unwrap().path());
     let mut sheets: Vec<_> = entries
         .filter(|path| path.extension().is_some_and(|e| e == "toml"))

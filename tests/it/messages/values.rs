@@ -103,17 +103,17 @@ fn nan_and_infinity_are_refused() {
         "length = 0.30",
         "length = 1e30",
         expect![[r#"
-        buoy.toml:15:10: `length` = 1e30 is larger than anything that makes sense here
-          help: write a number greater than 0, such as 0.30
-    "#]],
+            buoy.toml:15:10: `length` = 1e30 is beyond 1 km, the most that is accepted
+              help: write a number greater than 0, such as 0.30
+        "#]],
     );
     check_heads(
         "length = 0.30",
         "length = 1e-30",
         expect![[r#"
-        buoy.toml:15:10: `length` = 1e-30 is smaller than anything that makes sense here
-          help: write a number greater than 0, such as 0.30
-    "#]],
+            buoy.toml:15:10: `length` = 1e-30 is below 1 nm, the least that is accepted
+              help: write a number greater than 0, such as 0.30
+        "#]],
     );
 }
 
