@@ -1,7 +1,8 @@
 //! `[core]`, `[[gaps]]` and `[[parts]]` → the magnetic body.
 
+use super::bounds::{Bound, Kind, LENGTH};
 use super::keys;
-use super::values::{Bound, Kind, LENGTH, list_words};
+use super::values::list_words;
 use super::walk::{Fields, Reader};
 use crate::model::{Across, Core, Corner, Form, Gap, Material, Part, Point, PotWall, Subject};
 use crate::units::Dimension;

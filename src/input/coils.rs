@@ -1,8 +1,8 @@
 //! `[[windings]]`, `[[require]]` and `[[probes]]` → who carries current, and what is asked of it.
 
+use super::bounds::{Bound, CURRENT, INDUCTANCE, Kind, LENGTH};
 use super::keys;
 use super::nearest::nearest;
-use super::values::{Bound, CURRENT, INDUCTANCE, Kind, LENGTH};
 use super::walk::{Fields, Reader};
 use crate::model::{InductanceKind, Probe, Requirement, Section, Subject, Winding};
 use std::collections::BTreeMap;
@@ -14,9 +14,14 @@ impl<'a> Reader<'a> {
         for fields in self.list(top, "windings", &keys::WINDING) {
             windings.push(self.winding(&fields, windings.len()));
         }
-        if !top.has("windings") {
+        let is_absent = !top.has("windings") && !top.has_misspelled("windings");
+        let is_empty_list = top
+            .get("windings")
+            .is_some_and(|v| v.get_ref().as_array().is_some_and(|list| list.is_empty()));
+        if is_absent || is_empty_list {
             let help = "add `[[windings]]` with `turns = 42`, `radii = [6.6, 10.2]` and `heights = [-4.9, 4.9]`";
-            self.fault(0..0, "the sheet has no windings", help);
+            let span = top.get("windings").map_or(0..0, |value| value.span());
+            self.fault(span, "the sheet has no windings", help);
         } else if !windings.is_empty() && windings.iter().all(|winding| winding.current == 0.0) {
             let subject = Subject::Winding { winding: 0, section: 0 };
             let span = self.spans.get(&(subject, "current")).cloned().unwrap_or(0..0);

@@ -1,10 +1,11 @@
 //! `[materials.NAME]` → [`Material`], inline B–H pairs included; tables in files are read by `bh_file`.
 
 use super::bh_file;
+use super::bounds::{Bound, Kind};
 use super::keys;
 use super::nearest::nearest;
-use super::values::{Bound, Kind, list_words};
-use super::walk::{Fields, Reader, kind_of};
+use super::values::{is_harmful, list_words};
+use super::walk::{Fields, ITEMS_MAX, Reader, kind_of};
 use crate::model::{BhTable, Interpolation, Law, Material, MaterialId, Subject};
 use crate::units::Dimension;
 use toml::Spanned;
@@ -24,6 +25,11 @@ impl<'a> Reader<'a> {
         };
         let mut named: Vec<_> = entries.iter().collect();
         named.sort_by_key(|(name, _)| name.span().start);
+        if ITEMS_MAX < named.len() {
+            let message = format!("{} materials, where at most {ITEMS_MAX} are read", named.len());
+            self.fault(value.span(), message, "leave out those that no part is made of");
+            return Vec::new();
+        }
         let mut materials = Vec::new();
         for (name, value) in named {
             let DeValue::Table(entries) = value.get_ref() else {
@@ -45,7 +51,7 @@ impl<'a> Reader<'a> {
     }
 
     fn material_name(&mut self, name: &Spanned<std::borrow::Cow<'a, str>>) {
-        if name.get_ref().trim().is_empty() || name.get_ref().chars().any(char::is_control) {
+        if name.get_ref().trim().is_empty() || name.get_ref().chars().any(is_harmful) {
             self.fault(
                 name.span(),
                 "a material's name is empty or holds a control character",

@@ -3,8 +3,14 @@
 //! Opens no file: the caller hands over the text, and a function that fetches the texts which the
 //! sheet names. Tables and keys are in `keys`; each module below reads a few of the tables.
 
+#![allow(
+    clippy::result_large_err,
+    reason = "a diagnostic is built once, when reading ends; its size costs nothing"
+)]
+
 mod bh_file;
 mod body;
+mod bounds;
 mod coils;
 mod diagnostic;
 mod keys;
@@ -20,6 +26,7 @@ pub use diagnostic::{Diagnostic, render};
 pub use schema::schema;
 
 use crate::model::{Interpolation, Law, Model};
+use crate::units::{Dimension, read as read_quantity};
 use std::path::Path;
 use toml::de::DeTable;
 use walk::{Fields, Reader, Spans};
@@ -145,6 +152,16 @@ pub fn replace_material(
     Ok(())
 }
 
+/// Reads a relative width of the interval ("0.01 %", "1e-4"), with the bounds that the sheet has for it.
+pub fn interval(text: &str) -> Result<f64, String> {
+    let value =
+        read_quantity(text, Dimension::Ratio, (0, 1.0)).map_err(|error| error.to_string())?;
+    match wishes::INTERVALS.complaint(value, bounds::RATIO) {
+        Some(complaint) => Err(format!("`{}` {complaint}", text.trim())),
+        None => Ok(value),
+    }
+}
+
 /// The text of a file's bytes, without a byte-order mark; or where they stop being UTF-8.
 pub fn decode(bytes: &[u8], name: &str) -> Result<String, Diagnostic> {
     match std::str::from_utf8(bytes) {
@@ -179,11 +196,7 @@ fn too_large(n_bytes: u64, name: &str) -> Diagnostic {
 }
 
 fn size_message(n_bytes: u64) -> String {
-    format!(
-        "the file has {:.1} MB; at most {} MB are read",
-        n_bytes as f64 / 1e6,
-        FILE_BYTES_MAX / 1_000_000
-    )
+    format!("the file has {n_bytes} bytes; at most {FILE_BYTES_MAX} are read")
 }
 
 /// The parser's own complaints about the text as TOML.

@@ -1,5 +1,6 @@
 //! Single values of the sheet: numbers and quantities, pairs and points, texts and choices.
 
+use super::bounds::{Bound, Kind, LENGTH};
 use super::keys;
 use super::nearest::nearest;
 use super::walk::{Fields, Reader, kind_of};
@@ -7,43 +8,6 @@ use crate::model::Point;
 use crate::units::{Dimension, QuantityError, decimal, read};
 use toml::Spanned;
 use toml::de::DeValue;
-
-/// What a number is.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(super) enum Kind {
-    /// A number without a unit: turns, permeability, a count.
-    Pure,
-    Of(Dimension),
-}
-
-pub(super) const LENGTH: Kind = Kind::Of(Dimension::Length);
-pub(super) const CURRENT: Kind = Kind::Of(Dimension::Current);
-pub(super) const INDUCTANCE: Kind = Kind::Of(Dimension::Inductance);
-
-/// Which numbers are allowed.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(super) enum Bound {
-    Any,
-    Positive,
-    NotNegative,
-    NotZero,
-    /// Whole numbers from … to ….
-    Whole(u32, u32),
-    /// From … to …, as they are printed.
-    Between([f64; 2], &'static str),
-}
-
-impl Kind {
-    /// Smallest positive and largest magnitude that make sense: far outside any real core, close
-    /// enough that squares and ratios of such numbers stay within double precision.
-    fn limits(self) -> [f64; 2] {
-        match self {
-            Kind::Pure => [1e-6, 1e9],
-            Kind::Of(Dimension::Length) => [1e-9, 1e3],
-            Kind::Of(_) => [1e-15, 1e12],
-        }
-    }
-}
 
 impl<'a> Reader<'a> {
     /// The number under a key that must be there; NaN when it is not usable.
@@ -111,7 +75,7 @@ impl<'a> Reader<'a> {
             }
             (other, _) => {
                 let message =
-                    format!("`{key}` must be {}, but it is {}", kind_words(kind), kind_of(other));
+                    format!("`{key}` must be {}, but it is {}", kind.words(), kind_of(other));
                 let help = self.wanted(kind);
                 self.fault(span, message, help);
                 return f64::NAN;
@@ -137,45 +101,17 @@ impl<'a> Reader<'a> {
         kind: Kind,
         bound: Bound,
     ) -> f64 {
-        let written = self.written(&span);
-        let [least, most] = kind.limits();
-        let complaint = match bound {
-            _ if !value.is_finite() => Some("is not a finite number".to_string()),
-            Bound::Positive if value <= 0.0 => Some("must be greater than 0".to_string()),
-            Bound::NotNegative if value < 0.0 => Some("must not be negative".to_string()),
-            Bound::NotZero if value == 0.0 => Some("must not be 0".to_string()),
-            Bound::Whole(from, to)
-                if value.fract() != 0.0 || !(f64::from(from)..=f64::from(to)).contains(&value) =>
-            {
-                Some(format!("must be a whole number from {from} to {to}"))
+        let Some(complaint) = bound.complaint(value, kind) else { return value };
+        let help = match (value.is_finite(), bound) {
+            (true, Bound::Whole(from, _)) => format!("write a whole number, at least {from}"),
+            (true, Bound::Positive) if keys::example(key) != keys::NO_EXAMPLE => {
+                format!("write a number greater than 0, such as {}", keys::example(key))
             }
-            Bound::Between([from, to], words) if !(from..=to).contains(&value) => {
-                Some(format!("must lie {words}"))
-            }
-            _ if most < value.abs() => {
-                Some("is larger than anything that makes sense here".to_string())
-            }
-            _ if value != 0.0 && value.abs() < least => {
-                Some("is smaller than anything that makes sense here".to_string())
-            }
-            _ => None,
+            _ => self.wanted(kind),
         };
-        match complaint {
-            None => value,
-            Some(complaint) => {
-                let help = match (value.is_finite(), bound) {
-                    (true, Bound::Whole(from, _)) => {
-                        format!("write a whole number, at least {from}")
-                    }
-                    (true, Bound::Positive) if keys::example(key) != keys::NO_EXAMPLE => {
-                        format!("write a number greater than 0, such as {}", keys::example(key))
-                    }
-                    _ => self.wanted(kind),
-                };
-                self.fault(span, format!("`{key}` = {written} {complaint}"), help);
-                f64::NAN
-            }
-        }
+        let written = self.written(&span);
+        self.fault(span, format!("`{key}` = {written} {complaint}"), help);
+        f64::NAN
     }
 
     /// "write a length …": the help of most number mistakes.
@@ -286,7 +222,7 @@ impl<'a> Reader<'a> {
         };
         let complaint = if text.trim().is_empty() {
             "is empty"
-        } else if text.chars().any(char::is_control) {
+        } else if text.chars().any(is_harmful) {
             "holds a control character"
         } else if LETTERS_MAX < text.chars().count() {
             "is longer than 120 letters"
@@ -321,17 +257,16 @@ impl<'a> Reader<'a> {
     }
 }
 
-fn kind_words(kind: Kind) -> &'static str {
-    match kind {
-        Kind::Pure => "a number",
-        Kind::Of(dimension) => dimension.words().0,
-    }
-}
-
 /// "a list of 3", "a text".
 pub(super) fn list_words(value: &DeValue<'_>) -> String {
     match value {
         DeValue::Array(list) => format!("a list of {}", list.len()),
         other => kind_of(other).to_string(),
     }
+}
+
+/// Letters that would drive a terminal or turn the direction of writing.
+pub(super) fn is_harmful(letter: char) -> bool {
+    letter.is_control()
+        || matches!(letter, '\u{200e}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}')
 }

@@ -18,6 +18,9 @@ pub(super) type Spans = BTreeMap<(Subject, &'static str), Range<usize>>;
 /// Fetches the text of a file that the sheet names, or says why it cannot.
 pub(super) type ReadFile<'a> = &'a dyn Fn(&str) -> Result<String, String>;
 
+/// Most entries of one list; real sheets have a dozen.
+pub(super) const ITEMS_MAX: usize = 1000;
+
 /// The state of one reading.
 pub(super) struct Reader<'a> {
     pub text: &'a str,
@@ -175,6 +178,12 @@ impl<'a> Reader<'a> {
             self.fault(value.span(), message, help);
             return Vec::new();
         };
+        if ITEMS_MAX < list.len() {
+            let message =
+                format!("{} entries of `{key}`, where at most {ITEMS_MAX} are read", list.len());
+            self.fault(value.span(), message, "leave out what does not matter for the field");
+            return Vec::new();
+        }
         let mut tables = Vec::new();
         for item in list.iter() {
             match item.get_ref() {

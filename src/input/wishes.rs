@@ -1,13 +1,10 @@
 //! `[accuracy]`, `[estimate]`, `[hot_spots]` → what the answer should be measured by.
 
+use super::bounds::{Bound, INDUCTANCE, Kind, RATIO};
 use super::keys;
-use super::values::{Bound, INDUCTANCE, Kind};
 use super::walk::{Fields, Reader};
 use crate::model::{Accuracy, Claim, Estimate, GapCorrection, HotSpotWish};
-use crate::units::Dimension;
 use toml::de::DeValue;
-
-const RATIO: Kind = Kind::Of(Dimension::Ratio);
 
 /// Widths that can be asked for: below 1e-7 rounding and quadrature speak, above one half no one does.
 pub(super) const INTERVALS: Bound = Bound::Between([1e-7, 0.5], "from 0.00001 % to 50 %");
