@@ -27,9 +27,17 @@ pub struct Dimensions {
 impl Core {
     /// Dimensions of the assembled core: every spacer in `gaps` lifts the halves apart by its length.
     pub fn dimensions(&self, gaps: &[Gap]) -> Dimensions {
-        let spacers: Meter = gaps.iter().filter(|g| g.across == Across::Spacer).map(|g| g.length).sum();
+        let spacers: Meter =
+            gaps.iter().filter(|g| g.across == Across::Spacer).map(|g| g.length).sum();
         let (hole, post, plate, wall_radii, window, height) = match self.form {
-            Form::Pot { wall, wall_inner_diameter, post_diameter, hole_diameter, height, window_height } => {
+            Form::Pot {
+                wall,
+                wall_inner_diameter,
+                post_diameter,
+                hole_diameter,
+                height,
+                window_height,
+            } => {
                 let inner = 0.5 * wall_inner_diameter;
                 let outer = match wall {
                     PotWall::OuterDiameter(diameter) => 0.5 * diameter,

@@ -57,8 +57,18 @@ pub enum Form {
         height: Meter,
         window_height: Meter,
     },
-    Drum { flange_diameter: Meter, post_diameter: Meter, hole_diameter: Meter, height: Meter, window_height: Meter },
-    Rod { diameter: Meter, hole_diameter: Meter, height: Meter },
+    Drum {
+        flange_diameter: Meter,
+        post_diameter: Meter,
+        hole_diameter: Meter,
+        height: Meter,
+        window_height: Meter,
+    },
+    Rod {
+        diameter: Meter,
+        hole_diameter: Meter,
+        height: Meter,
+    },
 }
 
 /// A core given by its form.

@@ -1,0 +1,10 @@
+//! Validation: the solver against mathematics that shares no line with it, and against published values.
+//!
+//! `cargo test --test validation` runs everything; `RUN_SLOW_TESTS=1` runs the long campaigns in full.
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
+
+mod coils;
+mod elliptic;
+mod quadrature;
+mod random;
+mod references;
