@@ -2,9 +2,13 @@
 //!
 //! `input` → `model` → `geometry` → `mesh` → `adapt` (`fem`, `solve`, `bound`) → `results` → `report`.
 
+pub mod adapt;
+pub mod bound;
+pub mod fem;
 pub mod geometry;
 pub mod mesh;
 pub mod model;
 pub mod results;
 pub mod solve;
+pub mod sparse;
 pub mod units;

@@ -1,6 +1,9 @@
 //! `Outline` → [`Mesh`] by spade and our own size field; newest-vertex bisection. Knows no material.
 
-use crate::geometry::{Cap, RegionId};
+pub mod bisect;
+pub mod fans;
+
+pub use crate::geometry::{Cap, RegionId};
 use crate::model::Point;
 
 /// Which chart a triangle lives in.

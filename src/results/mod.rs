@@ -1,5 +1,7 @@
 //! `Solution` → inductance, ledger, gap factors, hot spots, forces. All SI; formats live in `report`.
 
+pub mod hand;
+
 use crate::units::{Ampere, CubicMeter, Henry, Joule, Meter, Newton, PerHenry, Tesla, Weber};
 
 /// A quantity with its guaranteed ends.

@@ -1,0 +1,16 @@
+//! Quadratic finite elements for ψ = r·A_φ in the hierarchical basis, axis rule and cap tensor included.
+//!
+//! Knows no file format, no solver and no report. The equations are numbered in DEVELOPERS.md.
+
+pub mod assemble;
+pub mod coefficients;
+pub mod element;
+pub mod evaluate;
+pub mod moments;
+pub mod quadrature;
+pub mod space;
+
+pub use coefficients::{Coefficients, Reluctivity};
+pub use moments::Moments;
+pub use quadrature::Rules;
+pub use space::Space;

@@ -1,0 +1,186 @@
+//! Second moments of the coefficient on each triangle: all that stiffness and bound need of it.
+//!
+//! k_mn = ∫ λ_m λ_n K̂ and c_mn = ∫ λ_m λ_n C with C = K̂/det K̂, both over the reference triangle (eq. 7).
+
+use super::coefficients::{Coefficients, Reluctivity};
+use super::element::{Frame, Pair, Tensor, apply, blend, contract};
+use super::quadrature::{Rule, Rules};
+use crate::mesh::Mesh;
+use crate::model::Law;
+use rayon::prelude::*;
+
+/// Vertex pairs in storage order.
+pub const PAIRS: [(usize, usize); 6] = [(0, 0), (1, 1), (2, 2), (0, 1), (1, 2), (2, 0)];
+/// Storage index of the pair (m, n).
+pub const PAIR_INDEX: [[usize; 3]; 3] = [[0, 3, 5], [3, 1, 4], [5, 4, 2]];
+
+/// Moments of one triangle: primal (with K̂) and dual (with C).
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Moments {
+    pub k: [Tensor; 6],
+    pub c: [Tensor; 6],
+}
+
+impl Moments {
+    fn add(&mut self, weight: f64, lambda: &[f64; 3], k: Tensor) {
+        let det = k[0] * k[2] - k[1] * k[1];
+        let dual = weight / det;
+        for (index, (m, n)) in PAIRS.into_iter().enumerate() {
+            let product = lambda[m] * lambda[n];
+            for i in 0..3 {
+                self.k[index][i] += weight * product * k[i];
+                self.c[index][i] += dual * product * k[i];
+            }
+        }
+    }
+
+    /// On a triangle with an axis edge the moments between axis vertices diverge, and the gradients that they
+    /// multiply vanish exactly: store 0 for them.
+    fn clear_axis_pairs(&mut self, frame: &Frame) {
+        if frame.has_axis_edge() {
+            for (index, (m, n)) in PAIRS.into_iter().enumerate() {
+                if frame.on_axis(m) && frame.on_axis(n) {
+                    self.k[index] = [0.0; 3];
+                }
+            }
+        }
+    }
+}
+
+/// The rule for a triangle: collapsed where it touches the axis or infinity, plain elsewhere.
+pub fn rule_of<'a>(rules: &'a Rules, frame: &Frame) -> &'a Rule {
+    frame.collapse.map_or(&rules.plain, |k| &rules.collapsed[k])
+}
+
+/// Moments for a constant reluctivity [m/H].
+pub fn constant_moments(frame: &Frame, rule: &Rule, reluctivity: f64) -> Moments {
+    let mut moments = Moments::default();
+    if frame.gauge.is_some() {
+        for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+            let (kappa, metric) = frame.coefficient(lambda, reluctivity);
+            moments.add(weight, lambda, metric.map(|s| kappa * s));
+        }
+    } else {
+        // Inside the metric is constant: two scalars a pair are enough.
+        let mut scalar = [[0.0; 2]; 6];
+        let r = frame.corners.map(|c| c.r);
+        for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+            let radius = lambda[0] * r[0] + lambda[1] * r[1] + lambda[2] * r[2];
+            let (primal, dual) = (weight * reluctivity / radius, weight * radius / reluctivity);
+            for (index, (m, n)) in PAIRS.into_iter().enumerate() {
+                let product = lambda[m] * lambda[n];
+                scalar[index][0] += primal * product;
+                scalar[index][1] += dual * product;
+            }
+        }
+        for index in 0..6 {
+            moments.k[index] = frame.metric.map(|s| scalar[index][0] * s);
+            moments.c[index] = frame.metric.map(|s| scalar[index][1] * s);
+        }
+    }
+    moments.clear_axis_pairs(frame);
+    moments
+}
+
+/// |∇ψ|/r at a point of an inside triangle from the reference gradient u: √(u·S u/|det J|)/r [T].
+#[inline]
+pub fn flux_density(frame: &Frame, radius: f64, u: Pair) -> f64 {
+    (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / radius
+}
+
+/// Moments of the tangent tensor (ν·I + (dH/dB − ν)·b̂b̂ᵀ)/r at the field with vertex gradients `gradients` (eq. 12).
+pub fn tangent_moments(frame: &Frame, rule: &Rule, law: &Law, gradients: &[Pair; 3]) -> Moments {
+    let mut moments = Moments::default();
+    for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+        let radius = frame.position(lambda).r;
+        let u = blend(lambda, gradients);
+        let (nu, differential) = law.reluctivity(flux_density(frame, radius, u));
+        let mut k = frame.metric.map(|s| nu / radius * s);
+        let square = contract(u, frame.metric, u);
+        if 0.0 < square {
+            let su = apply(frame.metric, u);
+            let extra = (differential - nu) / (radius * square);
+            k[0] += extra * su[0] * su[0];
+            k[1] += extra * su[0] * su[1];
+            k[2] += extra * su[1] * su[1];
+        }
+        moments.add(weight, lambda, k);
+    }
+    moments.clear_axis_pairs(frame);
+    moments
+}
+
+/// w_m = ∫ λ_m σ̂ with σ̂ = K̂(B)∇ψ, and ∫ r·w(B)·|det J|, of a triangle with a saturating law.
+pub fn saturating_flux(
+    frame: &Frame,
+    rule: &Rule,
+    law: &Law,
+    gradients: &[Pair; 3],
+) -> ([Pair; 3], f64) {
+    let (mut flux, mut energy) = ([[0.0; 2]; 3], 0.0);
+    for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+        let radius = frame.position(lambda).r;
+        let u = blend(lambda, gradients);
+        let b = flux_density(frame, radius, u);
+        let (nu, _) = law.reluctivity(b);
+        energy += weight * radius * frame.det_abs * law.energy_density(b);
+        let su = apply(frame.metric, u);
+        let kappa = weight * nu / radius;
+        for m in 0..3 {
+            flux[m][0] += kappa * lambda[m] * su[0];
+            flux[m][1] += kappa * lambda[m] * su[1];
+        }
+    }
+    (flux, energy)
+}
+
+/// w_m = Σ_n k_mn uⁿ: ∫ λ_m σ̂ for a constant law.
+#[inline]
+pub fn linear_flux(k: &[Tensor; 6], gradients: &[Pair; 3]) -> [Pair; 3] {
+    let mut flux = [[0.0; 2]; 3];
+    for m in 0..3 {
+        for n in 0..3 {
+            let part = apply(k[PAIR_INDEX[m][n]], gradients[n]);
+            flux[m][0] += part[0];
+            flux[m][1] += part[1];
+        }
+    }
+    flux
+}
+
+/// ½ ∫ dψ·K̂ dψ of a triangle with a constant law.
+#[inline]
+pub fn linear_energy(k: &[Tensor; 6], gradients: &[Pair; 3]) -> f64 {
+    let flux = linear_flux(k, gradients);
+    0.5 * (0..3).map(|m| gradients[m][0] * flux[m][0] + gradients[m][1] * flux[m][1]).sum::<f64>()
+}
+
+/// Recomputes the moments of the `changed` triangles that carry a constant law; the vector grows with the mesh.
+pub fn update_constant(
+    mesh: &Mesh,
+    coefficients: &Coefficients,
+    rules: &Rules,
+    changed: &[u32],
+    all: &mut Vec<Moments>,
+) {
+    all.resize(mesh.triangles.len(), Moments::default());
+    let fresh: Vec<Option<Moments>> = changed
+        .par_iter()
+        .with_min_len(512)
+        .map(|&t| {
+            let t = t as usize;
+            match &coefficients.reluctivity[mesh.regions[t].0 as usize] {
+                Reluctivity::Constant(nu) => {
+                    let frame = Frame::new(mesh, t);
+                    Some(constant_moments(&frame, rule_of(rules, &frame), *nu))
+                }
+                Reluctivity::Saturating(_) => None,
+            }
+        })
+        .collect();
+    for (&t, moments) in changed.iter().zip(fresh) {
+        if let Some(moments) = moments {
+            all[t as usize] = moments;
+        }
+    }
+}

@@ -1,0 +1,245 @@
+//! Newest-vertex bisection: refines marked triangles, keeps the mesh conforming, carries ψ along.
+//!
+//! The closure crosses the shared polygon edges and the cap's rays like any other edge. Spaces nest, so ψ is carried over
+//! exactly: a new vertex takes the edge's midpoint value, new bubbles follow from second differences.
+//! Source: W. F. Mitchell, ACM Trans. Math. Softw. 15 (1989) 326 (bisection by newest vertex).
+
+use super::{Mesh, Point};
+
+/// Marks an edge that is not cut.
+const UNCUT: u32 = u32::MAX;
+
+/// The coefficients that travel with the mesh: ψ on vertices, bubbles on edges.
+#[derive(Debug)]
+pub struct Carried<'a> {
+    pub vertex: &'a mut Vec<f64>,
+    pub edge: &'a mut Vec<f64>,
+}
+
+/// Cuts all three edges of every marked triangle, closes the mesh, and returns the triangles that changed, ascending.
+///
+/// - `marked`: triangles to refine
+/// - `carried`: coefficients on the old mesh in, on the new mesh out
+pub fn bisect(mesh: &mut Mesh, marked: &[u32], carried: &mut Carried) -> Vec<u32> {
+    let is_cut = close(mesh, marked);
+    let cut = cut_edges(mesh, &is_cut, carried);
+    let n_old = mesh.triangles.len();
+    let mut changed = Vec::new();
+    for t in 0..n_old {
+        let edges = mesh.triangle_edges[t];
+        if cut[edges[0] as usize].vertex == UNCUT {
+            continue;
+        }
+        changed.push(t as u32);
+        let second = bisect_triangle(mesh, t, &cut, Generation::First, carried);
+        for child in [t, second] {
+            // The parent's other edges are the children's refinement edges; they may be cut as well.
+            let e = mesh.triangle_edges[child][0] as usize;
+            if e < cut.len() && cut[e].vertex != UNCUT {
+                bisect_triangle(mesh, child, &cut, Generation::Second, carried);
+            }
+        }
+    }
+    changed.extend(n_old as u32..mesh.triangles.len() as u32);
+    mesh.level_sizes.push(mesh.points.len());
+    changed
+}
+
+/// Edges to cut: those of the marked triangles, and the refinement edge wherever any other edge is cut.
+fn close(mesh: &Mesh, marked: &[u32]) -> Vec<bool> {
+    let pairs = super::fans::edge_triangles(mesh);
+    let mut is_cut = vec![false; mesh.edges.len()];
+    let mut stack: Vec<u32> = Vec::new();
+    for &t in marked {
+        for e in mesh.triangle_edges[t as usize] {
+            if !is_cut[e as usize] {
+                is_cut[e as usize] = true;
+                stack.push(e);
+            }
+        }
+    }
+    // Every edge enters the stack at most once.
+    while let Some(e) = stack.pop() {
+        for t in pairs[e as usize] {
+            if t == super::fans::NO_TRIANGLE {
+                continue;
+            }
+            let first = mesh.triangle_edges[t as usize][0];
+            if !is_cut[first as usize] {
+                is_cut[first as usize] = true;
+                stack.push(first);
+            }
+        }
+    }
+    is_cut
+}
+
+/// What became of an old edge: its middle vertex and its second half (the first half keeps the number).
+#[derive(Debug, Clone, Copy)]
+struct Cut {
+    vertex: u32,
+    second_half: u32,
+    /// Bubble coefficient before the cut.
+    bubble: f64,
+}
+
+/// Makes the middle vertices and halves of all cut edges, in edge order.
+fn cut_edges(mesh: &mut Mesh, is_cut: &[bool], carried: &mut Carried) -> Vec<Cut> {
+    let mut cut = Vec::with_capacity(is_cut.len());
+    for (e, &is_cut) in is_cut.iter().enumerate() {
+        let bubble = carried.edge[e];
+        if !is_cut {
+            cut.push(Cut { vertex: UNCUT, second_half: UNCUT, bubble });
+            continue;
+        }
+        let [a, b] = mesh.edges[e];
+        let (p, q) = (mesh.points[a as usize], mesh.points[b as usize]);
+        let vertex = mesh.points.len() as u32;
+        mesh.points.push(Point { r: 0.5 * (p.r + q.r), z: 0.5 * (p.z + q.z) });
+        mesh.on_axis.push(mesh.on_axis[a as usize] && mesh.on_axis[b as usize]);
+        mesh.parents.push([a, b]);
+        carried
+            .vertex
+            .push(0.5 * (carried.vertex[a as usize] + carried.vertex[b as usize]) + bubble);
+        let second_half = mesh.edges.len() as u32;
+        mesh.edges[e] = [a, vertex];
+        mesh.edges.push([vertex, b]);
+        // A quadratic restricted to half of the edge has a quarter of the second difference.
+        carried.edge[e] = 0.25 * bubble;
+        carried.edge.push(0.25 * bubble);
+        cut.push(Cut { vertex, second_half, bubble });
+    }
+    cut
+}
+
+/// A triangle is cut at most twice in depth in one call.
+#[derive(Debug, Clone, Copy, PartialEq)]
+enum Generation {
+    /// Its edges are those of the old mesh.
+    First,
+    /// A child of this call: one edge of the old mesh, the refinement edge; the others are halves or new.
+    Second,
+}
+
+/// Cuts triangle t across its refinement edge; child one replaces it, child two is appended and returned.
+fn bisect_triangle(
+    mesh: &mut Mesh,
+    t: usize,
+    cut: &[Cut],
+    generation: Generation,
+    carried: &mut Carried,
+) -> usize {
+    let [a, b, c] = mesh.triangles[t];
+    let [ab, bc, ca] = mesh.triangle_edges[t];
+    let Cut { vertex: m, second_half, bubble } = cut[ab as usize];
+    let (half_a, half_b) =
+        if mesh.edges[ab as usize][0] == a { (ab, second_half) } else { (second_half, ab) };
+
+    // ψ along m → c: bubble (b_bc + b_ca)/2 − b_ab/4 with the uncut edges' coefficients (eq. 13).
+    let whole = |e: u32| match generation {
+        Generation::First => cut[e as usize].bubble,
+        Generation::Second => carried.edge[e as usize],
+    };
+    let inner_bubble = 0.5 * (whole(bc) + whole(ca)) - 0.25 * bubble;
+    let inner = mesh.edges.len() as u32;
+    mesh.edges.push([m, c]);
+    carried.edge.push(inner_bubble);
+
+    mesh.triangles[t] = [c, a, m];
+    mesh.triangle_edges[t] = [ca, half_a, inner];
+    mesh.triangles.push([b, c, m]);
+    mesh.triangle_edges.push([bc, inner, half_b]);
+    mesh.regions.push(mesh.regions[t]);
+    mesh.charts.push(mesh.charts[t]);
+    mesh.triangles.len() - 1
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::mesh::{Cap, Chart, RegionId};
+
+    /// The square 1 < r < 2, 0 < z < 1 in two triangles, no axis.
+    fn square() -> Mesh {
+        let point = |r, z| Point { r, z };
+        Mesh {
+            points: vec![point(1.0, 0.0), point(2.0, 0.0), point(2.0, 1.0), point(1.0, 1.0)],
+            on_axis: vec![false; 4],
+            triangles: vec![[2, 0, 1], [0, 2, 3]],
+            triangle_edges: vec![[0, 1, 2], [0, 3, 4]],
+            edges: vec![[0, 2], [0, 1], [1, 2], [2, 3], [3, 0]],
+            regions: vec![RegionId(0); 2],
+            charts: vec![Chart::Inside; 2],
+            parents: vec![[u32::MAX; 2]; 4],
+            level_sizes: vec![4],
+            cap: Cap { center_z: 0.0, radius: 10.0, n_facets: 8 },
+        }
+    }
+
+    fn area(mesh: &Mesh, t: usize) -> f64 {
+        let [a, b, c] = mesh.triangles[t].map(|v| mesh.points[v as usize]);
+        0.5 * ((b.r - a.r) * (c.z - a.z) - (c.r - a.r) * (b.z - a.z))
+    }
+
+    /// ψ at (r, z), found by searching all triangles.
+    fn evaluate(mesh: &Mesh, vertex: &[f64], edge: &[f64], at: Point) -> f64 {
+        for t in 0..mesh.triangles.len() {
+            let corners = mesh.triangles[t].map(|v| mesh.points[v as usize]);
+            let part =
+                |p: Point, q: Point| (p.r - at.r) * (q.z - at.z) - (q.r - at.r) * (p.z - at.z);
+            let whole = 2.0 * area(mesh, t);
+            let lambda =
+                [0, 1, 2].map(|k| part(corners[(k + 1) % 3], corners[(k + 2) % 3]) / whole);
+            if lambda.iter().all(|&l| -1e-12 < l) {
+                return (0..3)
+                    .map(|k| {
+                        let pair = lambda[k] * lambda[(k + 1) % 3];
+                        lambda[k] * vertex[mesh.triangles[t][k] as usize]
+                            + 4.0 * pair * edge[mesh.triangle_edges[t][k] as usize]
+                    })
+                    .sum();
+            }
+        }
+        panic!("no triangle holds {at:?}");
+    }
+
+    #[test]
+    fn carries_quadratics_over_exactly_and_stays_conforming() {
+        let mut mesh = square();
+        let mut vertex = vec![0.3, -1.0, 2.0, 0.7];
+        let mut edge = vec![0.5, -0.2, 0.9, 1.1, -0.4];
+        let samples: Vec<Point> = (0..40)
+            .map(|k| Point { r: 1.0 + (0.137 * k as f64) % 1.0, z: (0.311 * k as f64) % 1.0 })
+            .collect();
+        let before: Vec<f64> =
+            samples.iter().map(|&p| evaluate(&mesh, &vertex, &edge, p)).collect();
+        for round in 0..5 {
+            let marked: Vec<u32> =
+                (0..mesh.triangles.len() as u32).filter(|t| t % 3 == round % 2).collect();
+            let n_before = mesh.triangles.clone();
+            let changed =
+                bisect(&mut mesh, &marked, &mut Carried { vertex: &mut vertex, edge: &mut edge });
+            for (t, old) in n_before.iter().enumerate() {
+                assert_eq!(changed.contains(&(t as u32)), mesh.triangles[t] != *old);
+            }
+            let total: f64 = (0..mesh.triangles.len()).map(|t| area(&mesh, t)).sum();
+            assert!((total - 1.0).abs() < 1e-14);
+            for t in 0..mesh.triangles.len() {
+                assert!(0.0 < area(&mesh, t));
+                for k in 0..3 {
+                    let mut ends = mesh.edges[mesh.triangle_edges[t][k] as usize];
+                    let mut corners = [mesh.triangles[t][k], mesh.triangles[t][(k + 1) % 3]];
+                    ends.sort();
+                    corners.sort();
+                    assert_eq!(ends, corners, "triangle {t} edge {k}");
+                }
+            }
+            for (p, before) in samples.iter().zip(&before) {
+                let after = evaluate(&mesh, &vertex, &edge, *p);
+                assert!((after - before).abs() < 1e-13, "{p:?}: {before} became {after}");
+            }
+        }
+        // Euler: vertices − edges + triangles = 1 for a disc without hanging nodes.
+        assert_eq!(mesh.points.len() + mesh.triangles.len(), mesh.edges.len() + 1);
+    }
+}

@@ -1,0 +1,147 @@
+//! Force on a gap by virtual work in domain form, on one mesh (eq. 15).
+//!
+//! The nodes of the gap's faces move apart, others follow or stay; the derivative of every triangle's energy at fixed ψ and
+//! fixed current is exact, so no second solution and no difference quotient is needed.
+//! Source: J. L. Coulomb, IEEE Trans. Magn. 19 (1983) 2514 (local derivative of the Jacobian; from memory).
+
+use super::sample::Sampler;
+use crate::fem::element::{Pair, blend, contract, dot, wedge};
+use crate::fem::moments::{flux_density, rule_of};
+use crate::fem::Reluctivity;
+use crate::geometry::{Leg, RegionKind};
+use crate::mesh::Chart;
+use crate::model::{Across, Model, Point};
+use crate::units::{Meter, Newton};
+use std::f64::consts::TAU;
+
+/// −dW'/dl at fixed currents for gap `gap` growing [N]: positive pulls the gap shut.
+pub fn gap_force(model: &Model, sampler: &Sampler, gap: usize) -> Newton {
+    let velocity = match model.gaps[gap].across {
+        Across::Spacer => spacer_velocity(sampler),
+        Across::Post | Across::Wall => ground_velocity(model, sampler, gap),
+    };
+    let mesh = &sampler.outcome.mesh;
+    let mut change = 0.0;
+    for (t, corners) in mesh.triangles.iter().enumerate() {
+        let speed = corners.map(|v| velocity[v as usize]);
+        if speed != [0.0; 3] && mesh.charts[t] == Chart::Inside {
+            change += coenergy_rate(sampler, t, speed);
+        }
+    }
+    -TAU * change
+}
+
+/// d(∫Jψ − ∫r·w)/dl of one triangle whose corners move with dz/dl = `speed`, ψ's coefficients held.
+fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
+    let (frame, gradients) = sampler.local(t);
+    let c = &frame.corners;
+    let (e1, e2) = ([c[1].r - c[0].r, c[1].z - c[0].z], [c[2].r - c[0].r, c[2].z - c[0].z]);
+    let (d1, d2): (Pair, Pair) = ([0.0, speed[1] - speed[0]], [0.0, speed[2] - speed[0]]);
+    // Inside triangles are counter-clockwise: det = |det|.
+    let det_rate = wedge(d1, e2) + wedge(e1, d2);
+    let squares = [dot(e2, e2), -dot(e1, e2), dot(e1, e1)];
+    let rates = [2.0 * dot(e2, d2), -dot(d1, e2) - dot(e1, d2), 2.0 * dot(e1, d1)];
+    let metric_rate = [0, 1, 2].map(|i| (rates[i] - squares[i] * det_rate / frame.det_abs) / frame.det_abs);
+
+    let rule = rule_of(&sampler.rules, &frame);
+    let mut rate = 0.0;
+    for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+        let r = frame.position(lambda).r;
+        let u = blend(lambda, &gradients);
+        let stretch = contract(u, metric_rate, u);
+        rate -= weight
+            * match sampler.reluctivity(t) {
+                Reluctivity::Constant(nu) => 0.5 * nu / r * stretch,
+                Reluctivity::Saturating(law) => {
+                    let b = flux_density(&frame, r, u);
+                    let square = contract(u, frame.metric, u);
+                    let nu = law.reluctivity(b).0;
+                    r * law.energy_density(b) * det_rate + 0.5 * nu / r * (stretch - square * det_rate / frame.det_abs)
+                }
+            };
+    }
+    let mesh = &sampler.outcome.mesh;
+    let current_density = sampler.outcome.coefficients.current_density[mesh.regions[t].0 as usize];
+    rate + current_density * sampler.outcome.solution.integral(mesh, t) * det_rate / frame.det_abs
+}
+
+/// Halves moved rigidly apart: ±½ on the core above and below z = 0, 0 elsewhere.
+fn spacer_velocity(sampler: &Sampler) -> Vec<f64> {
+    let mesh = &sampler.outcome.mesh;
+    let mut velocity = vec![0.0; mesh.points.len()];
+    for (t, corners) in mesh.triangles.iter().enumerate() {
+        let kind = sampler.outline.regions[mesh.regions[t].0 as usize].kind;
+        if matches!(kind, RegionKind::Leg(_) | RegionKind::Joint(_)) {
+            for &v in corners {
+                velocity[v as usize] = 0.5 * mesh.points[v as usize].z.signum();
+            }
+        }
+    }
+    velocity
+}
+
+/// Faces of a ground gap move apart by ±½; the motion dies out linearly over `reach` along the leg and sideways.
+fn ground_velocity(model: &Model, sampler: &Sampler, gap: usize) -> Vec<f64> {
+    let mesh = &sampler.outcome.mesh;
+    let Gapped { inner, outer, center, half, reach } = Gapped::new(model, gap);
+    let ramp = |p: &Point| {
+        let height = p.z - center;
+        let along = if height.abs() <= half { height / half } else { (1.0 - (height.abs() - half) / reach) * height.signum() };
+        let beside = (p.r - outer).max(inner - p.r).max(0.0);
+        0.5 * along.clamp(-1.0, 1.0) * (1.0 - beside / reach).max(0.0) * f64::from(height.abs() < half + reach)
+    };
+    let mut velocity: Vec<f64> = mesh.points.iter().map(ramp).collect();
+    for (t, corners) in mesh.triangles.iter().enumerate() {
+        let region = &sampler.outline.regions[mesh.regions[t].0 as usize];
+        for &v in corners {
+            let p = mesh.points[v as usize];
+            let is_face = inner <= p.r && p.r <= outer && (p.z - center).abs() <= half * (1.0 + 1e-9);
+            if !is_face && must_stay(model, &region.kind, gap, p) || mesh.charts[t] != Chart::Inside {
+                velocity[v as usize] = 0.0;
+            }
+        }
+    }
+    velocity
+}
+
+/// Corners of other shapes must not move: top and bottom of windings, other gaps, plates, parts.
+fn must_stay(model: &Model, kind: &RegionKind, gap: usize, p: Point) -> bool {
+    match *kind {
+        RegionKind::Winding { winding, section } => {
+            let heights = model.windings[winding].sections[section].heights;
+            heights.iter().any(|z| (p.z - z).abs() <= 1e-9 * (heights[1] - heights[0]))
+        }
+        RegionKind::Gap { gap: other, .. } => other != gap,
+        RegionKind::Leg(Leg::UpperPlate | Leg::LowerPlate) | RegionKind::Part(_) | RegionKind::Joint(_) => true,
+        RegionKind::Leg(_) | RegionKind::Outside | RegionKind::Window => false,
+    }
+}
+
+/// Where a ground gap sits and how far its motion may reach.
+struct Gapped {
+    inner: Meter,
+    outer: Meter,
+    center: Meter,
+    half: Meter,
+    reach: Meter,
+}
+
+impl Gapped {
+    fn new(model: &Model, gap: usize) -> Gapped {
+        let this = &model.gaps[gap];
+        let (mut inner, mut outer, mut top) = (0.0, 0.0, f64::INFINITY);
+        if let Some(core) = &model.core {
+            let d = core.dimensions(&model.gaps);
+            [inner, outer] = match (this.across, d.wall_radii) {
+                (Across::Wall, Some(radii)) => radii,
+                _ => [d.hole_radius, d.post_radius],
+            };
+            top = d.window_top;
+        }
+        let half = 0.5 * this.length;
+        // Half of the way to the end of the leg, but no farther than one leg radius: smooth on the mesh, clear of the plates.
+        let room = (top - this.center.abs() - half).max(0.0);
+        let reach = (0.5 * room).min(outer).max(1e-3 * this.length);
+        Gapped { inner, outer, center: this.center, half, reach }
+    }
+}

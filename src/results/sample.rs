@@ -1,0 +1,90 @@
+//! The finished field, made easy to ask: B, H and energy per triangle, the triangle of a point.
+
+use crate::adapt::Outcome;
+use crate::fem::Reluctivity;
+use crate::fem::element::{Frame, Pair, blend, contract};
+use crate::fem::evaluate;
+use crate::fem::moments::rule_of;
+use crate::fem::quadrature::Rules;
+use crate::geometry::Outline;
+use crate::mesh::fans::edge_triangles;
+use crate::model::Point;
+use crate::results::ProbePoint;
+use crate::units::{AmperePerMeter, Joule, Tesla};
+use std::f64::consts::TAU;
+
+/// A solved field with what asking needs.
+pub struct Sampler<'a> {
+    pub outcome: &'a Outcome,
+    pub outline: &'a Outline,
+    pub rules: Rules,
+    pub edge_triangles: Vec<[u32; 2]>,
+}
+
+impl<'a> Sampler<'a> {
+    /// Prepares a field for questions.
+    pub fn new(outline: &'a Outline, outcome: &'a Outcome) -> Sampler<'a> {
+        let edge_triangles = edge_triangles(&outcome.mesh);
+        Sampler { outcome, outline, rules: Rules::working(), edge_triangles }
+    }
+
+    /// Law of triangle t.
+    pub fn reluctivity(&self, t: usize) -> &Reluctivity {
+        &self.outcome.coefficients.reluctivity[self.outcome.mesh.regions[t].0 as usize]
+    }
+
+    /// Reluctivity of triangle t at flux density b [m/H].
+    pub fn reluctivity_at(&self, t: usize, b: Tesla) -> f64 {
+        match self.reluctivity(t) {
+            Reluctivity::Constant(nu) => *nu,
+            Reluctivity::Saturating(law) => law.reluctivity(b).0,
+        }
+    }
+
+    /// Geometry and gradients of triangle t.
+    pub fn local(&self, t: usize) -> (Frame, [Pair; 3]) {
+        (Frame::new(&self.outcome.mesh, t), self.outcome.solution.gradients(&self.outcome.mesh, t))
+    }
+
+    /// [B_r, B_z] at a barycentric point of triangle t.
+    pub fn flux_density(&self, t: usize, lambda: &[f64; 3]) -> [Tesla; 2] {
+        let (frame, gradients) = self.local(t);
+        evaluate::flux_density(&frame, &gradients, lambda)
+    }
+
+    /// ∫ H·B dV and ∫ w(B) dV over triangle t [J].
+    pub fn work_and_energy(&self, t: usize) -> (Joule, Joule) {
+        let (frame, gradients) = self.local(t);
+        match self.reluctivity(t) {
+            Reluctivity::Constant(_) => {
+                let energy = TAU * crate::fem::moments::linear_energy(&self.outcome.moments[t].k, &gradients);
+                (2.0 * energy, energy)
+            }
+            Reluctivity::Saturating(law) => {
+                let rule = rule_of(&self.rules, &frame);
+                let (mut work, mut energy) = (0.0, 0.0);
+                for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
+                    let r = frame.position(lambda).r;
+                    let u = blend(lambda, &gradients);
+                    let b = (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / r;
+                    let volume = TAU * weight * r * frame.det_abs;
+                    work += volume * law.reluctivity(b).0 * b * b;
+                    energy += volume * law.energy_density(b);
+                }
+                (work, energy)
+            }
+        }
+    }
+
+    /// The field at a real point; `None` only if the mesh does not cover it, which cannot be inside the half plane.
+    pub fn probe(&self, at: Point) -> Option<ProbePoint> {
+        let mesh = &self.outcome.mesh;
+        let (chart, position) = evaluate::to_chart(mesh, at);
+        let (t, lambda) = evaluate::find(mesh, &self.edge_triangles, chart, position)?;
+        let [b_r, b_z] = self.flux_density(t, &lambda);
+        let nu: AmperePerMeter = self.reluctivity_at(t, b_r.hypot(b_z));
+        let (vertex, edge) = self.outcome.solution.local(mesh, t);
+        let psi = evaluate::psi(vertex, edge, &lambda);
+        Some(ProbePoint { r: at.r, z: at.z, b_r, b_z, h_r: nu * b_r, h_z: nu * b_z, psi })
+    }
+}

@@ -1,0 +1,234 @@
+//! One field solution on one mesh: a single CG solve for constant laws, Newton with backtracking otherwise.
+
+use super::Solution;
+use crate::fem::element::Frame;
+use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux, tangent_moments};
+use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space, assemble, space};
+use crate::mesh::Mesh;
+use crate::sparse::cg::dot;
+use crate::sparse::{CgError, Hierarchy, Interpolation, Matrix, Stop, conjugate_gradients};
+use rayon::prelude::*;
+
+/// Newton steps before giving up; the issue of hard cases is ≤ 25, the rest is reserve.
+const N_NEWTON_MAX: usize = 60;
+/// Halvings of one step before giving up: 2^-40 is far below any useful step.
+const N_HALVINGS_MAX: usize = 40;
+/// CG iterations before giving up; 20–40 are usual.
+const N_CG_MAX: usize = 2000;
+/// Sufficient decrease of F, as a share of the predicted one (Armijo).
+const ARMIJO: f64 = 1e-4;
+
+/// The discrete problem on one mesh.
+#[derive(Debug, Clone, Copy)]
+pub struct System<'a> {
+    pub mesh: &'a Mesh,
+    pub space: &'a Space,
+    pub coefficients: &'a Coefficients,
+    pub rules: &'a Rules,
+}
+
+/// What a solve used.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Effort {
+    pub n_cg_iterations: usize,
+    pub n_newton_steps: usize,
+}
+
+/// Why a solve failed.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+pub enum SolveError {
+    #[error(transparent)]
+    Linear(#[from] CgError),
+    #[error("the coarsest matrix is not positive definite")]
+    CoarseNotPositive,
+    #[error(
+        "newton iteration stalled after {n_steps} steps at a relative decrement of {decrement:.1e}, wanted {wanted:.1e}"
+    )]
+    Stalled { n_steps: usize, decrement: f64, wanted: f64 },
+}
+
+/// Improves `solution` until a further step would lower F by less than `decrease`·bᵀx.
+///
+/// - `moments`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
+/// - `hierarchy`: levels of the earlier rounds in, this mesh's level added
+pub fn solve(
+    system: &System,
+    moments: &mut [Moments],
+    hierarchy: &mut Hierarchy,
+    solution: &mut Solution,
+    decrease: f64,
+) -> Result<Effort, SolveError> {
+    let interpolation = interpolation(system.mesh, system.space);
+    let load = assemble::load(system.mesh, system.space, system.coefficients);
+    let mut x = system.space.restrict(&solution.vertex, &solution.edge);
+    let effort = if system.coefficients.is_linear() {
+        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        set_level(system, hierarchy, &matrix, &interpolation)?;
+        let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
+        let mut precondition = |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, r, z);
+        let convergence =
+            conjugate_gradients(&matrix, &load, &mut x, &stop, 0.0, &mut precondition)?;
+        Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
+    } else {
+        newton(system, moments, hierarchy, &interpolation, &load, &mut x, decrease)?
+    };
+    (solution.vertex, solution.edge) = system.space.expand(system.mesh, &x);
+    Ok(effort)
+}
+
+fn set_level(
+    system: &System,
+    hierarchy: &mut Hierarchy,
+    matrix: &Matrix,
+    interpolation: &[Interpolation],
+) -> Result<(), SolveError> {
+    match hierarchy.set_level(matrix, system.space.n_vertex_dofs, interpolation) {
+        true => Ok(()),
+        false => Err(SolveError::CoarseNotPositive),
+    }
+}
+
+fn newton(
+    system: &System,
+    moments: &mut [Moments],
+    hierarchy: &mut Hierarchy,
+    interpolation: &[Interpolation],
+    load: &[f64],
+    x: &mut Vec<f64>,
+    decrease: f64,
+) -> Result<Effort, SolveError> {
+    let mut effort = Effort::default();
+    let mut state = State::new(system, moments, load, x);
+    loop {
+        update_tangent(system, moments, &state.solution);
+        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        set_level(system, hierarchy, &matrix, interpolation)?;
+        let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
+        // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
+        let scale = 2.0 * state.value.abs();
+        let mut step = vec![0.0; x.len()];
+        let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
+        let mut precondition = |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, r, z);
+        let convergence =
+            conjugate_gradients(&matrix, &residual, &mut step, &stop, scale, &mut precondition)?;
+        effort.n_cg_iterations += convergence.n_iterations;
+        effort.n_newton_steps += 1;
+        let predicted = dot(&residual, &step);
+        let before = state.value;
+        let Some(next) = backtrack(system, moments, load, x, &step, predicted, before) else {
+            // No step lowers F: at the rounding floor that is convergence, elsewhere a stall.
+            return match predicted <= 1e-12 * scale {
+                true => Ok(effort),
+                false => Err(stalled(&effort, predicted, scale, decrease)),
+            };
+        };
+        state = next;
+        if 0.5 * predicted <= decrease * 2.0 * state.value.abs() {
+            return Ok(effort);
+        }
+        if effort.n_newton_steps == N_NEWTON_MAX {
+            return Err(stalled(&effort, predicted, scale, decrease));
+        }
+    }
+}
+
+fn stalled(effort: &Effort, predicted: f64, scale: f64, wanted: f64) -> SolveError {
+    SolveError::Stalled { n_steps: effort.n_newton_steps, decrement: predicted / scale, wanted }
+}
+
+/// Halves the step until F falls enough; moves `x` and returns the new state.
+fn backtrack(
+    system: &System,
+    moments: &[Moments],
+    load: &[f64],
+    x: &mut Vec<f64>,
+    step: &[f64],
+    predicted: f64,
+    before: f64,
+) -> Option<State> {
+    let mut length = 1.0;
+    for _ in 0..N_HALVINGS_MAX {
+        let trial: Vec<f64> = x.iter().zip(step).map(|(x, d)| x + length * d).collect();
+        let state = State::new(system, moments, load, &trial);
+        if state.value <= before - ARMIJO * length * predicted {
+            *x = trial;
+            return Some(state);
+        }
+        length *= 0.5;
+    }
+    None
+}
+
+/// F/2π and its derivative's field part at one x.
+struct State {
+    solution: Solution,
+    /// F/2π = Σ energy − bᵀx.
+    value: f64,
+    /// g_i = ∫ ∇φ_i·σ̂.
+    force: Vec<f64>,
+}
+
+impl State {
+    fn new(system: &System, moments: &[Moments], load: &[f64], x: &[f64]) -> State {
+        let (vertex, edge) = system.space.expand(system.mesh, x);
+        let solution = Solution { vertex, edge };
+        let parts: Vec<_> = (0..system.mesh.triangles.len())
+            .into_par_iter()
+            .with_min_len(512)
+            .map(|t| flux_and_energy(system, moments, &solution, t))
+            .collect();
+        let energy: f64 = parts.iter().map(|p| p.1).sum();
+        let force = assemble::residual_of_flux(system.mesh, system.space, |t| parts[t].0);
+        State { solution, value: energy - dot(load, x), force }
+    }
+}
+
+fn flux_and_energy(
+    system: &System,
+    moments: &[Moments],
+    solution: &Solution,
+    t: usize,
+) -> ([[f64; 2]; 3], f64) {
+    let gradients = solution.gradients(system.mesh, t);
+    match &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize] {
+        Reluctivity::Constant(_) => {
+            (linear_flux(&moments[t].k, &gradients), linear_energy(&moments[t].k, &gradients))
+        }
+        Reluctivity::Saturating(law) => {
+            let frame = Frame::new(system.mesh, t);
+            saturating_flux(&frame, rule_of(system.rules, &frame), law, &gradients)
+        }
+    }
+}
+
+/// Sets the moments of all saturating triangles to the tangent at `solution`.
+pub fn update_tangent(system: &System, moments: &mut [Moments], solution: &Solution) {
+    moments.par_iter_mut().enumerate().with_min_len(512).for_each(|(t, moments)| {
+        if let Reluctivity::Saturating(law) =
+            &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize]
+        {
+            let frame = Frame::new(system.mesh, t);
+            let gradients = solution.gradients(system.mesh, t);
+            *moments = tangent_moments(&frame, rule_of(system.rules, &frame), law, &gradients);
+        }
+    });
+}
+
+/// How each vertex unknown follows from its parents: ½, ½; next to the axis ¼ of the off-axis end, since ψ ∝ t².
+fn interpolation(mesh: &Mesh, space: &Space) -> Vec<Interpolation> {
+    let mut all = Vec::with_capacity(space.n_vertex_dofs);
+    for (v, &d) in space.vertex_dof.iter().enumerate() {
+        if d == space::NONE {
+            continue;
+        }
+        let dof = |p: u32| space.vertex_dof.get(p as usize).copied().unwrap_or(space::NONE);
+        let [p, q] = mesh.parents[v].map(dof);
+        all.push(match (p, q) {
+            (space::NONE, space::NONE) => Interpolation::default(),
+            (p, space::NONE) => Interpolation { parents: [p, 0], weights: [0.25, 0.0] },
+            (space::NONE, q) => Interpolation { parents: [q, 0], weights: [0.25, 0.0] },
+            (p, q) => Interpolation { parents: [p, q], weights: [0.5, 0.5] },
+        });
+    }
+    all
+}
