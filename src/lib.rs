@@ -6,6 +6,7 @@ pub mod adapt;
 pub mod bound;
 pub mod fem;
 pub mod geometry;
+pub mod input;
 pub mod mesh;
 pub mod model;
 pub mod results;

@@ -137,5 +137,3 @@ pub fn rounds(
         changed = bisect(&mut mesh, &marked, &mut carried);
     }
 }
-#[cfg(test)]
-mod scratch;

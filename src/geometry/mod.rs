@@ -1,6 +1,22 @@
 //! Forms, gaps, windings and parts → [`Outline`]: tagged, crossing-free segments inside the cap polygon.
 
-use crate::model::{MaterialId, Point};
+mod cap;
+mod drawing;
+mod fault;
+mod fillet;
+mod form;
+mod legs;
+mod plane;
+mod polygon;
+#[cfg(test)]
+pub(crate) mod samples;
+mod solids;
+#[cfg(test)]
+mod tests;
+
+pub use polygon::{area, contains};
+
+use crate::model::{Fault, MaterialId, Model, Point, Subject};
 use crate::units::{AmperePerSquareMeter, Meter};
 
 /// Index into [`Outline::regions`].
@@ -46,7 +62,8 @@ pub struct Region {
     pub permeability: f64,
     /// Azimuthal current density, positive out of the (r, z) plane's φ direction; 0 outside windings.
     pub current_density: AmperePerSquareMeter,
-    /// Closed polygons that bound the region, counter-clockwise; empty for `Outside`.
+    /// Closed polygons that bound the region, counter-clockwise; empty for `Outside`. The window's polygon is its whole
+    /// border: shapes inside take precedence ([`Outline::region_at`]).
     pub polygons: Vec<Vec<Point>>,
 }
 
@@ -63,11 +80,82 @@ pub struct Cap {
 /// The section as a crossing-free drawing, ready for the mesher.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Outline {
-    /// Corners, snapped and distinct [m]; the cap polygon's corners and its centre's axis points included.
+    /// Corners, snapped and distinct [m]; the cap polygon's corners, poles included, come last.
     pub points: Vec<Point>,
     /// Straight segments between points; no two cross, none passes through a third point.
     pub segments: Vec<[u32; 2]>,
     /// Region 0 is `Outside`.
     pub regions: Vec<Region>,
     pub cap: Cap,
+}
+
+impl Outline {
+    /// The region at a point: the shape that holds it, else the window, else `Outside`.
+    ///
+    /// On a border either neighbour may be returned.
+    pub fn region_at(&self, p: Point) -> RegionId {
+        let holds = |region: &Region| region.polygons.iter().any(|polygon| contains(polygon, p));
+        let is_window = |region: &Region| region.kind == RegionKind::Window;
+        let shape = self.regions.iter().position(|r| !is_window(r) && holds(r));
+        let found = shape.or_else(|| self.regions.iter().position(|r| is_window(r) && holds(r)));
+        RegionId(found.unwrap_or(0) as u16)
+    }
+}
+
+/// Largest number of regions: far above any section that a person writes, far below what a `RegionId` counts.
+const N_REGIONS_MAX: usize = 10_000;
+
+/// Draws the section of a model: core form with gaps, joint and fillets, parts, windings, cap.
+///
+/// Shapes are disjoint; a spacer's or a ground gap's air makes one region a leg; a window holds what its shapes leave.
+///
+/// # Errors
+/// A [`Fault`] that names the shapes and the place [mm] for everything that cannot be drawn: dimensions that are not finite,
+/// not in order or negative; gaps outside their leg; shapes that overlap; outlines that cross themselves.
+pub fn outline(model: &Model) -> Result<Outline, Fault> {
+    let n_sections: usize = model.windings.iter().map(|w| w.sections.len()).sum();
+    let n_regions = n_sections + model.parts.len() + 2 * model.gaps.len();
+    if n_regions > N_REGIONS_MAX {
+        let message = format!("the section has {n_regions} shapes, more than {N_REGIONS_MAX}");
+        return Err(fault::fault(
+            Subject::Sheet,
+            None,
+            message,
+            "draw windings as sections, not turn by turn",
+        ));
+    }
+    let mut drawing = drawing::Drawing::new();
+    form::draw_core(model, &mut drawing)?;
+    solids::draw_parts(model, &mut drawing)?;
+    solids::draw_windings(model, &mut drawing)?;
+    if drawing.shapes.is_empty() {
+        let message = "the section is empty: no core, no part, no winding".to_string();
+        return Err(fault::fault(
+            Subject::Sheet,
+            None,
+            message,
+            "add a [core] or [[parts]], and [[windings]]",
+        ));
+    }
+    let plane = plane::join(&drawing)?;
+    Ok(finish(drawing, plane))
+}
+
+/// Gives the regions their joined polygons and adds the cap and the axis.
+fn finish(drawing: drawing::Drawing, plane: plane::Plane) -> Outline {
+    let mut regions = drawing.regions;
+    let mut segments = plane.window_segments;
+    for (shape, border) in drawing.shapes.iter().zip(&plane.borders) {
+        let polygon = plane::corners(&plane.points, border);
+        regions[shape.region.0 as usize].polygons.push(polygon);
+        segments.extend(plane::segments_of(border));
+    }
+    if let Some((region, _)) = drawing.window {
+        let polygon = plane::corners(&plane.points, &plane.window);
+        regions[region.0 as usize].polygons.push(polygon);
+    }
+    let cap = Cap::around(&plane.points);
+    let mut outline = Outline { points: plane.points, segments, regions, cap };
+    cap::close(&mut outline);
+    outline
 }

@@ -2,8 +2,16 @@
 
 pub mod bisect;
 pub mod fans;
+mod refine;
+mod size;
+#[cfg(test)]
+mod tests;
+mod topology;
+mod triangulate;
 
 pub use crate::geometry::{Cap, RegionId};
+pub use triangulate::first_mesh;
+
 use crate::model::Point;
 
 /// Which chart a triangle lives in.
@@ -34,4 +42,18 @@ pub struct Mesh {
     /// Number of vertices after each round, first mesh included.
     pub level_sizes: Vec<usize>,
     pub cap: Cap,
+}
+
+/// Why a section could not be meshed.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+pub enum MeshError {
+    /// Details too fine for the bounds of [`first_mesh`].
+    #[error(
+        "the mesh reached {n_vertices} vertices near r = {r_mm:.6} mm, z = {z_mm:.6} mm: a gap, a sliver or an acute corner there \
+         is too fine for this section; make it thicker or leave it out"
+    )]
+    TooFine { n_vertices: usize, r_mm: f64, z_mm: f64 },
+    /// The triangulation refused an outline that should have been crossing-free: our bug.
+    #[error("the triangulation failed: {reason}")]
+    Kernel { reason: String },
 }

@@ -1,5 +1,11 @@
 //! SI aliases that name a unit, and µ0. Text with units ("0.3 mm") lives in `parse` and `print`.
 
+mod parse;
+mod print;
+
+pub use parse::{Dimension, QuantityError, Reading, decimal, read, reading, spellings};
+pub use print::{ends, engineering, millimeters, number, percent};
+
 /// Length.
 pub type Meter = f64;
 /// Electric current; also magnetomotive force (ampere-turns).

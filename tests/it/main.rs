@@ -1,0 +1,4 @@
+//! Integration tests, one binary: text in, text out.
+#![allow(clippy::unwrap_used)]
+
+mod messages;
