@@ -2,11 +2,10 @@
 
 use super::files::Finished;
 use super::options::Options;
-use super::results_standin::collect;
 use super::{End, Stop, files, screen, sheet};
 use gapwright::adapt::{self, AdaptError, Outcome};
 use gapwright::geometry::Outline;
-use gapwright::mesh::{Chart, MeshError};
+use gapwright::mesh::MeshError;
 use gapwright::model::Model;
 use gapwright::report::StageTimes;
 use gapwright::report::csv;
@@ -15,9 +14,9 @@ use gapwright::report::json::result_json;
 use gapwright::report::section::section_svg;
 use gapwright::report::terminal::{Look, solve_screen};
 use gapwright::report::vtk::{FieldCells, field_vtu};
-use gapwright::results::Results;
+use gapwright::results::collect;
 use gapwright::results::sample::Sampler;
-use gapwright::units::MU0;
+use gapwright::results::{self, Results};
 use std::time::Instant;
 
 /// Runs `solve`.
@@ -27,7 +26,7 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     let (sheet, outline) = sheet::read(options)?;
     clock.lap("sheet and section");
     let outcome = run(&sheet.model, &outline, options, &mut clock)?;
-    let results = collect(&sheet.model, &outline, &outcome);
+    let results = results::collect(&sheet.model, &outline, &outcome);
     clock.lap("results");
     let seconds = start.elapsed().as_secs_f64();
 
@@ -45,7 +44,8 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     if options.json {
         screen::print(&result_json(&results, times.as_ref()))?;
     } else if !options.quiet {
-        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+        let look =
+            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
         screen::print(&solve_screen(&results, &look))?;
         screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
     }
@@ -53,12 +53,21 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
 }
 
 /// The rounds, with progress; a failure without any field is a stop.
-fn run(model: &Model, outline: &Outline, options: &Options, clock: &mut Clock) -> Result<Outcome, Stop> {
+fn run(
+    model: &Model,
+    outline: &Outline,
+    options: &Options,
+    clock: &mut Clock,
+) -> Result<Outcome, Stop> {
     let mut progress = screen::Progress::new(options.quiet || options.json);
     let mut n_rounds = 0;
     let outcome = adapt::run(model, outline, &mut |round| {
         n_rounds += 1;
-        let stage = if n_rounds == 1 { "mesh and round 1".to_string() } else { format!("round {n_rounds}") };
+        let stage = if n_rounds == 1 {
+            "mesh and round 1".to_string()
+        } else {
+            format!("round {n_rounds}")
+        };
         clock.lap(&stage);
         progress.round(round.n_unknowns, round.low, round.high);
     });
@@ -91,7 +100,11 @@ fn drawings(
     };
     let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells)
         .map_err(|e| Stop::new(End::NotWritten, format!("field.vtu: {e}")))?;
-    let quantity = if results.is_linear && results.inductance.is_some() { "inductance [H]" } else { "coenergy [J]" };
+    let quantity = if results.is_linear && results.inductance.is_some() {
+        "inductance [H]"
+    } else {
+        "coenergy [J]"
+    };
     let mut finished = vec![
         ("section.svg", section_svg(model, outline).into_bytes()),
         ("field.svg", field_svg(&map).into_bytes()),
@@ -104,36 +117,22 @@ fn drawings(
     Ok(finished)
 }
 
-/// The field of every real triangle as plain numbers: at the centroid for VTK, |B| at the corners for the picture.
-/// Cap triangles keep zeros; no file shows them.
+/// The field of every triangle as plain numbers: at the centroid for VTK, |B| at the corners for the picture.
 fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) {
-    let sampler = Sampler::new(outline, outcome);
-    let n = outcome.mesh.triangles.len();
-    let mut cells = FieldCells {
-        b: vec![[0.0; 2]; n],
-        h: vec![[0.0; 2]; n],
-        permeability: vec![1.0; n],
+    let values = Sampler::new(outline, outcome).cell_values();
+    let cells = FieldCells {
+        b: values.b,
+        h: values.h,
+        permeability: values.permeability,
         share: outcome.bound.shares.clone(),
     };
-    let mut b_corner = vec![[0.0; 3]; n];
-    for t in (0..n).filter(|&t| outcome.mesh.charts[t] == Chart::Inside) {
-        let b = sampler.flux_density(t, &[1.0 / 3.0; 3]);
-        let reluctivity = sampler.reluctivity_at(t, b[0].hypot(b[1]));
-        cells.b[t] = b;
-        cells.h[t] = b.map(|x| reluctivity * x);
-        cells.permeability[t] = 1.0 / (MU0 * reluctivity);
-        b_corner[t] = [[1.0, 0.0, 0.0], [0.0, 1.0, 0.0], [0.0, 0.0, 1.0]].map(|corner| {
-            let [b_r, b_z] = sampler.flux_density(t, &corner);
-            b_r.hypot(b_z)
-        });
-    }
-    (cells, b_corner)
+    (cells, values.b_corner)
 }
 
 /// How the run ends: a missed interval weighs more than a missed promise, whose verdict it makes doubtful.
 fn end_of(results: &Results) -> End {
-    let is_met =
-        results.verdict.as_ref().is_none_or(|v| v.within_tolerance) && results.requirements.iter().all(|r| r.met);
+    let is_met = results.verdict.as_ref().is_none_or(|v| v.within_tolerance)
+        && results.requirements.iter().all(|r| r.met);
     match (results.reached, is_met) {
         (false, _) => End::NotReached,
         (true, false) => End::NotMet,

@@ -3,4 +3,6 @@
 
 mod architecture;
 mod messages;
+mod mutations;
+mod sheets;
 mod tidy;
