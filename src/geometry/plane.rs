@@ -179,7 +179,7 @@ fn check_simple(drawing: &Drawing, points: &[Point], borders: &[Vec<u32>]) -> Re
 /// Whether any two shapes share an area.
 fn check_overlaps(shapes: &[Shape], points: &[Point], borders: &[Vec<u32>]) -> Result<(), Fault> {
     let outlines: Vec<Vec<Point>> = borders.iter().map(|border| corners(points, border)).collect();
-    let boxes: Vec<[f64; 4]> = outlines.iter().map(|outline| bounding_box(outline)).collect();
+    let boxes: Vec<[f64; 4]> = outlines.iter().map(bounding_box).collect();
     for second in 0..shapes.len() {
         for first in 0..second {
             if !boxes_meet(&boxes[first], &boxes[second]) {

@@ -154,12 +154,20 @@ pub fn doubled(model: &Model) -> Model {
         core.corner_radius *= 2.0;
         core.joint *= 2.0;
         match &mut core.form {
-            Form::Pot { wall, wall_inner_diameter, post_diameter, hole_diameter, height, window_height } => {
+            Form::Pot {
+                wall,
+                wall_inner_diameter,
+                post_diameter,
+                hole_diameter,
+                height,
+                window_height,
+            } => {
                 match wall {
                     PotWall::OuterDiameter(diameter) => *diameter *= 2.0,
                     PotWall::OuterLegsArea(area) => *area *= 4.0,
                 }
-                for x in [wall_inner_diameter, post_diameter, hole_diameter, height, window_height] {
+                for x in [wall_inner_diameter, post_diameter, hole_diameter, height, window_height]
+                {
                     *x *= 2.0;
                 }
             }
