@@ -512,3 +512,27 @@ fn twice_the_size_is_twice_the_outline_to_the_last_digit() {
         assert_eq!((2.0 * p.r, 2.0 * p.z), (q.r, q.z));
     }
 }
+
+#[test]
+fn a_section_in_the_wrong_unit_is_refused() {
+    for scale in [1e-9, 1e9, 1e200] {
+        let model = Model {
+            windings: vec![winding("w", 1.0, [2.0 * scale, 3.0 * scale], [0.0, scale])],
+            ..empty()
+        };
+        let w = Subject::Winding { winding: 0, section: 0 };
+        check_fault(&model, w, None, &["winding `w` reaches", "mm from the origin"]);
+    }
+}
+
+#[test]
+fn two_thousand_turns_are_drawn_one_by_one() {
+    let turn = |k: usize| {
+        let (r, z) = (10.0 + (k % 40) as f64, (k / 40) as f64);
+        winding("turn", 1.0, [r, r + 1.0], [z, z + 1.0])
+    };
+    let model = Model { windings: (0..2000).map(turn).collect(), ..empty() };
+    let outline = outline(&model).unwrap();
+    // A full grid of 40 by 50 squares that share their corners, and the cap's nine.
+    assert_eq!(outline.points.len(), 41 * 51 + 9);
+}

@@ -248,7 +248,10 @@ impl<'a> Refiner<'a> {
             let edge = self.kernel.get_edge_from_neighbors(a, b).map(|e| e.fix().as_undirected());
             edge.map(|e| self.kernel.remove_constraint_edge(e));
         }
-        let middle = self.insert(at, a, segment)?;
+        let Some(middle) = self.insert(at, a, segment)? else {
+            let reason = format!("two vertices coincide at {}", self.place(at));
+            return Err(MeshError::Kernel { reason });
+        };
         for end in [a, b] {
             if !self.kernel.exists_constraint(end, middle)
                 && self.kernel.try_add_constraint(end, middle).is_empty()
@@ -297,12 +300,13 @@ impl<'a> Refiner<'a> {
         format!("r = {:.6} mm, z = {:.6} mm", at.r * self.unit * 1e3, at.z * self.unit * 1e3)
     }
 
+    /// A new vertex, or `None` where there is one already.
     fn insert(
         &mut self,
         at: Point,
         hint: FixedVertexHandle,
         segment: Option<u32>,
-    ) -> Result<FixedVertexHandle, MeshError> {
+    ) -> Result<Option<FixedVertexHandle>, MeshError> {
         let vertex = Vertex { at: Point2::new(at.r, at.z) };
         let n_before = self.kernel.num_vertices();
         let handle = self
@@ -310,12 +314,10 @@ impl<'a> Refiner<'a> {
             .insert_with_hint(vertex, hint)
             .map_err(|error| MeshError::Kernel { reason: error.to_string() })?;
         if self.kernel.num_vertices() == n_before {
-            return Err(MeshError::Kernel {
-                reason: format!("two vertices coincide at {}", self.place(at)),
-            });
+            return Ok(None);
         }
         self.on_segment.push(segment);
-        Ok(handle)
+        Ok(Some(handle))
     }
 
     /// Queues the borders and bad triangles round a new vertex.
@@ -388,8 +390,9 @@ impl<'a> Refiner<'a> {
         }
         if self.encroached.is_empty() {
             self.check_bounds(corners[0], corners[1], wanted)?;
-            let vertex = self.insert(wanted, bad.corners[0], None)?;
-            self.queue_star(vertex);
+            if let Some(vertex) = self.insert(wanted, bad.corners[0], None)? {
+                self.queue_star(vertex);
+            }
             return Ok(());
         }
         let encroached = std::mem::take(&mut self.encroached);

@@ -3,7 +3,7 @@
 use super::{Chart, Mesh, MeshError, first_mesh};
 use crate::geometry::samples::{self, doubled, empty, part, r1_with_gap, winding};
 use crate::geometry::{Outline, RegionKind, area, outline};
-use crate::model::{Model, Point};
+use crate::model::{Across, Form, Model, Point, PotWall};
 
 /// Mesh of a model with everything checked that holds for every mesh.
 #[track_caller]
@@ -203,6 +203,77 @@ fn random_touching_rectangles_mesh_without_bad_angles() {
         let (_, mesh) = mesh_of(&random_rectangles(seed));
         let angle = mesh.min_angle().to_degrees();
         // Next to a facet, which is never split, the aim of 22° may be missed; measured 18.2° over 400 sections.
+        assert!(angle > 15.0, "seed {seed}: smallest angle {angle}°");
+        n_below_20 += u64::from(angle < 20.0);
+    }
+    assert!(
+        n_below_20 * 20 <= n_seeds,
+        "{n_below_20} of {n_seeds} sections have an angle below 20°"
+    );
+}
+
+/// A random core with gaps, spacers, fillets and a joint, its window half filled.
+fn random_core(seed: u64) -> Model {
+    let mut dice = Dice(seed);
+    let hole = if dice.roll() < 0.5 { 0.0 } else { 1.0 + 4.0 * dice.roll() };
+    let post = hole + 1.0 + 10.0 * dice.roll();
+    let inner = post + 2.0 + 20.0 * dice.roll();
+    let outer = inner + 0.3 + 5.0 * dice.roll();
+    let window_height = 2.0 + 30.0 * dice.roll();
+    let height = window_height + 0.6 + 8.0 * dice.roll();
+    let [post_diameter, wall_inner_diameter, outer_diameter, hole_diameter] =
+        [post, inner, outer, hole].map(|x| x * 1e-3);
+    let [height, window_height] = [height, window_height].map(|x| x * 1e-3);
+    let form = match seed % 3 {
+        0 => Form::Drum {
+            flange_diameter: wall_inner_diameter,
+            post_diameter,
+            hole_diameter,
+            height,
+            window_height,
+        },
+        1 => Form::Rod { diameter: post_diameter, hole_diameter, height },
+        _ => {
+            let wall = PotWall::OuterDiameter(outer_diameter);
+            Form::Pot {
+                wall,
+                wall_inner_diameter,
+                post_diameter,
+                hole_diameter,
+                height,
+                window_height,
+            }
+        }
+    };
+    let mut core = samples::core(form);
+    let (width, half) = (0.25e-3 * (inner - post), 0.5 * window_height);
+    if seed % 3 != 1 && dice.roll() < 0.3 {
+        core.corner_radius = 0.3 * width.min(half);
+    }
+    if seed % 3 != 1 && dice.roll() < 0.3 {
+        core.joint = 2e-6;
+    }
+    let mut gaps = Vec::new();
+    let mut length = || 10.0_f64.powf(-2.0 + 1.5 * dice.roll());
+    gaps.push(samples::gap("post", Across::Post, length(), 0.3 * half * 1e3));
+    if seed % 3 == 2 {
+        gaps.push(samples::gap("wall", Across::Wall, length(), -0.3 * half * 1e3));
+    }
+    if seed % 3 != 1 && length() < 0.05 {
+        gaps.push(samples::gap("shim", Across::Spacer, length(), 0.0));
+    }
+    let radii = [0.5 * post + 0.1 * (inner - post), 0.5 * post + 0.4 * (inner - post)];
+    let main = winding("main", 10.0, radii, [-0.3e3 * window_height, 0.3e3 * window_height]);
+    Model { core: Some(core), gaps, windings: vec![main], ..empty() }
+}
+
+#[test]
+fn random_cores_mesh_without_bad_angles() {
+    let n_seeds = if std::env::var_os("RUN_SLOW_TESTS").is_some() { 2000 } else { 60 };
+    let mut n_below_20 = 0;
+    for seed in 0..n_seeds {
+        let (_, mesh) = mesh_of(&random_core(seed));
+        let angle = mesh.min_angle().to_degrees();
         assert!(angle > 15.0, "seed {seed}: smallest angle {angle}°");
         n_below_20 += u64::from(angle < 20.0);
     }

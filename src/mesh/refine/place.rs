@@ -40,8 +40,9 @@ impl Refiner<'_> {
         }
         if let (_, Some(p)) = best {
             self.check_bounds(a, b, p)?;
-            let vertex = self.insert(p, bad.corners[0], None)?;
-            self.queue_star(vertex);
+            if let Some(vertex) = self.insert(p, bad.corners[0], None)? {
+                self.queue_star(vertex);
+            }
         }
         Ok(())
     }
