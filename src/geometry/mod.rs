@@ -3,6 +3,8 @@
 mod cap;
 mod drawing;
 mod fault;
+#[cfg(test)]
+mod fault_tests;
 mod fillet;
 mod form;
 mod legs;
@@ -14,9 +16,10 @@ mod solids;
 #[cfg(test)]
 mod tests;
 
+pub use crate::model::Point;
 pub use polygon::{area, contains};
 
-use crate::model::{Fault, MaterialId, Model, Point, Subject};
+use crate::model::{Fault, MaterialId, Model, Subject};
 use crate::units::{AmperePerSquareMeter, Meter};
 
 /// Index into [`Outline::regions`].

@@ -1,9 +1,10 @@
 //! Models of the reference sections R1, R5, R7, R8 for tests (lengths in millimetres here, in metres in the model).
 
 use crate::model::{
-    Accuracy, Across, Core, Corner, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Part,
-    Point, PotWall, Section, Winding,
+    Accuracy, Core, Corner, Gap, HotSpotWish, Law, Material, MaterialId, Part, Point, Section,
+    Winding,
 };
+pub use crate::model::{Across, Form, Model, PotWall};
 
 const MM: f64 = 1e-3;
 

@@ -10,8 +10,7 @@ mod triangulate;
 
 pub use triangulate::first_mesh;
 
-use crate::geometry::{Cap, RegionId};
-use crate::model::Point;
+use crate::geometry::{Cap, Point, RegionId};
 
 /// Which chart a triangle lives in.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]

@@ -8,8 +8,7 @@ mod place;
 
 use super::MeshError;
 use super::size::{self, Measures};
-use crate::geometry::Outline;
-use crate::model::Point;
+use crate::geometry::{Outline, Point};
 use spade::handles::{FixedFaceHandle, FixedVertexHandle, InnerTag};
 use spade::{
     ConstrainedDelaunayTriangulation, HasPosition, LastUsedVertexHintGenerator, Point2,

@@ -4,7 +4,7 @@
 //! small move does what no new vertex can. Triangles, borders and the outline's points stay as they are.
 
 use super::size::{ANGLE_MIN, Measures};
-use crate::model::Point;
+use crate::geometry::Point;
 
 /// Sweeps over all bad triangles; the gain after some is below a tenth of a degree.
 const N_SWEEPS: usize = 6;

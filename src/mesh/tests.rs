@@ -1,9 +1,10 @@
 //! First meshes of reference sections, random sections and hard corners.
 
 use super::{Chart, Mesh, MeshError, first_mesh};
-use crate::geometry::samples::{self, doubled, empty, part, r1_with_gap, winding};
-use crate::geometry::{Outline, RegionKind, area, outline};
-use crate::model::{Across, Form, Model, Point, PotWall};
+use crate::geometry::samples::{
+    self, Across, Form, Model, PotWall, doubled, empty, part, r1_with_gap, winding,
+};
+use crate::geometry::{Outline, Point, RegionKind, area, outline};
 
 /// Mesh of a model with everything checked that holds for every mesh.
 #[track_caller]

@@ -1,9 +1,9 @@
 //! Where a new vertex may go: the way to it, the cavity that it would dig, and a second choice beside the cap's facets.
 
+use super::super::MeshError;
+use super::super::size::{self, Measures};
 use super::{Bad, Border, Face, Refiner, point};
-use crate::mesh::MeshError;
-use crate::mesh::size::{self, Measures};
-use crate::model::Point;
+use crate::geometry::Point;
 use spade::{Point2, Triangulation};
 
 /// Places that are tried where a facet forbids the wanted one.
