@@ -9,6 +9,7 @@ pub mod geometry;
 pub mod input;
 pub mod mesh;
 pub mod model;
+pub mod report;
 pub mod results;
 pub mod solve;
 pub mod sparse;

@@ -1,5 +1,6 @@
 //! The rounds: solve → bound → refine, until the interval is as narrow as wanted.
 
+pub mod again;
 mod mark;
 
 use crate::bound::{self, Bound, Field};
@@ -33,15 +34,20 @@ pub struct Round {
 }
 
 /// The last round's field and what was reached.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug)]
 pub struct Outcome {
     pub mesh: Mesh,
+    pub space: Space,
     pub coefficients: Coefficients,
     pub solution: Solution,
     /// Moments at the solution: constant, or the tangent.
     pub moments: Vec<Moments>,
     pub bound: Bound,
     pub rounds: Vec<Round>,
+    /// Levels of the preconditioner, for further solves on this mesh.
+    pub hierarchy: Hierarchy,
+    /// Guaranteed ends of dW'/ds at s = 1, all currents scaled by s; `None` with constant laws, where it is 2W'.
+    pub work_rate_ends: Option<[Joule; 2]>,
     /// False when `n_unknowns_max` stopped the rounds before the wanted width.
     pub reached: bool,
 }
@@ -65,7 +71,12 @@ pub fn run(
     let mesh = first_mesh(outline)?;
     let solution =
         Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
-    rounds(mesh, coefficients, solution, &Rules::working(), &model.accuracy, progress)
+    let mut outcome =
+        rounds(mesh, coefficients, solution, &Rules::working(), &model.accuracy, progress)?;
+    if !outcome.coefficients.is_linear() {
+        outcome.work_rate_ends = Some(again::work_rate_ends(&mut outcome)?);
+    }
+    Ok(outcome)
 }
 
 /// Law and current density of every region.
@@ -129,7 +140,19 @@ pub fn rounds(
         let reached = width <= accuracy.interval;
         let n_marked_max = mark::affordable(space.n_dofs, accuracy.n_unknowns_max);
         if reached || n_marked_max == 0 || rounds.len() == N_ROUNDS_MAX {
-            return Ok(Outcome { mesh, coefficients, solution, moments, bound, rounds, reached });
+            let work_rate_ends = None;
+            return Ok(Outcome {
+                mesh,
+                space,
+                coefficients,
+                solution,
+                moments,
+                bound,
+                rounds,
+                hierarchy,
+                work_rate_ends,
+                reached,
+            });
         }
         let mut marked = mark::doerfler(&bound.shares, MARKED_SHARE);
         marked.truncate(n_marked_max);

@@ -71,7 +71,12 @@ pub fn barycentric(mesh: &Mesh, t: usize, at: Point) -> [f64; 3] {
 ///
 /// `None` when the walk leaves the chart. Bounded by the number of triangles; a point on an edge belongs to the triangle
 /// reached first.
-pub fn locate(mesh: &Mesh, edge_triangles: &[[u32; 2]], start: usize, at: Point) -> Option<(usize, [f64; 3])> {
+pub fn locate(
+    mesh: &Mesh,
+    edge_triangles: &[[u32; 2]],
+    start: usize,
+    at: Point,
+) -> Option<(usize, [f64; 3])> {
     /// Points this little outside (barycentric) count as inside: rounding of the coordinates.
     const SLACK: f64 = -1e-11;
     let chart = mesh.charts[start];
@@ -94,12 +99,19 @@ pub fn locate(mesh: &Mesh, edge_triangles: &[[u32; 2]], start: usize, at: Point)
 }
 
 /// Finds a chart point anywhere: by walking, and by search where the walk fails.
-pub fn find(mesh: &Mesh, edge_triangles: &[[u32; 2]], chart: Chart, at: Point) -> Option<(usize, [f64; 3])> {
+pub fn find(
+    mesh: &Mesh,
+    edge_triangles: &[[u32; 2]],
+    chart: Chart,
+    at: Point,
+) -> Option<(usize, [f64; 3])> {
     let start = mesh.charts.iter().position(|&c| c == chart)?;
     locate(mesh, edge_triangles, start, at).or_else(|| {
         let in_chart = |t: &usize| mesh.charts[*t] == chart;
         let depth = |t: usize| barycentric(mesh, t, at).into_iter().fold(f64::INFINITY, f64::min);
-        let best = (0..mesh.triangles.len()).filter(in_chart).max_by(|&a, &b| depth(a).total_cmp(&depth(b)))?;
+        let best = (0..mesh.triangles.len())
+            .filter(in_chart)
+            .max_by(|&a, &b| depth(a).total_cmp(&depth(b)))?;
         // On the polygon itself a point can miss both charts by rounding; farther off it is not in this chart.
         let lambda = barycentric(mesh, best, at);
         (-1e-6 < depth(best)).then(|| (best, lambda.map(|l| l.max(0.0))))

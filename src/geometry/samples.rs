@@ -146,3 +146,46 @@ pub fn all() -> Vec<(&'static str, Model)> {
         ("R1 gap 0.005 mm", r1_with_gap(0.005)),
     ]
 }
+
+/// The same model with every length doubled.
+pub fn doubled(model: &Model) -> Model {
+    let mut model = model.clone();
+    if let Some(core) = &mut model.core {
+        core.corner_radius *= 2.0;
+        core.joint *= 2.0;
+        match &mut core.form {
+            Form::Pot { wall, wall_inner_diameter, post_diameter, hole_diameter, height, window_height } => {
+                match wall {
+                    PotWall::OuterDiameter(diameter) => *diameter *= 2.0,
+                    PotWall::OuterLegsArea(area) => *area *= 4.0,
+                }
+                for x in [wall_inner_diameter, post_diameter, hole_diameter, height, window_height] {
+                    *x *= 2.0;
+                }
+            }
+            Form::Drum { flange_diameter, post_diameter, hole_diameter, height, window_height } => {
+                for x in [flange_diameter, post_diameter, hole_diameter, height, window_height] {
+                    *x *= 2.0;
+                }
+            }
+            Form::Rod { diameter, hole_diameter, height } => {
+                for x in [diameter, hole_diameter, height] {
+                    *x *= 2.0;
+                }
+            }
+        }
+    }
+    for gap in &mut model.gaps {
+        gap.length *= 2.0;
+        gap.center *= 2.0;
+    }
+    for section in model.windings.iter_mut().flat_map(|w| &mut w.sections) {
+        section.radii = section.radii.map(|x| 2.0 * x);
+        section.heights = section.heights.map(|x| 2.0 * x);
+    }
+    for corner in model.parts.iter_mut().flat_map(|p| &mut p.outline) {
+        corner.at = Point { r: 2.0 * corner.at.r, z: 2.0 * corner.at.z };
+        corner.fillet_radius *= 2.0;
+    }
+    model
+}

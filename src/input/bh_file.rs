@@ -6,7 +6,8 @@ use crate::model::{BhTable, Interpolation, Law, LawError};
 use std::ops::Range;
 use std::path::Path;
 
-const HEADER_HELP: &str = "write the first line `H [A/m],B [T]`, then one pair a line, decimal points, commas between";
+const HEADER_HELP: &str =
+    "write the first line `H [A/m],B [T]`, then one pair a line, decimal points, commas between";
 
 /// Path of a file that a sheet names, as messages show it: beside the sheet.
 pub(super) fn beside(sheet: &str, path: &str) -> String {
@@ -26,7 +27,8 @@ pub(super) fn law(text: &str, file: &str, interpolation: Interpolation) -> Resul
     let rows = rows(text).map_err(|(span, message, help)| fault(span, message, help))?;
     let (h, b) = rows.iter().map(|row| (row.h, row.b)).unzip();
     BhTable::new(h, b, interpolation).map(Law::Table).map_err(|error| {
-        let span = error.row().and_then(|row| rows.get(row - 1)).map_or(0..0, |row| row.span.clone());
+        let span =
+            error.row().and_then(|row| rows.get(row - 1)).map_or(0..0, |row| row.span.clone());
         let (message, help) = message_and_help(&error);
         fault(span, message, &help)
     })
@@ -60,7 +62,8 @@ fn rows(text: &str) -> Result<Vec<Row>, RowFault> {
     let mut rows = Vec::new();
     let mut has_header = false;
     for record in reader.records() {
-        let record = record.map_err(|error| (0..0, format!("not a CSV table: {error}"), HEADER_HELP))?;
+        let record =
+            record.map_err(|error| (0..0, format!("not a CSV table: {error}"), HEADER_HELP))?;
         let start = skipped + record.position().map_or(0, |p| p.byte() as usize);
         let span = record_span(text, start);
         if !has_header {
@@ -104,7 +107,8 @@ fn row(record: &csv::StringRecord, span: Range<usize>, index: usize) -> Result<R
     let number = |field: &str| match field.parse::<f64>() {
         Ok(value) if value.is_finite() => Ok(value),
         _ => {
-            let message = format!("row {index}: `{}` is not a finite number", field.escape_default());
+            let message =
+                format!("row {index}: `{}` is not a finite number", field.escape_default());
             Err((span.clone(), message, HEADER_HELP))
         }
     };

@@ -1,7 +1,8 @@
 //! `[core]`, `[[gaps]]` and `[[parts]]` → the magnetic body.
 
+use super::bounds::{Bound, Kind, LENGTH};
 use super::keys;
-use super::values::{Bound, Kind, LENGTH, list_words};
+use super::values::list_words;
 use super::walk::{Fields, Reader};
 use crate::model::{Across, Core, Corner, Form, Gap, Material, Part, Point, PotWall, Subject};
 use crate::units::Dimension;
@@ -16,7 +17,8 @@ enum FormName {
     Rod,
 }
 
-const FORMS: [(&str, FormName); 3] = [("pot", FormName::Pot), ("drum", FormName::Drum), ("rod", FormName::Rod)];
+const FORMS: [(&str, FormName); 3] =
+    [("pot", FormName::Pot), ("drum", FormName::Drum), ("rod", FormName::Rod)];
 const RINGS: [&str; 4] = ["ring", "toroid", "toroidal", "torus"];
 const COMMON_KEYS: [&str; 4] = ["material", "form", "corner_radius", "joint"];
 
@@ -24,9 +26,20 @@ fn keys_of(form: FormName) -> (&'static str, &'static [&'static str]) {
     match form {
         FormName::Pot => (
             "pot",
-            &["outer_diameter", "outer_legs_area", "wall_inner_diameter", "post_diameter", "hole_diameter", "height", "window_height"],
+            &[
+                "outer_diameter",
+                "outer_legs_area",
+                "wall_inner_diameter",
+                "post_diameter",
+                "hole_diameter",
+                "height",
+                "window_height",
+            ],
         ),
-        FormName::Drum => ("drum", &["flange_diameter", "post_diameter", "hole_diameter", "height", "window_height"]),
+        FormName::Drum => (
+            "drum",
+            &["flange_diameter", "post_diameter", "hole_diameter", "height", "window_height"],
+        ),
         FormName::Rod => ("rod", &["diameter", "hole_diameter", "height"]),
     }
 }
@@ -48,7 +61,11 @@ impl<'a> Reader<'a> {
         let joint = self.length_or_zero(&fields, "joint");
         if matches!(form, Form::Rod { .. }) && 0.0 < corner_radius {
             let message = "`corner_radius` rounds the corners of a window, and a rod has none";
-            self.fault(fields.span("corner_radius"), message, "remove it, or draw the rod in `[[parts]]` with fillets");
+            self.fault(
+                fields.span("corner_radius"),
+                message,
+                "remove it, or draw the rod in `[[parts]]` with fillets",
+            );
         }
         Some(Core { material, form, corner_radius, joint })
     }
@@ -58,7 +75,10 @@ impl<'a> Reader<'a> {
         if let DeValue::String(word) = value.get_ref()
             && RINGS.contains(&word.trim().to_lowercase().as_str())
         {
-            let message = format!("form = \"{}\": a ring core carries its flux around the axis, and this program solves flux in the (r, z) plane", word.trim());
+            let message = format!(
+                "form = \"{}\": a ring core carries its flux around the axis, and this program solves flux in the (r, z) plane",
+                word.trim()
+            );
             let help = "sum it by hand, L = µ0 µr N² h ln(r2/r1)/2π; the forms solved here are \"pot\", \"drum\" and \"rod\"";
             self.fault(value.span(), message, help);
             return None;
@@ -72,7 +92,11 @@ impl<'a> Reader<'a> {
         for key in keys::CORE.keys {
             if fields.has(key) && !own.contains(key) && !COMMON_KEYS.contains(key) {
                 let help = format!("remove it; a {name} has {}", own.join(", "));
-                self.fault(fields.span(key), format!("`{key}` is no dimension of form = \"{name}\""), help);
+                self.fault(
+                    fields.span(key),
+                    format!("`{key}` is no dimension of form = \"{name}\""),
+                    help,
+                );
             }
         }
     }
@@ -94,21 +118,40 @@ impl<'a> Reader<'a> {
         match (fields.has("outer_diameter"), fields.has("outer_legs_area")) {
             (true, true) => {
                 let also = (fields.span("outer_diameter"), "one statement of the wall");
-                let message = "the wall is given twice, by `outer_diameter` and by `outer_legs_area`";
-                self.fault_pair(fields.span("outer_legs_area"), also, message, "keep the one that the drawing has: legs that are not round have an area");
+                let message =
+                    "the wall is given twice, by `outer_diameter` and by `outer_legs_area`";
+                self.fault_pair(
+                    fields.span("outer_legs_area"),
+                    also,
+                    message,
+                    "keep the one that the drawing has: legs that are not round have an area",
+                );
                 PotWall::OuterDiameter(f64::NAN)
             }
             (false, true) => {
                 let kind = Kind::Of(Dimension::Area);
-                PotWall::OuterLegsArea(self.number(fields, "outer_legs_area", kind, Bound::Positive))
+                PotWall::OuterLegsArea(self.number(
+                    fields,
+                    "outer_legs_area",
+                    kind,
+                    Bound::Positive,
+                ))
             }
             (true, false) => PotWall::OuterDiameter(self.length(fields, "outer_diameter")),
-            (false, false) if ["outer_diameter", "outer_legs_area"].iter().any(|key| fields.has_misspelled(key)) => {
+            (false, false)
+                if ["outer_diameter", "outer_legs_area"]
+                    .iter()
+                    .any(|key| fields.has_misspelled(key)) =>
+            {
                 PotWall::OuterDiameter(f64::NAN)
             }
             (false, false) => {
                 let help = "add `outer_diameter = 25.5`, or `outer_legs_area = \"95 mm²\"` for legs that are not round";
-                self.fault(fields.header_span(), "`[core]` lacks `outer_diameter` or `outer_legs_area`", help);
+                self.fault(
+                    fields.header_span(),
+                    "`[core]` lacks `outer_diameter` or `outer_legs_area`",
+                    help,
+                );
                 PotWall::OuterDiameter(f64::NAN)
             }
         }
@@ -175,8 +218,13 @@ impl<'a> Reader<'a> {
             let length = self.length(&fields, "length");
             let center = self.number_or(&fields, "center", LENGTH, Bound::Any, 0.0);
             if across == Across::Spacer && fields.has("center") {
-                let message = "`center` is given for a spacer, which moves the halves apart in the middle";
-                self.fault(fields.span("center"), message, "remove `center`, or write across = \"post\" for a ground gap");
+                let message =
+                    "`center` is given for a spacer, which moves the halves apart in the middle";
+                self.fault(
+                    fields.span("center"),
+                    message,
+                    "remove `center`, or write across = \"post\" for a ground gap",
+                );
             }
             gaps.push(Gap { name, across, length, center });
         }
@@ -221,7 +269,10 @@ impl<'a> Reader<'a> {
         let corners = match value.get_ref() {
             DeValue::Array(corners) if 3 <= corners.len() => corners,
             other => {
-                let message = format!("`outline` must be a list of three corners or more, but it is {}", list_words(other));
+                let message = format!(
+                    "`outline` must be a list of three corners or more, but it is {}",
+                    list_words(other)
+                );
                 self.fault(value.span(), message, help);
                 return Vec::new();
             }
@@ -233,8 +284,15 @@ impl<'a> Reader<'a> {
         let items = match value.get_ref() {
             DeValue::Array(items) if (2..=3).contains(&items.len()) => items,
             other => {
-                let message = format!("`outline` must hold corners [r, z] or [r, z, fillet], but here is {}", list_words(other));
-                self.fault(value.span(), message, "write radius, height and, for a rounded corner, the fillet's radius");
+                let message = format!(
+                    "`outline` must hold corners [r, z] or [r, z, fillet], but here is {}",
+                    list_words(other)
+                );
+                self.fault(
+                    value.span(),
+                    message,
+                    "write radius, height and, for a rounded corner, the fillet's radius",
+                );
                 return Corner { at: Point::default(), fillet_radius: 0.0 };
             }
         };
@@ -242,7 +300,8 @@ impl<'a> Reader<'a> {
             r: self.number_at("outline", &items[0], LENGTH, Bound::NotNegative),
             z: self.number_at("outline", &items[1], LENGTH, Bound::Any),
         };
-        let fillet = items.get(2).map(|item| self.number_at("outline", item, LENGTH, Bound::NotNegative));
+        let fillet =
+            items.get(2).map(|item| self.number_at("outline", item, LENGTH, Bound::NotNegative));
         Corner { at, fillet_radius: fillet.unwrap_or(0.0) }
     }
 }

@@ -1,8 +1,8 @@
 //! `[[windings]]`, `[[require]]` and `[[probes]]` → who carries current, and what is asked of it.
 
+use super::bounds::{Bound, CURRENT, INDUCTANCE, Kind, LENGTH};
 use super::keys;
 use super::nearest::nearest;
-use super::values::{Bound, CURRENT, INDUCTANCE, Kind, LENGTH};
 use super::walk::{Fields, Reader};
 use crate::model::{InductanceKind, Probe, Requirement, Section, Subject, Winding};
 use std::collections::BTreeMap;
@@ -14,13 +14,22 @@ impl<'a> Reader<'a> {
         for fields in self.list(top, "windings", &keys::WINDING) {
             windings.push(self.winding(&fields, windings.len()));
         }
-        if !top.has("windings") {
+        let is_absent = !top.has("windings") && !top.has_misspelled("windings");
+        let is_empty_list = top
+            .get("windings")
+            .is_some_and(|v| v.get_ref().as_array().is_some_and(|list| list.is_empty()));
+        if is_absent || is_empty_list {
             let help = "add `[[windings]]` with `turns = 42`, `radii = [6.6, 10.2]` and `heights = [-4.9, 4.9]`";
-            self.fault(0..0, "the sheet has no windings", help);
+            let span = top.get("windings").map_or(0..0, |value| value.span());
+            self.fault(span, "the sheet has no windings", help);
         } else if !windings.is_empty() && windings.iter().all(|winding| winding.current == 0.0) {
             let subject = Subject::Winding { winding: 0, section: 0 };
             let span = self.spans.get(&(subject, "current")).cloned().unwrap_or(0..0);
-            self.fault(span, "the currents of all windings are 0, so there is no field", "give one of them a current, such as \"1 A\"");
+            self.fault(
+                span,
+                "the currents of all windings are 0, so there is no field",
+                "give one of them a current, such as \"1 A\"",
+            );
         }
         let names = windings.iter().map(|winding| winding.name.as_str());
         self.distinct_names("winding", names, |winding| Subject::Winding { winding, section: 0 });
@@ -30,8 +39,18 @@ impl<'a> Reader<'a> {
     fn winding(&mut self, fields: &Fields<'a>, index: usize) -> Winding {
         self.remember(Subject::Winding { winding: index, section: 0 }, fields);
         let name = self.text(fields, "name").unwrap_or(format!("winding {}", index + 1));
-        let sections = if fields.has("sections") { self.sections(fields, index) } else { vec![self.section(fields)] };
-        let current = self.number_or(fields, "current", CURRENT, Bound::Any, if index == 0 { 1.0 } else { 0.0 });
+        let sections = if fields.has("sections") {
+            self.sections(fields, index)
+        } else {
+            vec![self.section(fields)]
+        };
+        let current = self.number_or(
+            fields,
+            "current",
+            CURRENT,
+            Bound::Any,
+            if index == 0 { 1.0 } else { 0.0 },
+        );
         let ripple = self.number_or(fields, "ripple", CURRENT, Bound::NotNegative, 0.0);
         Winding { name, sections, current, ripple }
     }
@@ -41,7 +60,12 @@ impl<'a> Reader<'a> {
             if fields.has(key) {
                 let also = (fields.span("sections"), "the sections");
                 let message = format!("`{key}` stands beside `sections`");
-                self.fault_pair(fields.span(key), also, message, format!("write `{key}` inside each section only"));
+                self.fault_pair(
+                    fields.span(key),
+                    also,
+                    message,
+                    format!("write `{key}` inside each section only"),
+                );
             }
         }
         let mut sections = Vec::new();
@@ -50,13 +74,23 @@ impl<'a> Reader<'a> {
             sections.push(self.section(inner));
         }
         if sections.is_empty() {
-            self.fault(fields.span("sections"), "`sections` is empty", "write `sections = [{ turns = 21, radii = [6.6, 8.4], heights = [-4.9, 4.9] }, …]`");
+            self.fault(
+                fields.span("sections"),
+                "`sections` is empty",
+                "write `sections = [{ turns = 21, radii = [6.6, 8.4], heights = [-4.9, 4.9] }, …]`",
+            );
         }
         sections
     }
 
     /// A section's keys, and the winding's where the section has none.
-    fn remember_section(&mut self, winding: usize, section: usize, outer: &Fields<'a>, inner: &Fields<'a>) {
+    fn remember_section(
+        &mut self,
+        winding: usize,
+        section: usize,
+        outer: &Fields<'a>,
+        inner: &Fields<'a>,
+    ) {
         let subject = Subject::Winding { winding, section };
         self.remember(subject, outer);
         self.remember(subject, inner);
@@ -65,13 +99,23 @@ impl<'a> Reader<'a> {
     fn section(&mut self, fields: &Fields<'a>) -> Section {
         Section {
             turns: self.number(fields, "turns", Kind::Pure, Bound::Positive),
-            radii: self.ordered_pair(fields, "radii", ["the inner radius", "the outer radius"], Bound::NotNegative),
+            radii: self.ordered_pair(
+                fields,
+                "radii",
+                ["the inner radius", "the outer radius"],
+                Bound::NotNegative,
+            ),
             heights: self.ordered_pair(fields, "heights", ["the bottom", "the top"], Bound::Any),
         }
     }
 
     /// Notes names that occur twice; `subject` finds where each one stands.
-    pub fn distinct_names<'n>(&mut self, what: &str, names: impl Iterator<Item = &'n str>, subject: impl Fn(usize) -> Subject) {
+    pub fn distinct_names<'n>(
+        &mut self,
+        what: &str,
+        names: impl Iterator<Item = &'n str>,
+        subject: impl Fn(usize) -> Subject,
+    ) {
         let mut seen: BTreeMap<&str, usize> = BTreeMap::new();
         for (index, name) in names.enumerate() {
             let Some(first) = seen.insert(name, index) else { continue };
@@ -90,18 +134,28 @@ impl<'a> Reader<'a> {
     fn requirement(&mut self, fields: &Fields<'a>, windings: &[Winding]) -> Requirement {
         let winding = self.winding_of(fields, windings);
         let current = self.number(fields, "current", CURRENT, Bound::NotZero);
-        let kinds = [("apparent", InductanceKind::Apparent), ("incremental", InductanceKind::Incremental)];
+        let kinds =
+            [("apparent", InductanceKind::Apparent), ("incremental", InductanceKind::Incremental)];
         let kind = self.choice(fields, "kind", &kinds).unwrap_or(InductanceKind::Apparent);
-        let [least, most] = ["least", "most"]
-            .map(|key| fields.get(key).map(|value| self.number_at(key, value, INDUCTANCE, Bound::Positive)));
+        let [least, most] = ["least", "most"].map(|key| {
+            fields.get(key).map(|value| self.number_at(key, value, INDUCTANCE, Bound::Positive))
+        });
         if least.is_none() && most.is_none() {
-            self.fault(fields.header_span(), "`[[require]]` promises nothing", "add `least = \"0.60 mH\"`, `most`, or both");
+            self.fault(
+                fields.header_span(),
+                "`[[require]]` promises nothing",
+                "add `least = \"0.60 mH\"`, `most`, or both",
+            );
         }
         if let (Some(least), Some(most)) = (least, most)
             && most < least
         {
             let [low, high] = ["least", "most"].map(|key| fields.span(key));
-            let message = format!("`least` = {} is above `most` = {}", self.written(&low), self.written(&high));
+            let message = format!(
+                "`least` = {} is above `most` = {}",
+                self.written(&low),
+                self.written(&high)
+            );
             self.fault_pair(low, (high, "below `least`"), message, "exchange the two");
         }
         Requirement { winding, current, kind, least, most }
@@ -127,7 +181,11 @@ impl<'a> Reader<'a> {
             self.remember(Subject::Probe(index), &fields);
             probes.push(self.probe(&fields, index));
         }
-        self.distinct_names("probe", probes.iter().map(|probe: &Probe| probe.name.as_str()), Subject::Probe);
+        self.distinct_names(
+            "probe",
+            probes.iter().map(|probe: &Probe| probe.name.as_str()),
+            Subject::Probe,
+        );
         probes
     }
 
@@ -138,7 +196,12 @@ impl<'a> Reader<'a> {
             for key in ["from", "to", "points"] {
                 if fields.has(key) {
                     let also = (value.span(), "a probe at one point");
-                    self.fault_pair(fields.span(key), also, format!("`{key}` stands beside `at`"), "keep `at` for a point, or `from` and `to` for a line");
+                    self.fault_pair(
+                        fields.span(key),
+                        also,
+                        format!("`{key}` stands beside `at`"),
+                        "keep `at` for a point, or `from` and `to` for a line",
+                    );
                 }
             }
             let at = self.point_at("at", value);
@@ -149,14 +212,24 @@ impl<'a> Reader<'a> {
             None => crate::model::Point { r: f64::NAN, z: f64::NAN },
         });
         if from == to {
-            self.fault(fields.span("to"), "the probe's `to` equals its `from`", "write `at = [r, z]` for a single point");
+            self.fault(
+                fields.span("to"),
+                "the probe's `to` equals its `from`",
+                "write `at = [r, z]` for a single point",
+            );
         }
-        let n_points = self.number_or(fields, "points", Kind::Pure, Bound::Whole(2, 100_000), POINTS_DEFAULT);
+        let n_points =
+            self.number_or(fields, "points", Kind::Pure, Bound::Whole(2, 100_000), POINTS_DEFAULT);
         Probe { name, from, to, n_points: n_points as usize }
     }
 
     /// `[hot_spots]`'s radius and the like share this: a positive length or its default.
-    pub fn positive_length_or(&mut self, fields: &Fields<'a>, key: &'static str, default: f64) -> f64 {
+    pub fn positive_length_or(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        default: f64,
+    ) -> f64 {
         self.number_or(fields, key, LENGTH, Bound::Positive, default)
     }
 }

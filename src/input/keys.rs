@@ -71,13 +71,23 @@ pub(super) const ESTIMATE: Table = Table {
 };
 pub(super) const REQUIRE: Table =
     Table { shown: "`[[require]]`", keys: &["winding", "current", "kind", "least", "most"] };
-pub(super) const HOT_SPOTS: Table =
-    Table { shown: "`[hot_spots]`", keys: &["count", "averaging"] };
+pub(super) const HOT_SPOTS: Table = Table { shown: "`[hot_spots]`", keys: &["count", "averaging"] };
 
 /// Every table, the top first: where a misplaced key may belong.
 const ALL: [&Table; 13] = [
-    &TOP, &MATERIAL, &SATURATION, &CORE, &GAP, &WINDING, &SECTION, &PART, &PROBE, &ACCURACY,
-    &ESTIMATE, &REQUIRE, &HOT_SPOTS,
+    &TOP,
+    &MATERIAL,
+    &SATURATION,
+    &CORE,
+    &GAP,
+    &WINDING,
+    &SECTION,
+    &PART,
+    &PROBE,
+    &ACCURACY,
+    &ESTIMATE,
+    &REQUIRE,
+    &HOT_SPOTS,
 ];
 
 /// Keys of the top that are no tables.
@@ -85,7 +95,8 @@ const TOP_VALUES: [&str; 2] = ["title", "length_unit"];
 
 /// What to write instead of an unknown table of the top.
 pub(super) fn table_advice(unknown: &str) -> String {
-    let tables: Vec<&str> = TOP.keys.iter().copied().filter(|key| !TOP_VALUES.contains(key)).collect();
+    let tables: Vec<&str> =
+        TOP.keys.iter().copied().filter(|key| !TOP_VALUES.contains(key)).collect();
     let nearest = nearest(unknown, &tables).unwrap_or_default();
     format!("the nearest known table is `{nearest}`; known here: {}", tables.join(", "))
 }

@@ -1,10 +1,11 @@
 //! `[materials.NAME]` → [`Material`], inline B–H pairs included; tables in files are read by `bh_file`.
 
 use super::bh_file;
+use super::bounds::{Bound, Kind};
 use super::keys;
 use super::nearest::nearest;
-use super::values::{Bound, Kind, list_words};
-use super::walk::{Fields, Reader, kind_of};
+use super::values::{is_harmful, list_words};
+use super::walk::{Fields, ITEMS_MAX, Reader, kind_of};
 use crate::model::{BhTable, Interpolation, Law, Material, MaterialId, Subject};
 use crate::units::Dimension;
 use toml::Spanned;
@@ -17,17 +18,27 @@ impl<'a> Reader<'a> {
     pub fn materials(&mut self, top: &Fields<'a>) -> Vec<Material> {
         let Some(value) = top.get("materials") else { return Vec::new() };
         let DeValue::Table(entries) = value.get_ref() else {
-            let message = format!("`materials` must hold tables, but it is {}", kind_of(value.get_ref()));
+            let message =
+                format!("`materials` must hold tables, but it is {}", kind_of(value.get_ref()));
             self.fault(value.span(), message, "write `[materials.soft_ferrite]`, its keys below");
             return Vec::new();
         };
         let mut named: Vec<_> = entries.iter().collect();
         named.sort_by_key(|(name, _)| name.span().start);
+        if ITEMS_MAX < named.len() {
+            let message = format!("{} materials, where at most {ITEMS_MAX} are read", named.len());
+            self.fault(value.span(), message, "leave out those that no part is made of");
+            return Vec::new();
+        }
         let mut materials = Vec::new();
         for (name, value) in named {
             let DeValue::Table(entries) = value.get_ref() else {
                 let message = format!("`{}` stands in `[materials]` itself", name.get_ref());
-                self.fault(name.span(), message, "give the material a name: `[materials.soft_ferrite]`, its keys below");
+                self.fault(
+                    name.span(),
+                    message,
+                    "give the material a name: `[materials.soft_ferrite]`, its keys below",
+                );
                 continue;
             };
             let fields = self.fields(entries, value.span(), &keys::MATERIAL);
@@ -40,8 +51,12 @@ impl<'a> Reader<'a> {
     }
 
     fn material_name(&mut self, name: &Spanned<std::borrow::Cow<'a, str>>) {
-        if name.get_ref().trim().is_empty() || name.get_ref().chars().any(char::is_control) {
-            self.fault(name.span(), "a material's name is empty or holds a control character", "write `[materials.soft_ferrite]`");
+        if name.get_ref().trim().is_empty() || name.get_ref().chars().any(is_harmful) {
+            self.fault(
+                name.span(),
+                "a material's name is empty or holds a control character",
+                "write `[materials.soft_ferrite]`",
+            );
         }
     }
 
@@ -49,7 +64,11 @@ impl<'a> Reader<'a> {
         const PLACEHOLDER: Law = Law::Constant { permeability: 1.0 };
         let given: Vec<&str> = LAWS.into_iter().filter(|key| fields.has(key)).collect();
         if fields.has("interpolation") && !fields.has("bh") {
-            self.fault(fields.span("interpolation"), "`interpolation` is given, but there is no `bh` table", "remove it");
+            self.fault(
+                fields.span("interpolation"),
+                "`interpolation` is given, but there is no `bh` table",
+                "remove it",
+            );
         }
         match given[..] {
             ["bh"] => self.bh(fields, name).unwrap_or(PLACEHOLDER),
@@ -60,7 +79,11 @@ impl<'a> Reader<'a> {
             }
             [] => {
                 let message = format!("material `{name}` has no law");
-                self.fault(fields.header_span(), message, "add one of `permeability = 2000`, `bh = \"table.csv\"`, `saturation = { … }`");
+                self.fault(
+                    fields.header_span(),
+                    message,
+                    "add one of `permeability = 2000`, `bh = \"table.csv\"`, `saturation = { … }`",
+                );
                 PLACEHOLDER
             }
             [first, second, ..] => {
@@ -75,13 +98,19 @@ impl<'a> Reader<'a> {
     fn saturation(&mut self, fields: &Fields<'a>) -> Option<Law> {
         let value = fields.get("saturation")?;
         let DeValue::Table(entries) = value.get_ref() else {
-            let message = format!("`saturation` must be a table, but it is {}", kind_of(value.get_ref()));
-            self.fault(value.span(), message, "write `saturation = { initial_permeability = 2300, flux_density = \"0.48 T\" }`");
+            let message =
+                format!("`saturation` must be a table, but it is {}", kind_of(value.get_ref()));
+            self.fault(
+                value.span(),
+                message,
+                "write `saturation = { initial_permeability = 2300, flux_density = \"0.48 T\" }`",
+            );
             return None;
         };
         let inner = self.fields(entries, value.span(), &keys::SATURATION);
         let initial = self.number(&inner, "initial_permeability", Kind::Pure, Bound::Positive);
-        let flux = self.number(&inner, "flux_density", Kind::Of(Dimension::FluxDensity), Bound::Positive);
+        let flux =
+            self.number(&inner, "flux_density", Kind::Of(Dimension::FluxDensity), Bound::Positive);
         if initial.is_nan() || flux.is_nan() {
             return None;
         }
@@ -95,14 +124,18 @@ impl<'a> Reader<'a> {
 
     fn bh(&mut self, fields: &Fields<'a>, name: &str) -> Option<Law> {
         let words = [("smooth", Interpolation::Smooth), ("linear", Interpolation::Linear)];
-        let interpolation = self.choice(fields, "interpolation", &words).unwrap_or(Interpolation::Smooth);
+        let interpolation =
+            self.choice(fields, "interpolation", &words).unwrap_or(Interpolation::Smooth);
         let value = fields.get("bh")?;
         match value.get_ref() {
             DeValue::String(path) => {
                 let text = match (self.read_file)(path) {
                     Ok(text) => text,
                     Err(reason) => {
-                        let message = format!("the B–H table `{}` of material `{name}` cannot be read: {reason}", path.escape_default());
+                        let message = format!(
+                            "the B–H table `{}` of material `{name}` cannot be read: {reason}",
+                            path.escape_default()
+                        );
                         self.fault(value.span(), message, "write the path relative to this sheet");
                         return None;
                     }
@@ -117,24 +150,47 @@ impl<'a> Reader<'a> {
             }
             DeValue::Array(rows) => self.bh_pairs(value, rows, interpolation),
             other => {
-                let message = format!("`bh` must be the path of a CSV file or a list of pairs, but it is {}", kind_of(other));
-                self.fault(value.span(), message, "write `bh = \"table.csv\"` or `bh = [[0, 0], [50, 0.1], …]`");
+                let message = format!(
+                    "`bh` must be the path of a CSV file or a list of pairs, but it is {}",
+                    kind_of(other)
+                );
+                self.fault(
+                    value.span(),
+                    message,
+                    "write `bh = \"table.csv\"` or `bh = [[0, 0], [50, 0.1], …]`",
+                );
                 None
             }
         }
     }
 
-    fn bh_pairs(&mut self, value: &Spanned<DeValue<'a>>, rows: &[Spanned<DeValue<'a>>], interpolation: Interpolation) -> Option<Law> {
+    fn bh_pairs(
+        &mut self,
+        value: &Spanned<DeValue<'a>>,
+        rows: &[Spanned<DeValue<'a>>],
+        interpolation: Interpolation,
+    ) -> Option<Law> {
         let (mut h, mut b) = (Vec::new(), Vec::new());
         let n_before = self.diagnostics.len();
         for row in rows {
             match row.get_ref() {
                 DeValue::Array(pair) if pair.len() == 2 => {
-                    h.push(self.number_at("bh", &pair[0], Kind::Of(Dimension::FieldStrength), Bound::Any));
-                    b.push(self.number_at("bh", &pair[1], Kind::Of(Dimension::FluxDensity), Bound::Any));
+                    h.push(self.number_at(
+                        "bh",
+                        &pair[0],
+                        Kind::Of(Dimension::FieldStrength),
+                        Bound::Any,
+                    ));
+                    b.push(self.number_at(
+                        "bh",
+                        &pair[1],
+                        Kind::Of(Dimension::FluxDensity),
+                        Bound::Any,
+                    ));
                 }
                 other => {
-                    let message = format!("`bh` must hold pairs [H, B], but here is {}", list_words(other));
+                    let message =
+                        format!("`bh` must hold pairs [H, B], but here is {}", list_words(other));
                     self.fault(row.span(), message, "write H in A/m and B in T: [50, 0.1]");
                 }
             }

@@ -3,8 +3,14 @@
 //! Opens no file: the caller hands over the text, and a function that fetches the texts which the
 //! sheet names. Tables and keys are in `keys`; each module below reads a few of the tables.
 
+#![allow(
+    clippy::result_large_err,
+    reason = "a diagnostic is built once, when reading ends; its size costs nothing"
+)]
+
 mod bh_file;
 mod body;
+mod bounds;
 mod coils;
 mod diagnostic;
 mod keys;
@@ -20,6 +26,7 @@ pub use diagnostic::{Diagnostic, render};
 pub use schema::schema;
 
 use crate::model::{Interpolation, Law, Model};
+use crate::units::{Dimension, read as read_quantity};
 use std::path::Path;
 use toml::de::DeTable;
 use walk::{Fields, Reader, Spans};
@@ -51,7 +58,13 @@ pub fn read(
 ) -> Result<Sheet, Vec<Diagnostic>> {
     if text.trim().is_empty() {
         let help = "write at least `[[windings]]` with `turns`, `radii` and `heights`";
-        return Err(vec![Diagnostic::at(name, text, 0..0, "the sheet is empty".into(), help.into())]);
+        return Err(vec![Diagnostic::at(
+            name,
+            text,
+            0..0,
+            "the sheet is empty".into(),
+            help.into(),
+        )]);
     }
     if FILE_BYTES_MAX < text.len() as u64 {
         return Err(vec![too_large(text.len() as u64, name)]);
@@ -120,7 +133,12 @@ impl<'a> Reader<'a> {
 /// Replaces one material's law by the table in `csv_text`, for one run (`--material NAME=FILE.csv`).
 ///
 /// `file` is the table's name in messages. The interpolation stays that of the table replaced.
-pub fn replace_material(sheet: &mut Sheet, name: &str, csv_text: &str, file: &str) -> Result<(), Diagnostic> {
+pub fn replace_material(
+    sheet: &mut Sheet,
+    name: &str,
+    csv_text: &str,
+    file: &str,
+) -> Result<(), Diagnostic> {
     let Some(index) = sheet.model.materials.iter().position(|m| m.name == name) else {
         let (message, help) = materials::unknown_material(name, &sheet.model.materials);
         return Err(Diagnostic::at(&sheet.name, &sheet.text, 0..0, message, help));
@@ -134,6 +152,16 @@ pub fn replace_material(sheet: &mut Sheet, name: &str, csv_text: &str, file: &st
     Ok(())
 }
 
+/// Reads a relative width of the interval ("0.01 %", "1e-4"), with the bounds that the sheet has for it.
+pub fn interval(text: &str) -> Result<f64, String> {
+    let value =
+        read_quantity(text, Dimension::Ratio, (0, 1.0)).map_err(|error| error.to_string())?;
+    match wishes::INTERVALS.complaint(value, bounds::RATIO) {
+        Some(complaint) => Err(format!("`{}` {complaint}", text.trim())),
+        None => Ok(value),
+    }
+}
+
 /// The text of a file's bytes, without a byte-order mark; or where they stop being UTF-8.
 pub fn decode(bytes: &[u8], name: &str) -> Result<String, Diagnostic> {
     match std::str::from_utf8(bytes) {
@@ -142,7 +170,11 @@ pub fn decode(bytes: &[u8], name: &str) -> Result<String, Diagnostic> {
             let at = error.valid_up_to();
             let message = match bytes {
                 [0xff, 0xfe, ..] | [0xfe, 0xff, ..] => "the file is UTF-16, not UTF-8".to_string(),
-                _ => format!("the file is not UTF-8: byte {} has the value {:#04x}", at + 1, bytes[at]),
+                _ => format!(
+                    "the file is not UTF-8: byte {} has the value {:#04x}",
+                    at + 1,
+                    bytes[at]
+                ),
             };
             let shown = String::from_utf8_lossy(bytes);
             let help = "save it in the encoding UTF-8, which every text editor offers".into();
@@ -164,7 +196,7 @@ fn too_large(n_bytes: u64, name: &str) -> Diagnostic {
 }
 
 fn size_message(n_bytes: u64) -> String {
-    format!("the file has {:.1} MB; at most {} MB are read", n_bytes as f64 / 1e6, FILE_BYTES_MAX / 1_000_000)
+    format!("the file has {n_bytes} bytes; at most {FILE_BYTES_MAX} are read")
 }
 
 /// The parser's own complaints about the text as TOML.

@@ -35,9 +35,14 @@ mod tests {
 
     #[test]
     fn counts_single_letter_edits_and_swaps() {
-        for (a, b, edits) in
-            [("", "", 0), ("gap", "gap", 0), ("gaps", "gap", 1), ("heigth", "height", 1), ("", "abc", 3), ("kitten", "sitting", 3)]
-        {
+        for (a, b, edits) in [
+            ("", "", 0),
+            ("gap", "gap", 0),
+            ("gaps", "gap", 1),
+            ("heigth", "height", 1),
+            ("", "abc", 3),
+            ("kitten", "sitting", 3),
+        ] {
             assert_eq!((distance(a, b), distance(b, a)), (edits, edits));
         }
     }

@@ -10,9 +10,14 @@ impl Sheet {
     /// The fault with the lines of the sheet that it is about; both of them when two shapes collide.
     pub fn diagnose(&self, fault: &Fault) -> Diagnostic {
         let span = find(&self.spans, fault.subject, fault.key);
-        let mut found =
-            Diagnostic::at(&self.name, &self.text, span.clone(), fault.message.clone(), fault.help.clone())
-                .labelled(self.words(fault.subject));
+        let mut found = Diagnostic::at(
+            &self.name,
+            &self.text,
+            span.clone(),
+            fault.message.clone(),
+            fault.help.clone(),
+        )
+        .labelled(self.words(fault.subject));
         if let Some(other) = fault.other {
             let place = find(&self.spans, other, None);
             if place != span {
@@ -33,11 +38,17 @@ impl Sheet {
             Subject::Core => "the core".into(),
             Subject::Gap(i) => named("gap", model.gaps.get(i).map(|gap| gap.name.as_str())),
             Subject::Part(i) => named("part", model.parts.get(i).map(|part| part.name.as_str())),
-            Subject::Material(i) => named("material", model.materials.get(i).map(|m| m.name.as_str())),
-            Subject::Probe(i) => named("probe", model.probes.get(i).map(|probe| probe.name.as_str())),
+            Subject::Material(i) => {
+                named("material", model.materials.get(i).map(|m| m.name.as_str()))
+            }
+            Subject::Probe(i) => {
+                named("probe", model.probes.get(i).map(|probe| probe.name.as_str()))
+            }
             Subject::Sheet => "here".into(),
             Subject::Winding { winding, section } => match model.windings.get(winding) {
-                Some(w) if 1 < w.sections.len() => format!("winding `{}`, section {}", w.name, section + 1),
+                Some(w) if 1 < w.sections.len() => {
+                    format!("winding `{}`, section {}", w.name, section + 1)
+                }
                 w => named("winding", w.map(|w| w.name.as_str())),
             },
         }

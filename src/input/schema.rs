@@ -71,7 +71,8 @@ quantity!(Ratio, Dimension::Ratio, "a bare ratio, or a text such as \"3 %\"");
 
 fn quantity_schema(dimension: Dimension, description: &str) -> Schema {
     let units = spellings(dimension).join("|").replace('^', "\\^");
-    let pattern = format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
+    let pattern =
+        format!("^\\s*[+-]?([0-9]+\\.?[0-9]*|\\.[0-9]+)([eE][+-]?[0-9]+)?\\s*({units})?\\s*$");
     json_schema!({
         "description": description,
         "anyOf": [{ "type": "number" }, { "type": "string", "pattern": pattern }],
@@ -171,6 +172,7 @@ struct Saturation {
 #[schemars(tag = "form", rename_all = "lowercase", deny_unknown_fields)]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 enum Core {
+    #[schemars(extend("oneOf" = [{ "required": ["outer_diameter"] }, { "required": ["outer_legs_area"] }]))]
     Pot {
         material: String,
         /// Either this or `outer_legs_area`.
@@ -229,6 +231,7 @@ enum Across {
 /// Either `turns`, `radii`, `heights`, or `sections` in series.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("oneOf" = [{ "required": ["turns", "radii", "heights"] }, { "required": ["sections"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Winding {
     name: Option<String>,
@@ -273,6 +276,7 @@ enum Corner {
 /// One point `at`, or a line `from` … `to`.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("oneOf" = [{ "required": ["at"] }, { "required": ["from", "to"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Probe {
     name: Option<String>,
@@ -325,6 +329,7 @@ enum NamedCorrection {
 /// A promise; `least`, `most` or both.
 #[derive(JsonSchema)]
 #[schemars(deny_unknown_fields)]
+#[schemars(extend("anyOf" = [{ "required": ["least"] }, { "required": ["most"] }]))]
 #[expect(dead_code, reason = "mirrors the format; only its schema is used")]
 struct Require {
     winding: String,
@@ -349,4 +354,48 @@ struct HotSpots {
     count: Option<u32>,
     /// Radius of the disc over which B is averaged; 0.2 mm when left out.
     averaging: Option<Length>,
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::keys;
+    use super::*;
+    use std::collections::BTreeSet;
+
+    /// Property names of a definition, those of its alternatives included.
+    fn properties(definition: &Value) -> BTreeSet<String> {
+        let alternatives =
+            ["oneOf", "anyOf"].into_iter().filter_map(|key| definition[key].as_array());
+        let all = alternatives.flatten().chain([definition]);
+        all.filter_map(|d| d["properties"].as_object()).flat_map(|p| p.keys().cloned()).collect()
+    }
+
+    #[test]
+    fn the_schema_has_the_keys_of_the_reader() {
+        let root = schema();
+        let definitions = &root["$defs"];
+        for (definition, table) in [
+            (&root, &keys::TOP),
+            (&definitions["Material"], &keys::MATERIAL),
+            (&definitions["Saturation"], &keys::SATURATION),
+            (&definitions["Core"], &keys::CORE),
+            (&definitions["Gap"], &keys::GAP),
+            (&definitions["Winding"], &keys::WINDING),
+            (&definitions["Section"], &keys::SECTION),
+            (&definitions["Part"], &keys::PART),
+            (&definitions["Probe"], &keys::PROBE),
+            (&definitions["Accuracy"], &keys::ACCURACY),
+            (&definitions["Estimate"], &keys::ESTIMATE),
+            (&definitions["Require"], &keys::REQUIRE),
+            (&definitions["HotSpots"], &keys::HOT_SPOTS),
+        ] {
+            let wanted: BTreeSet<String> = table.keys.iter().map(|key| key.to_string()).collect();
+            assert_eq!(properties(definition), wanted, "{}", table.shown);
+        }
+    }
+
+    #[test]
+    fn null_is_nowhere_allowed() {
+        assert!(!schema().to_string().contains("null"));
+    }
 }

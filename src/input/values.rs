@@ -1,5 +1,6 @@
 //! Single values of the sheet: numbers and quantities, pairs and points, texts and choices.
 
+use super::bounds::{Bound, Kind, LENGTH};
 use super::keys;
 use super::nearest::nearest;
 use super::walk::{Fields, Reader, kind_of};
@@ -8,46 +9,15 @@ use crate::units::{Dimension, QuantityError, decimal, read};
 use toml::Spanned;
 use toml::de::DeValue;
 
-/// What a number is.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(super) enum Kind {
-    /// A number without a unit: turns, permeability, a count.
-    Pure,
-    Of(Dimension),
-}
-
-pub(super) const LENGTH: Kind = Kind::Of(Dimension::Length);
-pub(super) const CURRENT: Kind = Kind::Of(Dimension::Current);
-pub(super) const INDUCTANCE: Kind = Kind::Of(Dimension::Inductance);
-
-/// Which numbers are allowed.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub(super) enum Bound {
-    Any,
-    Positive,
-    NotNegative,
-    NotZero,
-    /// Whole numbers from … to ….
-    Whole(u32, u32),
-    /// From … to …, as they are printed.
-    Between([f64; 2], &'static str),
-}
-
-impl Kind {
-    /// Smallest positive and largest magnitude that make sense: far outside any real core, close
-    /// enough that squares and ratios of such numbers stay within double precision.
-    fn limits(self) -> [f64; 2] {
-        match self {
-            Kind::Pure => [1e-6, 1e9],
-            Kind::Of(Dimension::Length) => [1e-9, 1e3],
-            Kind::Of(_) => [1e-15, 1e12],
-        }
-    }
-}
-
 impl<'a> Reader<'a> {
     /// The number under a key that must be there; NaN when it is not usable.
-    pub fn number(&mut self, fields: &Fields<'a>, key: &'static str, kind: Kind, bound: Bound) -> f64 {
+    pub fn number(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        kind: Kind,
+        bound: Bound,
+    ) -> f64 {
         match self.must(fields, key) {
             Some(value) => self.number_at(key, value, kind, bound),
             None => f64::NAN,
@@ -55,7 +25,14 @@ impl<'a> Reader<'a> {
     }
 
     /// The number under a key, or `default`.
-    pub fn number_or(&mut self, fields: &Fields<'a>, key: &'static str, kind: Kind, bound: Bound, default: f64) -> f64 {
+    pub fn number_or(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        kind: Kind,
+        bound: Bound,
+        default: f64,
+    ) -> f64 {
         fields.get(key).map_or(default, |value| self.number_at(key, value, kind, bound))
     }
 
@@ -70,11 +47,18 @@ impl<'a> Reader<'a> {
     }
 
     /// One number of the sheet in SI; NaN, with the mistake noted, when it is not usable.
-    pub fn number_at(&mut self, key: &str, value: &Spanned<DeValue<'a>>, kind: Kind, bound: Bound) -> f64 {
+    pub fn number_at(
+        &mut self,
+        key: &str,
+        value: &Spanned<DeValue<'a>>,
+        kind: Kind,
+        bound: Bound,
+    ) -> f64 {
         let span = value.span();
         let read = match (value.get_ref(), kind) {
             (DeValue::Integer(number), _) if number.radix() != 10 => {
-                i64::from_str_radix(number.as_str(), number.radix()).map_or(f64::NAN, |n| self.bare(&n.to_string(), kind))
+                i64::from_str_radix(number.as_str(), number.radix())
+                    .map_or(f64::NAN, |n| self.bare(&n.to_string(), kind))
             }
             (DeValue::Integer(number), _) => self.bare(number.as_str(), kind),
             (DeValue::Float(number), _) => self.bare(number.as_str(), kind),
@@ -90,7 +74,8 @@ impl<'a> Reader<'a> {
                 }
             }
             (other, _) => {
-                let message = format!("`{key}` must be {}, but it is {}", kind_words(kind), kind_of(other));
+                let message =
+                    format!("`{key}` must be {}, but it is {}", kind.words(), kind_of(other));
                 let help = self.wanted(kind);
                 self.fault(span, message, help);
                 return f64::NAN;
@@ -108,38 +93,25 @@ impl<'a> Reader<'a> {
         if kind == LENGTH { self.bare_length } else { (0, 1.0) }
     }
 
-    fn bounded(&mut self, key: &str, span: std::ops::Range<usize>, value: f64, kind: Kind, bound: Bound) -> f64 {
-        let written = self.written(&span);
-        let [least, most] = kind.limits();
-        let complaint = match bound {
-            _ if !value.is_finite() => Some("is not a finite number".to_string()),
-            Bound::Positive if value <= 0.0 => Some("must be greater than 0".to_string()),
-            Bound::NotNegative if value < 0.0 => Some("must not be negative".to_string()),
-            Bound::NotZero if value == 0.0 => Some("must not be 0".to_string()),
-            Bound::Whole(from, to) if value.fract() != 0.0 || !(f64::from(from)..=f64::from(to)).contains(&value) => {
-                Some(format!("must be a whole number from {from} to {to}"))
+    fn bounded(
+        &mut self,
+        key: &str,
+        span: std::ops::Range<usize>,
+        value: f64,
+        kind: Kind,
+        bound: Bound,
+    ) -> f64 {
+        let Some(complaint) = bound.complaint(value, kind) else { return value };
+        let help = match (value.is_finite(), bound) {
+            (true, Bound::Whole(from, _)) => format!("write a whole number, at least {from}"),
+            (true, Bound::Positive) if keys::example(key) != keys::NO_EXAMPLE => {
+                format!("write a number greater than 0, such as {}", keys::example(key))
             }
-            Bound::Between([from, to], words) if !(from..=to).contains(&value) => Some(format!("must lie {words}")),
-            _ if most < value.abs() => Some("is larger than anything that makes sense here".to_string()),
-            _ if value != 0.0 && value.abs() < least => {
-                Some("is smaller than anything that makes sense here".to_string())
-            }
-            _ => None,
+            _ => self.wanted(kind),
         };
-        match complaint {
-            None => value,
-            Some(complaint) => {
-                let help = match (value.is_finite(), bound) {
-                    (true, Bound::Whole(from, _)) => format!("write a whole number, at least {from}"),
-                    (true, Bound::Positive) if keys::example(key) != keys::NO_EXAMPLE => {
-                        format!("write a number greater than 0, such as {}", keys::example(key))
-                    }
-                    _ => self.wanted(kind),
-                };
-                self.fault(span, format!("`{key}` = {written} {complaint}"), help);
-                f64::NAN
-            }
-        }
+        let written = self.written(&span);
+        self.fault(span, format!("`{key}` = {written} {complaint}"), help);
+        f64::NAN
     }
 
     /// "write a length …": the help of most number mistakes.
@@ -168,7 +140,13 @@ impl<'a> Reader<'a> {
     }
 
     /// Two numbers in a list, such as `radii = [inner, outer]`.
-    pub fn pair(&mut self, fields: &Fields<'a>, key: &'static str, words: &str, bound: Bound) -> [f64; 2] {
+    pub fn pair(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        words: &str,
+        bound: Bound,
+    ) -> [f64; 2] {
         let Some(value) = self.must(fields, key) else { return [f64::NAN; 2] };
         let list = match value.get_ref() {
             DeValue::Array(list) if list.len() == 2 => list,
@@ -178,7 +156,11 @@ impl<'a> Reader<'a> {
                     other => format!("it is {}", kind_of(other)),
                 };
                 let message = format!("`{key}` must be two lengths, {words}, but {is}");
-                self.fault(value.span(), message, format!("write `{key} = {}`", keys::example(key)));
+                self.fault(
+                    value.span(),
+                    message,
+                    format!("write `{key} = {}`", keys::example(key)),
+                );
                 return [f64::NAN; 2];
             }
         };
@@ -190,11 +172,22 @@ impl<'a> Reader<'a> {
     }
 
     /// A pair in ascending order.
-    pub fn ordered_pair(&mut self, fields: &Fields<'a>, key: &'static str, words: [&str; 2], bound: Bound) -> [f64; 2] {
+    pub fn ordered_pair(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        words: [&str; 2],
+        bound: Bound,
+    ) -> [f64; 2] {
         let ends = self.pair(fields, key, &format!("{} and {}", words[0], words[1]), bound);
         if ends[1] <= ends[0] {
             let span = fields.span(key);
-            let message = format!("`{key}` = {}: {} is not below {}", self.written(&span), words[0], words[1]);
+            let message = format!(
+                "`{key}` = {}: {} is not below {}",
+                self.written(&span),
+                words[0],
+                words[1]
+            );
             let help = "write the smaller number first, and leave some room between the two";
             self.fault(span, message, help);
         }
@@ -206,7 +199,8 @@ impl<'a> Reader<'a> {
         let items = match value.get_ref() {
             DeValue::Array(list) if list.len() == 2 => list,
             other => {
-                let message = format!("`{key}` must be a point [r, z], but it is {}", list_words(other));
+                let message =
+                    format!("`{key}` must be a point [r, z], but it is {}", list_words(other));
                 self.fault(value.span(), message, "write radius and height, such as [5.0, 0.0]");
                 return Point { r: f64::NAN, z: f64::NAN };
             }
@@ -228,7 +222,7 @@ impl<'a> Reader<'a> {
         };
         let complaint = if text.trim().is_empty() {
             "is empty"
-        } else if text.chars().any(char::is_control) {
+        } else if text.chars().any(is_harmful) {
             "holds a control character"
         } else if LETTERS_MAX < text.chars().count() {
             "is longer than 120 letters"
@@ -240,7 +234,12 @@ impl<'a> Reader<'a> {
     }
 
     /// One word out of a few; `None` when missing or unknown.
-    pub fn choice<T: Copy>(&mut self, fields: &Fields<'a>, key: &'static str, words: &[(&str, T)]) -> Option<T> {
+    pub fn choice<T: Copy>(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+        words: &[(&str, T)],
+    ) -> Option<T> {
         let word = self.text(fields, key)?;
         if let Some((_, meaning)) = words.iter().find(|(known, _)| *known == word) {
             return Some(*meaning);
@@ -249,15 +248,12 @@ impl<'a> Reader<'a> {
         let near = nearest(&word.to_lowercase(), &known).unwrap_or_default();
         let all = known.iter().map(|word| format!("\"{word}\"")).collect::<Vec<_>>().join(", ");
         let message = format!("`{key}` = \"{word}\" is unknown");
-        self.fault(fields.span(key), message, format!("write one of {all}; the nearest is \"{near}\""));
+        self.fault(
+            fields.span(key),
+            message,
+            format!("write one of {all}; the nearest is \"{near}\""),
+        );
         None
-    }
-}
-
-fn kind_words(kind: Kind) -> &'static str {
-    match kind {
-        Kind::Pure => "a number",
-        Kind::Of(dimension) => dimension.words().0,
     }
 }
 
@@ -267,4 +263,10 @@ pub(super) fn list_words(value: &DeValue<'_>) -> String {
         DeValue::Array(list) => format!("a list of {}", list.len()),
         other => kind_of(other).to_string(),
     }
+}
+
+/// Letters that would drive a terminal or turn the direction of writing.
+pub(super) fn is_harmful(letter: char) -> bool {
+    letter.is_control()
+        || matches!(letter, '\u{200e}'..='\u{200f}' | '\u{202a}'..='\u{202e}' | '\u{2066}'..='\u{2069}')
 }

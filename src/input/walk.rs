@@ -18,6 +18,9 @@ pub(super) type Spans = BTreeMap<(Subject, &'static str), Range<usize>>;
 /// Fetches the text of a file that the sheet names, or says why it cannot.
 pub(super) type ReadFile<'a> = &'a dyn Fn(&str) -> Result<String, String>;
 
+/// Most entries of one list; real sheets have a dozen.
+pub(super) const ITEMS_MAX: usize = 1000;
+
 /// The state of one reading.
 pub(super) struct Reader<'a> {
     pub text: &'a str,
@@ -74,7 +77,12 @@ impl<'a> Fields<'a> {
 
 impl<'a> Reader<'a> {
     /// Notes a mistake.
-    pub fn fault(&mut self, span: Range<usize>, message: impl Into<String>, help: impl Into<String>) {
+    pub fn fault(
+        &mut self,
+        span: Range<usize>,
+        message: impl Into<String>,
+        help: impl Into<String>,
+    ) {
         let found = Diagnostic::at(self.name, self.text, span, message.into(), help.into());
         self.diagnostics.push(found);
     }
@@ -115,13 +123,18 @@ impl<'a> Reader<'a> {
             let word: String = key.get_ref().chars().take(60).collect();
             let is_top = *table == keys::TOP;
             let (what, help) = match value.get_ref() {
-                DeValue::Table(_) if is_top => (format!("unknown table `[{word}]`"), keys::table_advice(&word)),
+                DeValue::Table(_) if is_top => {
+                    (format!("unknown table `[{word}]`"), keys::table_advice(&word))
+                }
                 DeValue::Array(list) if is_top && list.iter().any(|v| v.get_ref().is_table()) => {
                     (format!("unknown table `[[{word}]]`"), keys::table_advice(&word))
                 }
                 _ => {
                     let preposition = if is_top { "at" } else { "in" };
-                    (format!("unknown key `{word}` {preposition} {}", table.shown), keys::advice(table, &word))
+                    (
+                        format!("unknown key `{word}` {preposition} {}", table.shown),
+                        keys::advice(table, &word),
+                    )
                 }
             };
             self.fault(key.span(), what, help);
@@ -130,14 +143,23 @@ impl<'a> Reader<'a> {
     }
 
     /// The table under `key` of the top level, when there is one.
-    pub fn table(&mut self, top: &Fields<'a>, key: &str, table: &'static Table) -> Option<Fields<'a>> {
+    pub fn table(
+        &mut self,
+        top: &Fields<'a>,
+        key: &str,
+        table: &'static Table,
+    ) -> Option<Fields<'a>> {
         let value = top.get(key)?;
         match value.get_ref() {
             DeValue::Table(entries) => Some(self.fields(entries, value.span(), table)),
             other => {
                 let what = kind_of(other);
                 let message = format!("`{key}` must be one table, but it is {what}");
-                self.fault(value.span(), message, format!("write `[{key}]` once, in single brackets, its keys below"));
+                self.fault(
+                    value.span(),
+                    message,
+                    format!("write `[{key}]` once, in single brackets, its keys below"),
+                );
                 None
             }
         }
@@ -151,16 +173,26 @@ impl<'a> Reader<'a> {
             false => format!("write `{key} = [{{ … }}, {{ … }}]`"),
         };
         let DeValue::Array(list) = value.get_ref() else {
-            let message = format!("`{key}` must be a list of tables, but it is {}", kind_of(value.get_ref()));
+            let message =
+                format!("`{key}` must be a list of tables, but it is {}", kind_of(value.get_ref()));
             self.fault(value.span(), message, help);
             return Vec::new();
         };
+        if ITEMS_MAX < list.len() {
+            let message =
+                format!("{} entries of `{key}`, where at most {ITEMS_MAX} are read", list.len());
+            self.fault(value.span(), message, "leave out what does not matter for the field");
+            return Vec::new();
+        }
         let mut tables = Vec::new();
         for item in list.iter() {
             match item.get_ref() {
                 DeValue::Table(entries) => tables.push(self.fields(entries, item.span(), table)),
                 other => {
-                    let message = format!("`{key}` must be a list of tables, but it holds {}", kind_of(other));
+                    let message = format!(
+                        "`{key}` must be a list of tables, but it holds {}",
+                        kind_of(other)
+                    );
                     self.fault(item.span(), message, help.clone());
                 }
             }
@@ -169,7 +201,11 @@ impl<'a> Reader<'a> {
     }
 
     /// The value of a key that must be there; notes its absence.
-    pub fn must(&mut self, fields: &Fields<'a>, key: &'static str) -> Option<&'a Spanned<DeValue<'a>>> {
+    pub fn must(
+        &mut self,
+        fields: &Fields<'a>,
+        key: &'static str,
+    ) -> Option<&'a Spanned<DeValue<'a>>> {
         let value = fields.get(key);
         if value.is_none() && !fields.has_misspelled(key) {
             let message = format!("{} lacks `{key}`", fields.table.shown);

@@ -4,6 +4,7 @@ pub mod bisect;
 pub mod fans;
 mod refine;
 mod size;
+mod smooth;
 #[cfg(test)]
 mod tests;
 mod topology;

@@ -39,11 +39,11 @@ pub(super) fn point(p: Point2<f64>) -> Point {
     Point { r: p.x, z: p.y }
 }
 
-/// The refined triangulation of an outline and the unit of its coordinates [m].
+/// The refined triangulation of an outline, which of its vertices are on no border, and the unit of its coordinates [m].
 ///
 /// # Errors
 /// When the kernel refuses the outline, or the section has details too fine for the vertex bound.
-pub(super) fn refined(outline: &Outline) -> Result<(Kernel, f64), MeshError> {
+pub(super) fn refined(outline: &Outline) -> Result<(Kernel, Vec<bool>, f64), MeshError> {
     let unit = size::unit(&outline.cap);
     let points =
         outline.points.iter().map(|p| Vertex { at: Point2::new(p.r / unit, p.z / unit) }).collect();
@@ -62,7 +62,9 @@ pub(super) fn refined(outline: &Outline) -> Result<(Kernel, f64), MeshError> {
     }
     let mut refiner = Refiner::new(outline, kernel, unit);
     refiner.run()?;
-    Ok((refiner.kernel, unit))
+    let n = outline.points.len();
+    let is_free = (0..refiner.on_segment.len()).map(|i| i >= n && refiner.on_segment[i].is_none()).collect();
+    Ok((refiner.kernel, is_free, unit))
 }
 
 /// A triangle to be refined; the heap gives the worst first, the oldest of equals.
@@ -91,6 +93,9 @@ impl PartialEq for Bad {
 impl Eq for Bad {}
 
 type Border = [FixedVertexHandle; 2];
+
+/// Places that are tried where a facet forbids the wanted one.
+const N_STEPS_BESIDE_FACET: usize = 10;
 
 struct Refiner<'a> {
     outline: &'a Outline,
@@ -203,7 +208,7 @@ impl<'a> Refiner<'a> {
             return true;
         }
         let sees = |side: Option<Point2<f64>>| {
-            side.is_some_and(|p| size::is_encroached(from, to, point(p)))
+            side.is_some_and(|p| size::is_encroached(from, to, point(p), size::COS_LENS))
         };
         sees(edge.opposite_position()) || sees(edge.rev().opposite_position())
     }
@@ -386,17 +391,62 @@ impl<'a> Refiner<'a> {
         }
         let encroached = std::mem::take(&mut self.encroached);
         let mut has_split = false;
-        for &border in
-            encroached.iter().filter(|&&border| !self.is_facet(border)).collect::<Vec<_>>()
-        {
+        for &border in encroached.iter().filter(|&&border| !self.is_facet(border)).collect::<Vec<_>>() {
             self.split(border)?;
             has_split = true;
         }
         self.encroached = encroached;
-        if has_split && self.is_current(bad) {
+        if !has_split {
+            return self.improve_beside_facet(bad, &corners, wanted);
+        }
+        if self.is_current(bad) {
             self.queue_if_bad(bad.face);
         }
         Ok(())
+    }
+
+    /// Looks for a place between a bad triangle's shortest edge and a wanted place that a facet forbids.
+    ///
+    /// The best place counts, and only if its smallest angle is better than the bad one's: so this ends.
+    fn improve_beside_facet(&mut self, bad: &Bad, corners: &[Point; 3], wanted: Point) -> Result<(), MeshError> {
+        let k = Measures::of(corners).shortest();
+        let (a, b) = (corners[k], corners[(k + 1) % 3]);
+        let middle = Point { r: 0.5 * (a.r + b.r), z: 0.5 * (a.z + b.z) };
+        let mut best = (1.05 * bad.key.min(size::ANGLE_MIN.sin()), None);
+        for step in 2..N_STEPS_BESIDE_FACET {
+            let t = step as f64 / N_STEPS_BESIDE_FACET as f64;
+            let p = Point { r: middle.r + t * (wanted.r - middle.r), z: middle.z + t * (wanted.z - middle.z) };
+            self.encroached.clear();
+            if let Ok(face) = self.walk(bad.face, corners, p) {
+                self.dig(face, p);
+                let sine = self.star_sine(p);
+                if self.encroached.is_empty() && sine > best.0 {
+                    best = (sine, Some(p));
+                }
+            }
+        }
+        if let (_, Some(p)) = best {
+            self.check_bounds(a, b, p)?;
+            let vertex = self.insert(p, bad.corners[0], None)?;
+            self.queue_star(vertex);
+        }
+        Ok(())
+    }
+
+    /// Sine of the smallest angle of the triangles that a new vertex would make of the cavity.
+    fn star_sine(&self, p: Point) -> f64 {
+        let mut smallest = f64::INFINITY;
+        for &face in &self.cavity {
+            for edge in self.kernel.face(face).adjacent_edges() {
+                let beyond = edge.rev().face().as_inner();
+                let is_rim = edge.is_constraint_edge() || beyond.is_none_or(|f| !self.cavity.contains(&f.fix()));
+                if is_rim {
+                    let [a, b] = edge.vertices().map(|v| point(v.position()));
+                    smallest = smallest.min(Measures::of(&[a, b, p]).sine_min());
+                }
+            }
+        }
+        smallest
     }
 
     /// Walks straight from a triangle's centroid to a point: the triangle that holds it, or the border in the way.
@@ -439,7 +489,8 @@ impl<'a> Refiner<'a> {
             for edge in face.adjacent_edges() {
                 let [a, b] = edge.vertices();
                 if edge.is_constraint_edge() {
-                    if size::is_encroached(point(a.position()), point(b.position()), p) {
+                    let cosine = if self.is_facet([a.fix(), b.fix()]) { size::COS_FACET_LENS } else { size::COS_LENS };
+                    if size::is_encroached(point(a.position()), point(b.position()), p, cosine) {
                         self.encroached.push([a.fix(), b.fix()]);
                     }
                     continue;

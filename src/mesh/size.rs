@@ -13,8 +13,11 @@ pub(super) const ANGLE_MIN: f64 = 24.0 / 180.0 * std::f64::consts::PI;
 /// Longest edge in units of the cap's radius; a facet is 0.39.
 pub(super) const EDGE_MAX: f64 = 0.75;
 
-/// Cosine of the angle under which a point must not see a border: 120°, the lens whose base angles are 30°.
-const COS_LENS: f64 = -0.5;
+/// Cosine of the widest angle under which a point may see a border: 120°, the lens whose base angles are 30°.
+pub(super) const COS_LENS: f64 = -0.5;
+
+/// The same for a facet of the cap, which cannot be split: 124°, base angles of 28°, so that its triangle stays above the limit.
+pub(super) const COS_FACET_LENS: f64 = -0.559_192_903_470_746_8;
 
 /// Shortest edge in units of the cap's radius: a hundred thousand times the rounding of coordinates.
 pub(super) const EDGE_MIN: f64 = 1e-10;
@@ -28,12 +31,12 @@ pub(super) fn unit(cap: &Cap) -> f64 {
     2.0_f64.powi(exponent)
 }
 
-/// Whether p sees the border a–b so wide that the border must be split.
-pub(super) fn is_encroached(a: Point, b: Point, p: Point) -> bool {
+/// Whether p sees the border a–b under an angle wider than that of a cosine (negative), so that p is too near to it.
+pub(super) fn is_encroached(a: Point, b: Point, p: Point, cosine: f64) -> bool {
     let (ar, az, br, bz) = (a.r - p.r, a.z - p.z, b.r - p.r, b.z - p.z);
     let dot = ar * br + az * bz;
     // Compared as squares; the sign of the dot product tells the half.
-    dot < 0.0 && dot * dot > COS_LENS * COS_LENS * (ar * ar + az * az) * (br * br + bz * bz)
+    dot < 0.0 && dot * dot > cosine * cosine * (ar * ar + az * az) * (br * br + bz * bz)
 }
 
 /// A triangle's measures: squared edge lengths (edge k joins corners k and k + 1), twice its area.

@@ -138,7 +138,7 @@ impl Mesh {
 }
 
 /// Smallest angle of a triangle [rad].
-fn smallest_angle(c: &[Point; 3]) -> f64 {
+pub(super) fn smallest_angle(c: &[Point; 3]) -> f64 {
     let angle = |k: usize| {
         let (a, b, o) = (c[(k + 1) % 3], c[(k + 2) % 3], c[k]);
         let dot = (a.r - o.r) * (b.r - o.r) + (a.z - o.z) * (b.z - o.z);

@@ -1,6 +1,7 @@
 //! `Outline` → first [`Mesh`]: refined triangulation of the inside, regions, and the cap glued to it.
 
 use super::refine::{Kernel, point, refined};
+use super::smooth::smooth;
 use super::{Chart, Mesh, MeshError, topology};
 use crate::geometry::{Outline, RegionId, area};
 use crate::model::Point;
@@ -16,14 +17,14 @@ use spade::handles::{FixedFaceHandle, InnerTag};
 /// # Errors
 /// When the section holds details too fine to be meshed within the vertex bound; the place is told.
 pub fn first_mesh(outline: &Outline) -> Result<Mesh, MeshError> {
-    let (kernel, unit) = refined(outline)?;
-    let mut points: Vec<Point> = outline.points.clone();
-    points.extend(kernel.vertices().skip(points.len()).map(|v| {
-        let p = point(v.position());
-        Point { r: p.r * unit, z: p.z * unit }
-    }));
+    let (kernel, is_free, unit) = refined(outline)?;
     let mut triangles: Vec<[u32; 3]> =
         kernel.inner_faces().map(|f| f.vertices().map(|v| v.fix().index() as u32)).collect();
+    let mut points: Vec<Point> = kernel.vertices().map(|v| point(v.position())).collect();
+    smooth(&mut points, &triangles, &is_free);
+    for p in &mut points {
+        *p = Point { r: p.r * unit, z: p.z * unit };
+    }
     let mut regions = face_regions(outline, &kernel, unit);
     let mut charts = vec![Chart::Inside; triangles.len()];
     glue_cap(outline, &mut points, &mut triangles);

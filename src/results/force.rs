@@ -5,9 +5,9 @@
 //! Source: J. L. Coulomb, IEEE Trans. Magn. 19 (1983) 2514 (local derivative of the Jacobian; from memory).
 
 use super::sample::Sampler;
+use crate::fem::Reluctivity;
 use crate::fem::element::{Pair, blend, contract, dot, wedge};
 use crate::fem::moments::{flux_density, rule_of};
-use crate::fem::Reluctivity;
 use crate::geometry::{Leg, RegionKind};
 use crate::mesh::Chart;
 use crate::model::{Across, Model, Point};
@@ -41,7 +41,8 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
     let det_rate = wedge(d1, e2) + wedge(e1, d2);
     let squares = [dot(e2, e2), -dot(e1, e2), dot(e1, e1)];
     let rates = [2.0 * dot(e2, d2), -dot(d1, e2) - dot(e1, d2), 2.0 * dot(e1, d1)];
-    let metric_rate = [0, 1, 2].map(|i| (rates[i] - squares[i] * det_rate / frame.det_abs) / frame.det_abs);
+    let metric_rate =
+        [0, 1, 2].map(|i| (rates[i] - squares[i] * det_rate / frame.det_abs) / frame.det_abs);
 
     let rule = rule_of(&sampler.rules, &frame);
     let mut rate = 0.0;
@@ -56,7 +57,8 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
                     let b = flux_density(&frame, r, u);
                     let square = contract(u, frame.metric, u);
                     let nu = law.reluctivity(b).0;
-                    r * law.energy_density(b) * det_rate + 0.5 * nu / r * (stretch - square * det_rate / frame.det_abs)
+                    r * law.energy_density(b) * det_rate
+                        + 0.5 * nu / r * (stretch - square * det_rate / frame.det_abs)
                 }
             };
     }
@@ -86,17 +88,25 @@ fn ground_velocity(model: &Model, sampler: &Sampler, gap: usize) -> Vec<f64> {
     let Gapped { inner, outer, center, half, reach } = Gapped::new(model, gap);
     let ramp = |p: &Point| {
         let height = p.z - center;
-        let along = if height.abs() <= half { height / half } else { (1.0 - (height.abs() - half) / reach) * height.signum() };
+        let along = if height.abs() <= half {
+            height / half
+        } else {
+            (1.0 - (height.abs() - half) / reach) * height.signum()
+        };
         let beside = (p.r - outer).max(inner - p.r).max(0.0);
-        0.5 * along.clamp(-1.0, 1.0) * (1.0 - beside / reach).max(0.0) * f64::from(height.abs() < half + reach)
+        0.5 * along.clamp(-1.0, 1.0)
+            * (1.0 - beside / reach).max(0.0)
+            * f64::from(height.abs() < half + reach)
     };
     let mut velocity: Vec<f64> = mesh.points.iter().map(ramp).collect();
     for (t, corners) in mesh.triangles.iter().enumerate() {
         let region = &sampler.outline.regions[mesh.regions[t].0 as usize];
         for &v in corners {
             let p = mesh.points[v as usize];
-            let is_face = inner <= p.r && p.r <= outer && (p.z - center).abs() <= half * (1.0 + 1e-9);
-            if !is_face && must_stay(model, &region.kind, gap, p) || mesh.charts[t] != Chart::Inside {
+            let is_face =
+                inner <= p.r && p.r <= outer && (p.z - center).abs() <= half * (1.0 + 1e-9);
+            if !is_face && must_stay(model, &region.kind, gap, p) || mesh.charts[t] != Chart::Inside
+            {
                 velocity[v as usize] = 0.0;
             }
         }
@@ -112,7 +122,9 @@ fn must_stay(model: &Model, kind: &RegionKind, gap: usize, p: Point) -> bool {
             heights.iter().any(|z| (p.z - z).abs() <= 1e-9 * (heights[1] - heights[0]))
         }
         RegionKind::Gap { gap: other, .. } => other != gap,
-        RegionKind::Leg(Leg::UpperPlate | Leg::LowerPlate) | RegionKind::Part(_) | RegionKind::Joint(_) => true,
+        RegionKind::Leg(Leg::UpperPlate | Leg::LowerPlate)
+        | RegionKind::Part(_)
+        | RegionKind::Joint(_) => true,
         RegionKind::Leg(_) | RegionKind::Outside | RegionKind::Window => false,
     }
 }

@@ -1,6 +1,16 @@
 //! `Solution` → inductance, ledger, gap factors, hot spots, forces. All SI; formats live in `report`.
 
+mod collect;
+mod force;
+mod gaps;
 pub mod hand;
+mod hot_spots;
+mod ledger;
+mod linkage;
+mod parts;
+pub mod sample;
+
+pub use collect::{collect, single_carrier};
 
 use crate::units::{Ampere, CubicMeter, Henry, Joule, Meter, Newton, PerHenry, Tesla, Weber};
 

@@ -10,8 +10,21 @@ use crate::geometry::Outline;
 use crate::mesh::fans::edge_triangles;
 use crate::model::Point;
 use crate::results::ProbePoint;
-use crate::units::{AmperePerMeter, Joule, Tesla};
+use crate::units::{AmperePerMeter, Joule, MU0, Tesla};
 use std::f64::consts::TAU;
+
+/// The field on every triangle, for pictures and files.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct CellValues {
+    /// (B_r, B_z) at the centroid [T].
+    pub b: Vec<[Tesla; 2]>,
+    /// (H_r, H_z) at the centroid [A/m].
+    pub h: Vec<[AmperePerMeter; 2]>,
+    /// B/(µ0 H) at the centroid.
+    pub permeability: Vec<f64>,
+    /// |B| at the three corners, seen from inside the triangle [T].
+    pub b_corner: Vec<[Tesla; 3]>,
+}
 
 /// A solved field with what asking needs.
 pub struct Sampler<'a> {
@@ -57,7 +70,8 @@ impl<'a> Sampler<'a> {
         let (frame, gradients) = self.local(t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU * crate::fem::moments::linear_energy(&self.outcome.moments[t].k, &gradients);
+                let energy = TAU
+                    * crate::fem::moments::linear_energy(&self.outcome.moments[t].k, &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {
@@ -86,5 +100,26 @@ impl<'a> Sampler<'a> {
         let (vertex, edge) = self.outcome.solution.local(mesh, t);
         let psi = evaluate::psi(vertex, edge, &lambda);
         Some(ProbePoint { r: at.r, z: at.z, b_r, b_z, h_r: nu * b_r, h_z: nu * b_z, psi })
+    }
+
+    /// B, H and permeability on every triangle.
+    pub fn cell_values(&self) -> CellValues {
+        let mut values = CellValues::default();
+        for t in 0..self.outcome.mesh.triangles.len() {
+            let (frame, gradients) = self.local(t);
+            let at = |lambda: &[f64; 3]| evaluate::flux_density(&frame, &gradients, lambda);
+            let b = at(&[1.0 / 3.0; 3]);
+            let nu = self.reluctivity_at(t, b[0].hypot(b[1]));
+            values.b.push(b);
+            values.h.push(b.map(|b| nu * b));
+            values.permeability.push(1.0 / (MU0 * nu));
+            // At infinity's image the field is 0 and its formula 0/0.
+            let corner = |k: usize| match frame.gauge.is_some() && frame.collapse == Some(k) {
+                true => [0.0; 2],
+                false => at(&[0, 1, 2].map(|i| f64::from(u8::from(i == k)))),
+            };
+            values.b_corner.push([0, 1, 2].map(|k| corner(k)[0].hypot(corner(k)[1])));
+        }
+        values
     }
 }

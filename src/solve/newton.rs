@@ -65,7 +65,9 @@ pub fn solve(
         let matrix = assemble::stiffness(system.mesh, system.space, moments);
         set_level(system, hierarchy, &matrix, &interpolation)?;
         let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
-        let mut precondition = |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, r, z);
+        let mut work = hierarchy.workspace();
+        let mut precondition =
+            |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, &mut work, r, z);
         let convergence =
             conjugate_gradients(&matrix, &load, &mut x, &stop, 0.0, &mut precondition)?;
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
@@ -108,7 +110,9 @@ fn newton(
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
         let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
-        let mut precondition = |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, r, z);
+        let mut work = hierarchy.workspace();
+        let mut precondition =
+            |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, &mut work, r, z);
         let convergence =
             conjugate_gradients(&matrix, &residual, &mut step, &stop, scale, &mut precondition)?;
         effort.n_cg_iterations += convergence.n_iterations;

@@ -27,8 +27,14 @@ pub struct Hierarchy {
     sizes: Vec<usize>,
     /// For every unknown of the finest level; those of level 0 are not read.
     interpolation: Vec<Interpolation>,
-    /// Per level: solution and right-hand side of the V-cycle.
-    work: Vec<[Vec<f64>; 2]>,
+}
+
+/// Vectors of one V-cycle, reused from call to call: solution and right-hand side per level.
+#[derive(Debug, Default)]
+pub struct Workspace {
+    levels: Vec<[Vec<f64>; 2]>,
+    /// Residual before restriction, correction after prolongation.
+    transfer: Vec<f64>,
 }
 
 #[derive(Debug)]
@@ -67,52 +73,52 @@ impl Hierarchy {
             self.levels.push(leading_block(matrix, size));
         }
         self.sizes.push(size);
-        self.work.resize_with(self.sizes.len(), Default::default);
-        for (work, &n) in self.work.iter_mut().zip(&self.sizes) {
-            work.iter_mut().for_each(|v| v.resize(n, 0.0));
-        }
         true
     }
 
+    /// Room for [`Hierarchy::precondition`] with the present levels.
+    pub fn workspace(&self) -> Workspace {
+        let levels = self.sizes.iter().map(|&n| [vec![0.0; n], vec![0.0; n]]).collect();
+        Workspace { levels, transfer: Vec::new() }
+    }
+
     /// z ≈ A⁻¹ r for the whole matrix whose leading block is the finest level.
-    pub fn precondition(&mut self, matrix: &Matrix, r: &[f64], z: &mut [f64]) {
+    pub fn precondition(&self, matrix: &Matrix, work: &mut Workspace, r: &[f64], z: &mut [f64]) {
         let rows = Rows::of(matrix);
         let Some(finest) = self.sizes.len().checked_sub(1) else { return z.copy_from_slice(r) };
         forward_sweep(rows, r, z);
-        residual_after_forward(rows, z, &mut self.work[finest][1]);
-        self.v_cycle();
-        for (z, e) in z.iter_mut().zip(&self.work[finest][0]) {
+        residual_after_forward(rows, z, &mut work.levels[finest][1]);
+        self.v_cycle(work);
+        for (z, e) in z.iter_mut().zip(&work.levels[finest][0]) {
             *z += e;
         }
         backward_sweep(rows, r, z);
     }
 
-    /// One V-cycle for the right-hand side in `work[finest][1]`, result in `work[finest][0]`.
-    fn v_cycle(&mut self) {
-        let n_levels = self.sizes.len();
-        for level in (1..n_levels).rev() {
-            let n_coarse = self.sizes[level - 1];
-            let rows = Rows::of(&self.levels[level - 1]);
-            let (coarser, finer) = self.work.split_at_mut(level);
+    /// One V-cycle for the finest level's right-hand side.
+    fn v_cycle(&self, work: &mut Workspace) {
+        let Workspace { levels, transfer } = work;
+        for level in (1..self.sizes.len()).rev() {
+            let (coarser, finer) = levels.split_at_mut(level);
             let [x, b] = &mut finer[0];
+            let rows = Rows::of(&self.levels[level - 1]);
             forward_sweep(rows, b, x);
-            // The residual borrows the next coarser vectors' room only after restriction, so it needs its own.
-            let mut residual = vec![0.0; rows.n_rows()];
-            residual_after_forward(rows, x, &mut residual);
-            restrict(&self.interpolation, n_coarse, &mut residual);
-            coarser[level - 1][1].copy_from_slice(&residual[..n_coarse]);
+            transfer.resize(x.len(), 0.0);
+            residual_after_forward(rows, x, transfer);
+            restrict(&self.interpolation, self.sizes[level - 1], transfer);
+            coarser[level - 1][1].copy_from_slice(&transfer[..self.sizes[level - 1]]);
         }
         if let Some(coarse) = &self.coarse {
-            let [x, b] = &mut self.work[0];
+            let [x, b] = &mut levels[0];
             coarse.solve(b, x);
         }
-        for level in 1..n_levels {
-            let n_coarse = self.sizes[level - 1];
-            let (coarser, finer) = self.work.split_at_mut(level);
+        for level in 1..self.sizes.len() {
+            let (coarser, finer) = levels.split_at_mut(level);
             let [x, b] = &mut finer[0];
-            let mut correction = coarser[level - 1][0].clone();
-            prolong(&self.interpolation, n_coarse, x.len(), &mut correction);
-            for (x, e) in x.iter_mut().zip(&correction) {
+            transfer.clear();
+            transfer.extend_from_slice(&coarser[level - 1][0]);
+            prolong(&self.interpolation, x.len(), transfer);
+            for (x, e) in x.iter_mut().zip(transfer.iter()) {
                 *x += e;
             }
             backward_sweep(Rows::of(&self.levels[level - 1]), b, x);
@@ -181,10 +187,9 @@ fn restrict(interpolation: &[Interpolation], n_coarse: usize, v: &mut [f64]) {
     }
 }
 
-/// Interpolation in place: oldest first.
-fn prolong(interpolation: &[Interpolation], n_coarse: usize, n: usize, v: &mut Vec<f64>) {
-    for i in n_coarse..n {
-        let Interpolation { parents, weights } = interpolation[i];
+/// Interpolation in place, oldest first: lengthens `v` to `n`.
+fn prolong(interpolation: &[Interpolation], n: usize, v: &mut Vec<f64>) {
+    for Interpolation { parents, weights } in &interpolation[v.len()..n] {
         let sum = (0..2)
             .filter(|&k| weights[k] != 0.0)
             .map(|k| weights[k] * v[parents[k] as usize])

@@ -2,3 +2,5 @@
 #![allow(clippy::unwrap_used)]
 
 mod messages;
+mod mutations;
+mod sheets;

@@ -1,0 +1,116 @@
+//! The arguments: commands and their common options.
+
+use clap::{Args, Parser, Subcommand};
+use gapwright::units::{self, Dimension};
+use std::path::PathBuf;
+
+/// Inductance of gapped round cores and coils, from the solved field, with a guaranteed interval.
+#[derive(Debug, Parser)]
+#[command(version, about, after_help = EXIT_CODES, max_term_width = 80)]
+pub struct Arguments {
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+const EXIT_CODES: &str = "Exit codes: 0 done; 1 an estimate or a requirement is not met; 2 the input is wrong; \
+3 the interval was not reached (results are written and say so); 4 a file could not be written.";
+
+/// What to do with the sheet.
+#[derive(Debug, Subcommand)]
+pub enum Command {
+    /// Read the sheet, say what was understood, draw the section
+    Check(Options),
+    /// Solve the field: A_L, inductance, ledger, gap factors, hot spots, pictures
+    Solve(Options),
+}
+
+impl Command {
+    /// The options that every command has.
+    pub fn options(&self) -> &Options {
+        match self {
+            Command::Check(options) | Command::Solve(options) => options,
+        }
+    }
+}
+
+/// Options of every command.
+#[derive(Debug, Clone, Args)]
+pub struct Options {
+    /// The sheet: a TOML file with core, gaps and windings
+    pub sheet: PathBuf,
+    /// Where to write the files [default: the sheet's name with .out, beside it]
+    #[arg(long, value_name = "DIR")]
+    pub out: Option<PathBuf>,
+    /// Print the result as JSON and nothing else; files only with --out
+    #[arg(long)]
+    pub json: bool,
+    /// Wanted width of the interval, instead of the sheet's
+    #[arg(long, value_name = "WIDTH", value_parser = interval)]
+    pub interval: Option<f64>,
+    /// Threads to compute with [default: one a core]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub threads: Option<u16>,
+    /// Print nothing but mistakes; files are written
+    #[arg(long)]
+    pub quiet: bool,
+    /// Add the rounds and the stage times
+    #[arg(long)]
+    pub timings: bool,
+    /// Another B-H table for a material, for this run
+    #[arg(long, value_name = "NAME=FILE.csv", value_parser = material)]
+    pub material: Vec<(String, PathBuf)>,
+    /// Draw the full section in field.svg
+    #[arg(long)]
+    pub mirror: bool,
+}
+
+/// Narrowest and widest interval that may be asked for; the sheet's key has the same bounds.
+const INTERVALS: [f64; 2] = [1e-7, 0.5];
+
+/// "0.01%" or "1e-4" → 1e-4.
+fn interval(text: &str) -> Result<f64, String> {
+    let value = units::read(text, Dimension::Ratio, (0, 1.0)).map_err(|e| format!("{e}; write 0.1% or 0.001"))?;
+    let [low, high] = INTERVALS;
+    if (low..=high).contains(&value) {
+        Ok(value)
+    } else {
+        Err(format!("{value} is outside {low} … {high}; write 0.1% or 0.001"))
+    }
+}
+
+/// "core=table.csv" → its two halves.
+fn material(text: &str) -> Result<(String, PathBuf), String> {
+    match text.split_once('=') {
+        Some((name, file)) if !name.is_empty() && !file.is_empty() => Ok((name.to_string(), PathBuf::from(file))),
+        _ => Err("write NAME=FILE.csv, the material's name in the sheet and the table".to_string()),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use clap::CommandFactory;
+
+    #[test]
+    fn the_arguments_are_consistent() {
+        Arguments::command().debug_assert();
+    }
+
+    #[test]
+    fn an_interval_is_a_ratio_within_bounds() {
+        assert_eq!(interval("0.01%"), Ok(1e-4));
+        assert_eq!(interval("0.1 %"), Ok(1e-3));
+        assert_eq!(interval("1e-4"), Ok(1e-4));
+        for wrong in ["0", "-1%", "80%", "1 mm", "", "much", "NaN"] {
+            assert!(interval(wrong).is_err(), "{wrong}");
+        }
+    }
+
+    #[test]
+    fn a_material_has_a_name_and_a_file() {
+        assert_eq!(material("core=a=b.csv"), Ok(("core".to_string(), PathBuf::from("a=b.csv"))));
+        for wrong in ["core", "=a.csv", "core="] {
+            assert!(material(wrong).is_err(), "{wrong}");
+        }
+    }
+}

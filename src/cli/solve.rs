@@ -1,0 +1,146 @@
+//! The command `solve`: the main job, from the sheet to files and screen.
+
+use super::files::Finished;
+use super::options::Options;
+use super::{End, Stop, files, screen, sheet};
+use gapwright::adapt::{self, AdaptError, Outcome};
+use gapwright::geometry::Outline;
+use gapwright::mesh::MeshError;
+use gapwright::model::Model;
+use gapwright::report::StageTimes;
+use gapwright::report::csv;
+use gapwright::report::field_map::{FieldMap, field_svg};
+use gapwright::report::json::result_json;
+use gapwright::report::section::section_svg;
+use gapwright::report::terminal::{Look, solve_screen};
+use gapwright::report::vtk::{FieldCells, field_vtu};
+use gapwright::results::Results;
+use gapwright::results::collect;
+use gapwright::results::sample::Sampler;
+use std::time::Instant;
+
+/// Runs `solve`.
+pub fn solve(options: &Options) -> Result<End, Stop> {
+    let start = Instant::now();
+    let mut clock = Clock::start();
+    let (sheet, outline) = sheet::read(options)?;
+    clock.lap("sheet and section");
+    let outcome = run(&sheet.model, &outline, options, &mut clock)?;
+    let results = collect(&sheet.model, &outline, &outcome);
+    clock.lap("results");
+    let seconds = start.elapsed().as_secs_f64();
+
+    let writes_files = !options.json || options.out.is_some();
+    let out = files::directory(&options.sheet, options.out.as_deref());
+    let times = |clock: &Clock| options.timings.then(|| clock.times.clone());
+    if writes_files {
+        let mut finished = drawings(&sheet.model, &outline, &outcome, &results, options.mirror)?;
+        clock.lap("drawings and tables");
+        finished.push(("result.json", result_json(&results, times(&clock).as_ref()).into_bytes()));
+        files::write_all(&out, &finished)?;
+        clock.lap("writing");
+    }
+    let times = times(&clock);
+    if options.json {
+        screen::print(&result_json(&results, times.as_ref()))?;
+    } else if !options.quiet {
+        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+        screen::print(&solve_screen(&results, &look))?;
+        screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
+    }
+    Ok(end_of(&results))
+}
+
+/// The rounds, with progress; a failure without any field is a stop.
+fn run(model: &Model, outline: &Outline, options: &Options, clock: &mut Clock) -> Result<Outcome, Stop> {
+    let mut progress = screen::Progress::new(options.quiet || options.json);
+    let mut n_rounds = 0;
+    let outcome = adapt::run(model, outline, &mut |round| {
+        n_rounds += 1;
+        let stage = if n_rounds == 1 { "mesh and round 1".to_string() } else { format!("round {n_rounds}") };
+        clock.lap(&stage);
+        progress.round(round.n_unknowns, round.low, round.high);
+    });
+    outcome.map_err(|error| {
+        let end = match error {
+            AdaptError::Mesh(MeshError::TooFine { .. }) => End::InputWrong,
+            _ => End::NotReached,
+        };
+        Stop::new(end, format!("no result: {error}"))
+    })
+}
+
+/// Everything but `result.json`.
+fn drawings(
+    model: &Model,
+    outline: &Outline,
+    outcome: &Outcome,
+    results: &Results,
+    mirror: bool,
+) -> Result<Vec<Finished>, Stop> {
+    let (cells, b_corner) = sampled(outline, outcome);
+    let map = FieldMap {
+        title: &results.title,
+        mesh: &outcome.mesh,
+        outline,
+        solution: &outcome.solution,
+        b_corner: &b_corner,
+        hot_spots: &results.hot_spots,
+        mirror,
+    };
+    let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells)
+        .map_err(|e| Stop::new(End::NotWritten, format!("field.vtu: {e}")))?;
+    let quantity = if results.is_linear && results.inductance.is_some() { "inductance [H]" } else { "coenergy [J]" };
+    let mut finished = vec![
+        ("section.svg", section_svg(model, outline).into_bytes()),
+        ("field.svg", field_svg(&map).into_bytes()),
+        ("field.vtu", vtu),
+        ("rounds.csv", csv::rounds(&results.rounds, quantity).into_bytes()),
+    ];
+    if !results.probes.is_empty() {
+        finished.push(("probes.csv", csv::probes(&results.probes).into_bytes()));
+    }
+    Ok(finished)
+}
+
+/// The field of every triangle as plain numbers: at the centroid for VTK, |B| at the corners for the picture.
+fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) {
+    let values = Sampler::new(outline, outcome).cell_values();
+    let cells = FieldCells {
+        b: values.b,
+        h: values.h,
+        permeability: values.permeability,
+        share: outcome.bound.shares.clone(),
+    };
+    (cells, values.b_corner)
+}
+
+/// How the run ends: a missed interval weighs more than a missed promise, whose verdict it makes doubtful.
+fn end_of(results: &Results) -> End {
+    let is_met =
+        results.verdict.as_ref().is_none_or(|v| v.within_tolerance) && results.requirements.iter().all(|r| r.met);
+    match (results.reached, is_met) {
+        (false, _) => End::NotReached,
+        (true, false) => End::NotMet,
+        (true, true) => End::Done,
+    }
+}
+
+/// Laps of the run.
+struct Clock {
+    last: Instant,
+    times: StageTimes,
+}
+
+impl Clock {
+    fn start() -> Clock {
+        Clock { last: Instant::now(), times: StageTimes::default() }
+    }
+
+    /// Books the time since the last lap under `stage`.
+    fn lap(&mut self, stage: &str) {
+        let now = Instant::now();
+        self.times.stages.push((stage.to_string(), (now - self.last).as_secs_f64()));
+        self.last = now;
+    }
+}

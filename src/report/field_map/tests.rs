@@ -1,0 +1,99 @@
+//! The field map: bands cover the picture, texts stay apart, the same field gives the same bytes.
+
+use super::*;
+use crate::report::fixture;
+use crate::report::svg::tests::{check_texts, text_boxes};
+
+fn draw(mirror: bool, hot_spots: &[HotSpot]) -> String {
+    let (field, outline) = (fixture::field(24), fixture::outline());
+    let map = FieldMap {
+        title: "Buoy charger choke",
+        mesh: &field.mesh,
+        outline: &outline,
+        solution: &field.solution,
+        b_corner: &field.b_corner,
+        hot_spots,
+        mirror,
+    };
+    field_svg(&map)
+}
+
+#[test]
+fn texts_stay_apart_with_hot_spots_at_the_rim_and_on_one_another() {
+    let spot = |r, z| HotSpot { part: "post".to_string(), r, z, flux_density: 0.4 };
+    let mut spots = fixture::results().hot_spots;
+    spots.extend([
+        spot(0.0, 0.0),
+        spot(0.0, 0.0),
+        spot(1e-5, 1e-5),
+        spot(13.5e-3, 9e-3),
+        spot(0.0, -9e-3),
+    ]);
+    check_texts(&draw(false, &spots));
+    check_texts(&draw(true, &spots));
+    assert!(text_boxes(&draw(false, &spots)).iter().any(|(_, t)| t == "512 mT"));
+}
+
+#[test]
+fn the_legend_names_the_unit_and_the_step_of_the_flux_lines() {
+    let texts: Vec<String> = text_boxes(&draw(false, &[])).into_iter().map(|(_, t)| t).collect();
+    assert!(texts.iter().any(|t| t == "|B| in mT"), "{texts:?}");
+    // The fixture's largest ψ is 0.4·r²/2·exp(−(r/9)⁴) at r = 9/2^¼ mm: 4.27e-6 Wb/rad·… → 2πψ/22 rounds up to 2.4 µWb.
+    assert!(texts.iter().any(|t| t.ends_with("µWb of flux")), "{texts:?}");
+}
+
+#[test]
+fn bands_of_a_triangle_cover_it_exactly() {
+    let triangle = [([0.0, 0.0], 0.2), ([10.0, 0.0], 3.7), ([0.0, 10.0], 1.4)];
+    let area = |piece: &[([f64; 2], f64)]| -> f64 {
+        let cross = |i: usize| {
+            let (p, q) = (piece[i].0, piece[(i + 1) % piece.len()].0);
+            p[0] * q[1] - p[1] * q[0]
+        };
+        0.5 * (0..piece.len()).map(cross).sum::<f64>()
+    };
+    let whole: f64 = (0..4)
+        .map(|band| {
+            area(&keep(&keep(&triangle, f64::from(band), 1.0), f64::from(band) + 1.0, -1.0))
+        })
+        .sum();
+    assert!((whole - 50.0).abs() < 1e-12, "{whole}");
+}
+
+#[test]
+fn plain_numbers_are_never_below_the_value() {
+    for value in [1.0, 1.01, 0.19, 0.31, 8.1, 9.99, 3e-6] {
+        let plain = plain_above(value);
+        assert!(value <= plain * (1.0 + 1e-9) && plain <= 1.34 * value, "{value} → {plain}");
+    }
+}
+
+#[test]
+fn equal_fields_give_equal_bytes_and_a_zero_field_is_drawn_too() {
+    assert_eq!(draw(true, &[]), draw(true, &[]));
+    let (mut field, outline) = (fixture::field(6), fixture::outline());
+    field.solution.vertex.fill(0.0);
+    field.solution.edge.fill(0.0);
+    field.b_corner.fill([0.0; 3]);
+    let map = FieldMap {
+        title: "nothing",
+        mesh: &field.mesh,
+        outline: &outline,
+        solution: &field.solution,
+        b_corner: &field.b_corner,
+        hot_spots: &[],
+        mirror: false,
+    };
+    check_texts(&field_svg(&map));
+}
+
+#[test]
+fn a_look_at_the_pictures_is_written_on_request() {
+    // GAPWRIGHT_LOOK=DIR writes the drawings of the fixtures there, for eyes.
+    let Ok(dir) = std::env::var("GAPWRIGHT_LOOK") else { return };
+    let dir = std::path::Path::new(&dir);
+    std::fs::write(dir.join("field.svg"), draw(false, &fixture::results().hot_spots)).unwrap();
+    std::fs::write(dir.join("full.svg"), draw(true, &fixture::results().hot_spots)).unwrap();
+    let section = super::super::section::section_svg(&fixture::model(), &fixture::outline());
+    std::fs::write(dir.join("section.svg"), section).unwrap();
+}

@@ -1,0 +1,44 @@
+//! Results → text or bytes: terminal, JSON, CSV, VTK, SVG. Computes no physics, reads no file, clock or environment.
+//!
+//! Every function takes values and returns a `String` or bytes; `cli` writes them. Sampling a given field for a
+//! drawing (contours, colour bands) is drawing and lives here; the field itself is handed in.
+
+pub mod check_text;
+mod colour;
+mod contour;
+pub mod csv;
+pub mod field_map;
+#[cfg(test)]
+pub(crate) mod fixture;
+pub mod json;
+mod labels;
+mod numbers;
+pub mod section;
+mod svg;
+pub mod terminal;
+pub mod vtk;
+
+use crate::results::Results;
+
+/// What the caller's clock measured: (stage, seconds) in the order of the run. Empty when nobody asked.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct StageTimes {
+    pub stages: Vec<(String, f64)>,
+}
+
+/// The sentence that stands first when the rounds stopped short of the wanted interval, `None` when they got there.
+pub fn shortfall(results: &Results) -> Option<String> {
+    if results.reached {
+        return None;
+    }
+    let (width, kind) = match (results.is_linear, &results.inductance) {
+        (true, Some(inductance)) => (numbers::relative_width(inductance), "inductance"),
+        _ => (numbers::relative_width(&results.coenergy), "coenergy"),
+    };
+    Some(format!(
+        "the interval of the {kind} is {} wide, {} was wanted: the guarantee holds, but for the wider interval; \
+         raise max_unknowns or ask for a wider interval",
+        numbers::percent(width, 2),
+        numbers::percent(results.wanted, 2)
+    ))
+}
