@@ -195,10 +195,10 @@ fn requirement_line(
         limits.join(" and ")
     );
     answer_line(text, "requirement", &engineering(requirement.inductance, "H", 4), &rest);
-    if look.colour {
-        if let Some(at) = text.rfind(verdict) {
-            text.replace_range(at..at + verdict.len(), &paint(verdict, code, true));
-        }
+    if look.colour
+        && let Some(at) = text.rfind(verdict)
+    {
+        text.replace_range(at..at + verdict.len(), &paint(verdict, code, true));
     }
 }
 
