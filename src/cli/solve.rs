@@ -14,7 +14,6 @@ use gapwright::report::json::result_json;
 use gapwright::report::section::section_svg;
 use gapwright::report::terminal::{Look, solve_screen};
 use gapwright::report::vtk::{FieldCells, field_vtu};
-use gapwright::results::collect;
 use gapwright::results::sample::Sampler;
 use gapwright::results::{self, Results};
 use std::time::Instant;
