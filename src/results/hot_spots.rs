@@ -23,9 +23,15 @@ const FINEST_STEP: f64 = 0.06;
 /// The `count` hottest discs, at least two radii apart; each is a local maximum of the disc's mean.
 pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let (radius, count) = (model.hot_spots.averaging, model.hot_spots.count);
-    let discs = candidates(sampler, radius).into_iter().map(|(t, at)| Disc::new(sampler, t, at, radius)).collect();
+    let discs = candidates(sampler, radius)
+        .into_iter()
+        .map(|(t, at)| Disc::new(sampler, t, at, radius))
+        .collect();
     // A few more starts than wanted: two may climb to the same place.
-    let climbed = apart(discs, count + 4, radius).into_iter().map(|disc| climb(sampler, disc, radius)).collect();
+    let climbed = apart(discs, count + 4, radius)
+        .into_iter()
+        .map(|disc| climb(sampler, disc, radius))
+        .collect();
     (apart(climbed, count, radius).into_iter())
         .map(|disc| HotSpot {
             part: region(sampler, disc.triangle).name.clone(),
@@ -56,7 +62,8 @@ fn apart(mut discs: Vec<Disc>, count: usize, radius: Meter) -> Vec<Disc> {
     discs.sort_by(|a, b| b.mean.total_cmp(&a.mean).then(by_place(a, b)));
     let mut kept: Vec<Disc> = Vec::new();
     for disc in discs {
-        let is_apart = |other: &Disc| 2.0 * radius <= (other.at.r - disc.at.r).hypot(other.at.z - disc.at.z);
+        let is_apart =
+            |other: &Disc| 2.0 * radius <= (other.at.r - disc.at.r).hypot(other.at.z - disc.at.z);
         if kept.len() < count && kept.iter().all(is_apart) {
             kept.push(disc);
         }
