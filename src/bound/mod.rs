@@ -34,7 +34,7 @@ pub struct Flux {
 }
 
 /// The guaranteed ends of the coenergy W' and where the gap between them sits.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct Bound {
     /// Ends with the margin [J].
     pub low: Joule,
