@@ -14,9 +14,8 @@ use gapwright::report::json::result_json;
 use gapwright::report::section::section_svg;
 use gapwright::report::terminal::{Look, solve_screen};
 use gapwright::report::vtk::{FieldCells, field_vtu};
-use gapwright::results::Results;
-use gapwright::results::collect;
 use gapwright::results::sample::Sampler;
+use gapwright::results::{self, Results};
 use std::time::Instant;
 
 /// Runs `solve`.
@@ -26,7 +25,7 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     let (sheet, outline) = sheet::read(options)?;
     clock.lap("sheet and section");
     let outcome = run(&sheet.model, &outline, options, &mut clock)?;
-    let results = collect(&sheet.model, &outline, &outcome);
+    let results = results::collect(&sheet.model, &outline, &outcome);
     clock.lap("results");
     let seconds = start.elapsed().as_secs_f64();
 
@@ -44,7 +43,8 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     if options.json {
         screen::print(&result_json(&results, times.as_ref()))?;
     } else if !options.quiet {
-        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+        let look =
+            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
         screen::print(&solve_screen(&results, &look))?;
         screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
     }
@@ -52,12 +52,21 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
 }
 
 /// The rounds, with progress; a failure without any field is a stop.
-fn run(model: &Model, outline: &Outline, options: &Options, clock: &mut Clock) -> Result<Outcome, Stop> {
+fn run(
+    model: &Model,
+    outline: &Outline,
+    options: &Options,
+    clock: &mut Clock,
+) -> Result<Outcome, Stop> {
     let mut progress = screen::Progress::new(options.quiet || options.json);
     let mut n_rounds = 0;
     let outcome = adapt::run(model, outline, &mut |round| {
         n_rounds += 1;
-        let stage = if n_rounds == 1 { "mesh and round 1".to_string() } else { format!("round {n_rounds}") };
+        let stage = if n_rounds == 1 {
+            "mesh and round 1".to_string()
+        } else {
+            format!("round {n_rounds}")
+        };
         clock.lap(&stage);
         progress.round(round.n_unknowns, round.low, round.high);
     });
@@ -90,7 +99,11 @@ fn drawings(
     };
     let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells)
         .map_err(|e| Stop::new(End::NotWritten, format!("field.vtu: {e}")))?;
-    let quantity = if results.is_linear && results.inductance.is_some() { "inductance [H]" } else { "coenergy [J]" };
+    let quantity = if results.is_linear && results.inductance.is_some() {
+        "inductance [H]"
+    } else {
+        "coenergy [J]"
+    };
     let mut finished = vec![
         ("section.svg", section_svg(model, outline).into_bytes()),
         ("field.svg", field_svg(&map).into_bytes()),
@@ -117,8 +130,8 @@ fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) 
 
 /// How the run ends: a missed interval weighs more than a missed promise, whose verdict it makes doubtful.
 fn end_of(results: &Results) -> End {
-    let is_met =
-        results.verdict.as_ref().is_none_or(|v| v.within_tolerance) && results.requirements.iter().all(|r| r.met);
+    let is_met = results.verdict.as_ref().is_none_or(|v| v.within_tolerance)
+        && results.requirements.iter().all(|r| r.met);
     match (results.reached, is_met) {
         (false, _) => End::NotReached,
         (true, false) => End::NotMet,

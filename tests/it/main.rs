@@ -1,6 +1,8 @@
 //! Integration tests, one binary: text in, text out.
 #![allow(clippy::unwrap_used)]
 
+mod architecture;
 mod messages;
 mod mutations;
 mod sheets;
+mod tidy;
