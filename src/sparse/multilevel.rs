@@ -5,11 +5,11 @@
 //! (hierarchical splitting); J. Bramble, J. Pasciak, J. Xu, Math. Comp. 55 (1990) 1 (smoothing on every level).
 
 use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
+use super::dissection::nested_dissection;
 use super::matrix::{Matrix, Swept, leading_block};
 use nalgebra::DMatrix;
 use nalgebra_sparse::factorization::CscCholesky;
 use nalgebra_sparse::{CooMatrix, CscMatrix};
-use sprs::linalg::reverse_cuthill_mckee;
 
 /// How an unknown that a finer level added follows from older unknowns: Σ weight·parent (weight 0: no parent).
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
@@ -186,11 +186,10 @@ fn prolong(interpolation: &[Interpolation], n: usize, v: &mut Vec<f64>) {
 }
 
 impl Coarse {
-    /// Factorises the leading block in reverse Cuthill–McKee order (the library's Cholesky keeps the given order).
+    /// Factorises the leading block by nested dissection (the library's Cholesky keeps the given order).
     fn new(matrix: &Matrix, size: usize) -> Option<Coarse> {
         let block = leading_block(matrix, size);
-        let order: Vec<usize> =
-            reverse_cuthill_mckee(block.view()).perm.vec().iter().map(|&i| i as usize).collect();
+        let order = nested_dissection(&block);
         let mut position = vec![0; size];
         for (new, &old) in order.iter().enumerate() {
             position[old] = new;
