@@ -1,6 +1,8 @@
 //! Integration tests, one binary: text in, text out.
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
+mod cases;
+mod guarantee;
 mod messages;
 mod mutations;
 mod sheets;
