@@ -48,8 +48,12 @@ fn check_interval(case: &Case, width: f64) {
     let bound = &run.outcome.bound;
     let l = run.results().inductance.unwrap();
     let l_exact = case.reference("L_H");
-    assert!(l.low <= l_exact * (1.0 + REFERENCE_ERROR) && l_exact * (1.0 - REFERENCE_ERROR) <= l.high);
-    assert!(l.low <= l.value && l.value <= l.high && (l.high - l.low) / l.value <= width * 1.000_001);
+    assert!(
+        l.low <= l_exact * (1.0 + REFERENCE_ERROR) && l_exact * (1.0 - REFERENCE_ERROR) <= l.high
+    );
+    assert!(
+        l.low <= l.value && l.value <= l.high && (l.high - l.low) / l.value <= width * 1.000_001
+    );
     let ratio = ratio(bound.low, bound.high, exact);
     println!(
         "{} {:>5} %: {:>6} unknowns, {:>2} rounds, interval/error {ratio:.3}, first round {:.3}",
@@ -244,10 +248,14 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
             let mut moments: Vec<Moments> = Vec::new();
             let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
             update_constant(&mesh, &coefficients, &rules, &all, &mut moments);
-            let mut solution =
-                Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
-            let system = System { mesh: &mesh, space: &space, coefficients: &coefficients, rules: &rules };
-            solve::solve(&system, &mut moments, &mut Hierarchy::default(), &mut solution, 1e-2).unwrap();
+            let mut solution = Solution {
+                vertex: vec![0.0; mesh.points.len()],
+                edge: vec![0.0; mesh.edges.len()],
+            };
+            let system =
+                System { mesh: &mesh, space: &space, coefficients: &coefficients, rules: &rules };
+            solve::solve(&system, &mut moments, &mut Hierarchy::default(), &mut solution, 1e-2)
+                .unwrap();
             let field = Field {
                 mesh: &mesh,
                 coefficients: &coefficients,
@@ -294,7 +302,11 @@ fn a_higher_quadrature_moves_the_ends_by_less_than_the_margin() {
         }
         let told: Vec<String> =
             movements.iter().map(|[low, high]| format!("{low:+.1e} {high:+.1e}")).collect();
-        println!("{}: low and high move by {} of W' under 12², 16² points", case.name, told.join(", "));
+        println!(
+            "{}: low and high move by {} of W' under 12², 16² points",
+            case.name,
+            told.join(", ")
+        );
         for movement in movements.iter().flatten() {
             assert!(movement.abs() <= bound::MARGIN, "{}: {movement:.2e}", case.name);
         }
@@ -325,11 +337,13 @@ fn equal_inputs_give_equal_bytes_for_any_number_of_threads() {
     for (case, interval) in [(R1, "1e-3"), (R8, large)] {
         let sheet = base.path().join(format!("{}.toml", case.name));
         std::fs::write(&sheet, case.sheet).unwrap();
-        let first = files(&sheet, &base.path().join("a"), &["--interval", interval, "--threads", "2"]);
+        let first =
+            files(&sheet, &base.path().join("a"), &["--interval", interval, "--threads", "2"]);
         for (k, threads) in ["2", "1", "3"].iter().enumerate() {
             let out = base.path().join(format!("{}-{k}", case.name));
             let again = files(&sheet, &out, &["--interval", interval, "--threads", threads]);
-            for (name, (a, b)) in ["result", "field", "rounds"].iter().zip(first.iter().zip(&again)) {
+            for (name, (a, b)) in ["result", "field", "rounds"].iter().zip(first.iter().zip(&again))
+            {
                 assert!(a == b, "{} {name} differs with {threads} threads", case.name);
             }
             assert!(first == again);
@@ -351,6 +365,11 @@ fn a_saturating_interval_holds_the_reference_whatever_the_field() {
     // The table's second digits: 1500 µ0 · 1000 A/m to 1e-12.
     for field in [run.outcome.solution.clone(), zero(&run), shaken(&run, 1e-3, 5)] {
         let bound = run.bound_of(&field);
-        assert!(bound.low <= exact && exact <= bound.high, "[{}, {}]: {exact}", bound.low, bound.high);
+        assert!(
+            bound.low <= exact && exact <= bound.high,
+            "[{}, {}]: {exact}",
+            bound.low,
+            bound.high
+        );
     }
 }

@@ -5,4 +5,5 @@ mod cases;
 mod guarantee;
 mod messages;
 mod mutations;
+mod rates;
 mod sheets;
