@@ -2,6 +2,7 @@
 #![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod cases;
+mod forces;
 mod guarantee;
 mod messages;
 mod mutations;
