@@ -4,6 +4,7 @@
 mod cases;
 mod forces;
 mod guarantee;
+mod joint;
 mod messages;
 mod mutations;
 mod rates;
