@@ -4,8 +4,12 @@
 mod cases;
 mod forces;
 mod guarantee;
+mod hot_spots;
 mod joint;
+mod ledger;
 mod messages;
 mod mutations;
+mod points;
 mod rates;
 mod sheets;
+mod vtk_reader;
