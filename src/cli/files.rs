@@ -30,7 +30,11 @@ pub fn write_all(directory: &Path, files: &[Finished]) -> Result<(), Stop> {
         }
         Stop::new(
             End::NotWritten,
-            format!("{} could not be written: {}; choose another place with --out", path.display(), plain(&error)),
+            format!(
+                "{} could not be written: {}; choose another place with --out",
+                path.display(),
+                plain(&error)
+            ),
         )
     })
 }
@@ -67,7 +71,11 @@ fn temporary(directory: &Path, bytes: &[u8]) -> io::Result<NamedTempFile> {
 
 /// The topmost directory that `create_dir_all` will have to make.
 fn missing_ancestor(directory: &Path) -> Option<PathBuf> {
-    directory.ancestors().take_while(|a| !a.as_os_str().is_empty() && !a.exists()).last().map(Path::to_path_buf)
+    directory
+        .ancestors()
+        .take_while(|a| !a.as_os_str().is_empty() && !a.exists())
+        .last()
+        .map(Path::to_path_buf)
 }
 
 /// Removes `directory` and what was made above it, as long as they are empty.
@@ -96,8 +104,10 @@ mod tests {
     use super::*;
 
     fn names(directory: &Path) -> Vec<String> {
-        let mut names: Vec<String> =
-            fs::read_dir(directory).unwrap().map(|e| e.unwrap().file_name().to_string_lossy().into_owned()).collect();
+        let mut names: Vec<String> = fs::read_dir(directory)
+            .unwrap()
+            .map(|e| e.unwrap().file_name().to_string_lossy().into_owned())
+            .collect();
         names.sort();
         names
     }
@@ -113,7 +123,10 @@ mod tests {
         #[cfg(unix)]
         {
             use std::os::unix::fs::PermissionsExt;
-            assert_eq!(fs::metadata(out.join("x.txt")).unwrap().permissions().mode() & 0o777, 0o644);
+            assert_eq!(
+                fs::metadata(out.join("x.txt")).unwrap().permissions().mode() & 0o777,
+                0o644
+            );
         }
     }
 
@@ -122,9 +135,14 @@ mod tests {
         let base = tempfile::tempdir().unwrap();
         let out = base.path().join("b.out");
         fs::create_dir_all(out.join("y.txt")).unwrap();
-        let stop = write_all(&out, &[("x.txt", b"x".to_vec()), ("y.txt", b"y".to_vec())]).unwrap_err();
+        let stop =
+            write_all(&out, &[("x.txt", b"x".to_vec()), ("y.txt", b"y".to_vec())]).unwrap_err();
         assert_eq!(stop.end, End::NotWritten);
-        assert!(stop.text.contains("y.txt could not be written: a directory has that name"), "{}", stop.text);
+        assert!(
+            stop.text.contains("y.txt could not be written: a directory has that name"),
+            "{}",
+            stop.text
+        );
         assert_eq!(names(&out), ["y.txt"]);
     }
 

@@ -15,12 +15,6 @@ use crate::solve::Solution;
 
 /// Results of the size of a real run; the numbers are rounded and belong to no guarantee.
 pub(crate) fn results() -> Results {
-    let row = |region: &str, share: f64, hand: Option<f64>| LedgerRow {
-        region: region.to_string(),
-        share,
-        reluctance: Some(share / 397.175e-9),
-        hand,
-    };
     let round = |n_unknowns, low, high| Round {
         n_unknowns,
         n_triangles: 2 * n_unknowns,
@@ -57,15 +51,7 @@ pub(crate) fn results() -> Results {
             flux_linkage: 1.2611e-3,
             flux_linkage_ends: Some([1.2605e-3, 1.2617e-3]),
         }],
-        ledger: vec![
-            row("post", 0.031, Some(81e3)),
-            row("wall", 0.014, Some(36e3)),
-            row("upper plate", 0.011, Some(27e3)),
-            row("lower plate", 0.011, Some(27e3)),
-            row("post gap", 0.724, Some(2.16e6)),
-            row("main and its window", 0.187, None),
-            row("outside", 0.022, None),
-        ],
+        ledger: ledger(),
         inductance_based: Some(1.2034),
         gaps: vec![GapResult {
             name: "1".to_string(),
@@ -91,20 +77,7 @@ pub(crate) fn results() -> Results {
             exceeded: [0.41, 0.38, 0.36],
             margin: Some(0.21),
         }],
-        probes: vec![ProbeResult {
-            name: "axis".to_string(),
-            points: (0..3)
-                .map(|i| ProbePoint {
-                    r: 1e-3,
-                    z: 1e-3 * f64::from(i),
-                    b_r: 0.1 / 3.0,
-                    b_z: 0.2,
-                    h_r: 1.0,
-                    h_z: 2.0,
-                    psi: 1e-7,
-                })
-                .collect(),
-        }],
+        probes: vec![probe()],
         verdict: Some(Verdict {
             inductance: 0.70e-3,
             is_hand_sum: false,
@@ -126,6 +99,41 @@ pub(crate) fn results() -> Results {
             "the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an average"
                 .to_string(),
         ],
+    }
+}
+
+fn ledger() -> Vec<LedgerRow> {
+    let row = |region: &str, share: f64, hand: Option<f64>| LedgerRow {
+        region: region.to_string(),
+        share,
+        reluctance: Some(share / 397.175e-9),
+        hand,
+    };
+    vec![
+        row("post", 0.031, Some(81e3)),
+        row("wall", 0.014, Some(36e3)),
+        row("upper plate", 0.011, Some(27e3)),
+        row("lower plate", 0.011, Some(27e3)),
+        row("post gap", 0.724, Some(2.16e6)),
+        row("main and its window", 0.187, None),
+        row("outside", 0.022, None),
+    ]
+}
+
+fn probe() -> ProbeResult {
+    ProbeResult {
+        name: "axis".to_string(),
+        points: (0..3)
+            .map(|i| ProbePoint {
+                r: 1e-3,
+                z: 1e-3 * f64::from(i),
+                b_r: 0.1 / 3.0,
+                b_z: 0.2,
+                h_r: 1.0,
+                h_z: 2.0,
+                psi: 1e-7,
+            })
+            .collect(),
     }
 }
 

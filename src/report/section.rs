@@ -218,7 +218,7 @@ fn label(model: &Model, region: &Region) -> Vec<String> {
             let length = model
                 .gaps
                 .get(gap)
-                .map_or(String::new(), |g| format!("{} long", millimeters(g.length)));
+                .map_or(String::new(), |g| format!("gap, {} long", millimeters(g.length)));
             vec![name, length]
         }
         RegionKind::Winding { winding, section } => {
@@ -270,7 +270,7 @@ fn names(canvas: &mut Canvas, model: &Model, outline: &Outline, view: &View) -> 
     for _ in 0..n_passes {
         wishes = beside
             .iter()
-            .map(|n| Wish { anchor: middle_of(&n.polygon), lines: n.lines.clone() })
+            .map(|n| Wish { anchor: right_end(&n.polygon), lines: n.lines.clone() })
             .collect();
         boxes = column(&wishes, view.right() + 46.0, [TOP, view.bottom()], TEXT);
         leaders = wishes.iter().zip(&boxes).map(|(wish, rect)| leader(wish, rect, view)).collect();
@@ -375,6 +375,17 @@ fn middle_of(polygon: &[[f64; 2]]) -> [f64; 2] {
     let cuts = crossings(polygon, middle[1]);
     let widest = cuts.chunks_exact(2).max_by(|a, b| (a[1] - a[0]).total_cmp(&(b[1] - b[0])));
     widest.map_or(middle, |cut| [0.5 * (cut[0] + cut[1]), middle[1]])
+}
+
+/// A point inside near the right end, at the height of [`middle_of`]: where the leader to the column starts.
+fn right_end(polygon: &[[f64; 2]]) -> [f64; 2] {
+    let middle = middle_of(polygon);
+    let cut = crossings(polygon, middle[1]);
+    let right = cut
+        .chunks_exact(2)
+        .find(|c| c[0] <= middle[0] && middle[0] <= c[1])
+        .map_or(middle[0], |c| c[1]);
+    [middle[0].max(right - 9.0), middle[1]]
 }
 
 /// Abscissas where the horizontal at `y` crosses the polygon, ascending.

@@ -1,6 +1,7 @@
 //! Integration tests, one binary: text in, text out.
 #![allow(clippy::unwrap_used, clippy::print_stdout)]
 
+mod architecture;
 mod cases;
 mod forces;
 mod guarantee;
@@ -12,4 +13,5 @@ mod mutations;
 mod points;
 mod rates;
 mod sheets;
+mod tidy;
 mod vtk_reader;
