@@ -160,7 +160,7 @@ impl Run {
             mesh: &self.outcome.mesh,
             coefficients: &self.outcome.coefficients,
             rules: &rules,
-            moments: &self.outcome.moments,
+            elements: &self.outcome.elements,
             solution,
         };
         bound::bound(&field, &Fans::new(&self.outcome.mesh))

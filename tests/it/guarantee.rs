@@ -3,8 +3,8 @@
 use crate::cases::{ALL, Case, R1, R5, R7, R8, Run, is_slow, run};
 use gapwright::adapt::{self, Outcome};
 use gapwright::bound::{self, Field};
-use gapwright::fem::moments::update_constant;
-use gapwright::fem::{Moments, Rules, Space, assemble};
+use gapwright::fem::elements::update_constant;
+use gapwright::fem::{Element, Rules, Space, assemble};
 use gapwright::geometry::outline;
 use gapwright::mesh::fans::Fans;
 use gapwright::mesh::first_mesh;
@@ -167,8 +167,8 @@ fn low_ends_rise_from_round_to_round() {
 ///
 /// Without a preconditioner the first steps lower the energy slowly, so this stops far from the solution.
 fn loosely_solved(run: &Run, decrease: f64) -> Solution {
-    let Outcome { mesh, space, coefficients, moments, .. } = &run.outcome;
-    let matrix = assemble::stiffness(mesh, space, moments);
+    let Outcome { mesh, space, coefficients, elements, .. } = &run.outcome;
+    let matrix = assemble::stiffness(mesh, space, &Fans::new(mesh), elements);
     let load = assemble::load(mesh, space, coefficients);
     let mut x = vec![0.0; load.len()];
     let stop = Stop { decrease, n_iterations_max: 10_000 };
@@ -245,25 +245,31 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
         let mut mesh = first_mesh(&outline).unwrap();
         for _ in 0..3 {
             let space = Space::new(&mesh);
-            let mut moments: Vec<Moments> = Vec::new();
+            let mut elements: Vec<Element> = Vec::new();
             let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-            update_constant(&mesh, &coefficients, &rules, &all, &mut moments);
+            update_constant(&mesh, &coefficients, &rules, &all, &mut elements);
             let mut solution = Solution {
                 vertex: vec![0.0; mesh.points.len()],
                 edge: vec![0.0; mesh.edges.len()],
             };
-            let system =
-                System { mesh: &mesh, space: &space, coefficients: &coefficients, rules: &rules };
-            solve::solve(&system, &mut moments, &mut Hierarchy::default(), &mut solution, 1e-2)
+            let fans = Fans::new(&mesh);
+            let system = System {
+                mesh: &mesh,
+                space: &space,
+                fans: &fans,
+                coefficients: &coefficients,
+                rules: &rules,
+            };
+            solve::solve(&system, &mut elements, &mut Hierarchy::default(), &mut solution, 1e-2)
                 .unwrap();
             let field = Field {
                 mesh: &mesh,
                 coefficients: &coefficients,
                 rules: &rules,
-                moments: &moments,
+                elements: &elements,
                 solution: &solution,
             };
-            let bound = bound::bound(&field, &Fans::new(&mesh));
+            let bound = bound::bound(&field, &fans);
             let exact = coenergy_of(&case);
             assert!(bound.low <= exact && exact <= bound.high, "{}", case.name);
             let mut carried = gapwright::mesh::bisect::Carried {
@@ -278,15 +284,16 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
 /// Ends [J] of the same discrete problem, mesh given, under other rules: solved anew, to rounding.
 fn ends_under(run: &Run, rules: &Rules) -> [f64; 2] {
     let (mesh, coefficients) = (&run.outcome.mesh, &run.outcome.coefficients);
-    let mut moments: Vec<Moments> = Vec::new();
+    let mut elements: Vec<Element> = Vec::new();
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    update_constant(mesh, coefficients, rules, &all, &mut moments);
-    let system = System { mesh, space: &run.outcome.space, coefficients, rules };
+    update_constant(mesh, coefficients, rules, &all, &mut elements);
+    let fans = Fans::new(mesh);
+    let system = System { mesh, space: &run.outcome.space, fans: &fans, coefficients, rules };
     let mut solution = run.outcome.solution.clone();
     let mut hierarchy = Hierarchy::default();
-    solve::solve(&system, &mut moments, &mut hierarchy, &mut solution, 1e-15).unwrap();
-    let field = Field { mesh, coefficients, rules, moments: &moments, solution: &solution };
-    let bound = bound::bound(&field, &Fans::new(mesh));
+    solve::solve(&system, &mut elements, &mut hierarchy, &mut solution, 1e-15).unwrap();
+    let field = Field { mesh, coefficients, rules, elements: &elements, solution: &solution };
+    let bound = bound::bound(&field, &fans);
     [bound.low, bound.high]
 }
 

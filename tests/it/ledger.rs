@@ -146,7 +146,7 @@ fn energy_is_half_of_inductance_and_current_squared() {
         let of_field: f64 = (0..outcome.mesh.triangles.len())
             .map(|t| {
                 TAU * linear_energy(
-                    &outcome.moments[t].k,
+                    &outcome.elements[t].k,
                     &outcome.solution.gradients(&outcome.mesh, t),
                 )
             })

@@ -2,11 +2,12 @@
 //!
 //! Uses the stages' own space, stiffness, axis rule and cap tensor; load vector and boundary values are the test's.
 
-use gapwright::fem::assemble::{self, LOCAL_EDGES};
+use gapwright::fem::assemble;
 use gapwright::fem::element::{Frame, Pair, blend, contract, dot};
-use gapwright::fem::moments::{rule_of, update_constant};
+use gapwright::fem::elements::{LOCAL_EDGES, update_constant};
+use gapwright::fem::moments::rule_of;
 use gapwright::fem::{Coefficients, Reluctivity, Rules, Space, evaluate};
-use gapwright::mesh::fans::{NO_TRIANGLE, edge_triangles};
+use gapwright::mesh::fans::{Fans, NO_TRIANGLE, edge_triangles};
 use gapwright::mesh::{Mesh, RegionId};
 use gapwright::model::Point;
 use gapwright::solve::Solution;
@@ -82,10 +83,10 @@ pub fn errors(mesh: &Mesh, exact: &dyn Exact) -> Errors {
             .collect(),
         current_density: vec![0.0; n_regions as usize],
     };
-    let mut moments = Vec::new();
+    let mut elements = Vec::new();
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    update_constant(mesh, &coefficients, &Rules::working(), &all, &mut moments);
-    let matrix = assemble::stiffness(mesh, &space, &moments);
+    update_constant(mesh, &coefficients, &Rules::working(), &all, &mut elements);
+    let matrix = assemble::stiffness(mesh, &space, &Fans::new(mesh), &elements);
     let load = load(mesh, &space, exact);
     let fixed = border_values(mesh, &space, exact);
     let x = solve(&matrix, load, &fixed);
