@@ -7,7 +7,7 @@ use super::{
 use crate::adapt::Outcome;
 use crate::fem::element::Frame;
 use crate::geometry::{Outline, RegionKind};
-use crate::model::{Model, Point};
+use crate::model::Model;
 use crate::results::ProbeResult;
 use crate::units::{Joule, Weber};
 use std::f64::consts::TAU;
@@ -131,13 +131,9 @@ fn rounds(model: &Model, outcome: &Outcome, carrier: Option<usize>) -> Vec<Round
 }
 
 fn probes(model: &Model, sampler: &Sampler) -> Vec<ProbeResult> {
-    let along =
-        |a: Point, b: Point, s: f64| Point { r: a.r + s * (b.r - a.r), z: a.z + s * (b.z - a.z) };
     (model.probes.iter())
         .map(|probe| {
-            let step = 1.0 / (probe.n_points.max(2) - 1) as f64;
-            let at = |k: usize| along(probe.from, probe.to, k as f64 * step);
-            let points = (0..probe.n_points).filter_map(|k| sampler.probe(at(k))).collect();
+            let points = probe.points().filter_map(|at| sampler.probe(at)).collect();
             ProbeResult { name: probe.name.clone(), points }
         })
         .collect()

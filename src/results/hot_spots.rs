@@ -10,30 +10,37 @@ use crate::units::{Meter, Tesla};
 use std::collections::BTreeMap;
 use std::f64::consts::TAU;
 
-/// Rings and points a ring of the disc's averaging rule (equal areas, midpoints).
-const N_RINGS: usize = 3;
-const N_ON_RING: usize = 12;
+/// Rings and points a ring of the disc's averaging rule (equal areas, midpoints) while it climbs.
+const RULE_CLIMBING: [usize; 2] = [4, 16];
+/// The same for the value that is told: near a corner B grows without bound, and one point of n is worth 1/n.
+const RULE_TOLD: [usize; 2] = [12, 32];
 /// Moves of one climb before it is called done; a climb is a few radii long.
 const N_MOVES_MAX: usize = 40;
+/// Climbs before the search ends with fewer spots than wanted; most starts lead to a place already found.
+const N_CLIMBS_MAX: usize = 24;
 /// A climb ends when steps of this share of the radius no longer help.
 const FINEST_STEP: f64 = 0.06;
 
 /// The `count` hottest discs, hottest first, at least two radii apart.
 ///
-/// Each starts in the hottest cell that is far enough from the discs before it, and climbs to a local maximum of its own
-/// mean within that freedom, so that the answer does not hang on the mesh.
+/// Starts in the hottest cells and climbs to local maxima of the disc's mean, so that the answer does not hang on the mesh;
+/// a start beside a spot already found, or one that leads to it, tells nothing new. There may be fewer maxima than wanted.
 pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let (radius, count) = (model.hot_spots.averaging, model.hot_spots.count);
-    let search = Search { sampler, radius, offsets: offsets(radius) };
-    let mut found: Vec<Disc> = Vec::new();
+    let search = Search { sampler, radius, offsets: offsets(radius, RULE_CLIMBING) };
+    let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
+    let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
     for (triangle, at) in candidates(sampler, radius) {
-        if count <= found.len() {
+        if count <= found.len() || tried.len() == N_CLIMBS_MAX {
             break;
         }
-        if search.is_apart(&found, at) {
-            let start = search.disc(triangle, at);
-            let disc = search.climb(&found, start);
-            found.push(disc);
+        if search.is_apart(&tried, at) {
+            let disc = search.climb(search.disc(triangle, at));
+            if found.iter().all(|other| search.are_apart(other.at, disc.at)) {
+                found.push(told.disc(disc.triangle, disc.at));
+                tried.push(disc.at);
+            }
+            tried.push(at);
         }
     }
     found.sort_by(|a, b| b.mean.total_cmp(&a.mean));
@@ -62,41 +69,43 @@ struct Search<'a> {
     offsets: Vec<[Meter; 2]>,
 }
 
-fn offsets(radius: Meter) -> Vec<[Meter; 2]> {
+fn offsets(radius: Meter, [n_rings, n_on_ring]: [usize; 2]) -> Vec<[Meter; 2]> {
     let point = |ring: usize, k: usize| {
-        let distance = radius * ((ring as f64 + 0.5) / N_RINGS as f64).sqrt();
-        let angle = TAU * (k as f64 + 0.5 * (ring % 2) as f64) / N_ON_RING as f64;
+        let distance = radius * ((ring as f64 + 0.5) / n_rings as f64).sqrt();
+        let angle = TAU * (k as f64 + 0.5 * (ring % 2) as f64) / n_on_ring as f64;
         [distance * angle.cos(), distance * angle.sin()]
     };
-    (0..N_RINGS).flat_map(|ring| (0..N_ON_RING).map(move |k| point(ring, k))).collect()
+    (0..n_rings).flat_map(|ring| (0..n_on_ring).map(move |k| point(ring, k))).collect()
 }
 
 impl Search<'_> {
-    fn is_apart(&self, others: &[Disc], at: Point) -> bool {
-        others.iter().all(|o| 2.0 * self.radius <= (o.at.r - at.r).hypot(o.at.z - at.z))
+    fn are_apart(&self, a: Point, b: Point) -> bool {
+        2.0 * self.radius <= (a.r - b.r).hypot(a.z - b.z)
+    }
+
+    fn is_apart(&self, others: &[Point], at: Point) -> bool {
+        others.iter().all(|&other| self.are_apart(other, at))
     }
 
     fn disc(&self, triangle: usize, at: Point) -> Disc {
         Disc { triangle, at, mean: self.mean(triangle, at) }
     }
 
-    /// Moves a disc uphill inside its body by halved steps, away from the others.
-    fn climb(&self, others: &[Disc], mut disc: Disc) -> Disc {
+    /// Moves a disc uphill inside its body by halved steps.
+    fn climb(&self, mut disc: Disc) -> Disc {
         let sampler = self.sampler;
         let own = body(region(sampler, disc.triangle));
         let mut step = 0.5 * self.radius;
         for _ in 0..N_MOVES_MAX {
             let moved = |(dr, dz): (f64, f64)| {
-                let at = Point { r: disc.at.r + step * dr, z: disc.at.z + step * dz };
-                if at.r < 0.0 || !self.is_apart(others, at) {
-                    return None;
-                }
+                let at = Point { r: (disc.at.r + step * dr).max(0.0), z: disc.at.z + step * dz };
                 let mesh = &sampler.outcome.mesh;
                 let (t, _) = locate(mesh, &sampler.edge_triangles, disc.triangle, at)?;
                 (body(region(sampler, t)) == own).then(|| self.disc(t, at))
             };
             let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
-            let best = around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
+            let best =
+                around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
             match best.filter(|best| disc.mean < best.mean) {
                 Some(best) => disc = best,
                 None if step < FINEST_STEP * self.radius => break,

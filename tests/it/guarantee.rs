@@ -473,10 +473,8 @@ fn a_saturating_interval_holds_the_reference_whatever_the_field() {
 }
 
 #[test]
-#[should_panic(expected = "high permeability")]
-fn known_fault_high_permeability_widens_the_interval_through_what_the_solver_left() {
-    // The tree carries the solver's rest through the core, where the energy of τ is ½µH²: solved to rounding the same
-    // meshes give ratios of 1.8 to 2.0.
+fn high_permeability_does_not_widen_the_interval_through_what_the_solver_left() {
+    // Carried through the core, the solver's rest would cost ½µH²; the tree runs through air as far as it can.
     let mut model = R1.model(1e-6);
     model.materials[0].law = Law::Constant { permeability: 1e5 };
     let run = Run::new(model);
