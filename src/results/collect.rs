@@ -52,7 +52,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         true => value,
         false => carrier.and_then(|w| {
             let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
-            linkage::tangent(outcome, &unit, &unit)
+            linkage::tangent(outcome, &outcome.moments, &unit, &unit)
         }),
     };
     Results {
@@ -68,6 +68,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         coenergy,
         energy: if is_linear { coenergy.value } else { energy },
         is_linear,
+        estimated_error: (!is_linear).then(|| outcome.bound.relative_width()),
         windings,
         inductance_based: value
             .and_then(|l| gaps::common_factor(outline, &gaps, &ledger, turns * turns / l)),
@@ -77,6 +78,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         parts: parts::results(model, &sampler),
         probes: probes(model, &sampler),
         verdict,
+        ripple: None,
         requirements: Vec::new(),
         notes,
     }
@@ -146,6 +148,14 @@ fn probes(model: &Model, sampler: &Sampler) -> Vec<ProbeResult> {
 /// Usable but doubtful: fields past the last point of a table, legs that are not round.
 fn notes(model: &Model, sampler: &Sampler) -> Vec<String> {
     let mut notes = parts::beyond_tables(model, sampler);
+    if !sampler.outcome.coefficients.is_linear() {
+        notes.push(
+            "guaranteed are the ends of the coenergy and, for a single current, those of the flux linkage and the \
+             apparent inductance, which follow from its convexity; their best values carry an estimated error, and \
+             the incremental inductance is a best value only"
+                .to_string(),
+        );
+    }
     if let Some(core) = &model.core {
         if let crate::model::Form::Pot { wall: crate::model::PotWall::OuterLegsArea(_), .. } =
             core.form
