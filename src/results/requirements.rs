@@ -3,7 +3,7 @@
 use super::linkage::{load, tangent, unit_density};
 use super::{RequirementResult, single_carrier};
 use crate::adapt::Outcome;
-use crate::adapt::again::{Again, at_density, rate_ends_at, scaled};
+use crate::adapt::again::{Again, at_density, linkage_width, rate_ends_at, scaled};
 use crate::geometry::Outline;
 use crate::model::{InductanceKind, Model, Requirement};
 use crate::solve::SolveError;
@@ -50,7 +50,7 @@ fn check(
 ) -> Result<RequirementResult, SolveError> {
     let (w, current) = (requirement.winding, requirement.current);
     let density = scaled_density(model, outline, w, current);
-    let width = outcome.bound.relative_width();
+    let width = linkage_width(outcome.bound.relative_width());
     let start = match model.windings[w].current {
         0.0 => scaled(&outcome.solution, 0.0),
         of_sheet => scaled(&outcome.solution, current / of_sheet),

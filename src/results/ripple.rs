@@ -4,7 +4,7 @@ use super::linkage::unit_density;
 use super::sample::Sampler;
 use super::{RippleCurrent, RipplePart, RippleResult, parts};
 use crate::adapt::Outcome;
-use crate::adapt::again::at_density;
+use crate::adapt::again::{at_density, linkage_width};
 use crate::geometry::Outline;
 use crate::model::{Model, Winding};
 use crate::solve::{Solution, SolveError};
@@ -65,6 +65,7 @@ fn field_at(
             *j += change * unit;
         }
     }
-    let (start, width) = (outcome.solution.clone(), outcome.bound.relative_width());
+    let width = linkage_width(outcome.bound.relative_width());
+    let start = outcome.solution.clone();
     Ok(at_density(outcome, &density, &start, width)?.solution)
 }

@@ -65,7 +65,7 @@ pub struct Work {
     pub n_solves: usize,
     pub n_newton_steps: usize,
     pub n_cg_iterations: usize,
-    /// Meshes that rows stand on: 1 when the first one served all.
+    /// Meshes tried: 1 when that of the highest current served all rows.
     pub n_meshes: usize,
 }
 
@@ -100,9 +100,13 @@ pub fn saturate(
     let mut points = place::rows(&mut bench, wish, progress)?;
     bench.linkage_ends(&mut points)?;
     let falls = place::falls(&mut bench, &points)?;
+    if !model.requirements.is_empty() {
+        // The promises start from the sheet's own field.
+        bench.move_to(model.windings[w].current.abs())?;
+    }
     let (requirements, mut notes) = check_requirements(model, outline, &mut bench.outcome)
         .map_err(|source| StudyError::Solve { current: bench.current, source })?;
-    notes.extend(self::notes(model, w, &points, bench.work.n_meshes));
+    notes.extend(self::notes(model, w, &points));
     Ok(Saturation {
         title: model.title.clone(),
         winding: model.windings[w].name.clone(),
@@ -129,7 +133,7 @@ fn is_narrow(low: Joule, high: Joule, wanted: f64) -> bool {
     high - low <= wanted * 0.5 * (low + high)
 }
 
-fn notes(model: &Model, w: usize, rows: &[Row], n_meshes: usize) -> Vec<String> {
+fn notes(model: &Model, w: usize, rows: &[Row]) -> Vec<String> {
     let mut notes = vec![
         "guaranteed are the ends of the coenergy and those of the flux linkage, which follow from its convexity; \
          flux linkage and inductances themselves are best values with an error of about the coenergy's relative width \
@@ -143,11 +147,12 @@ fn notes(model: &Model, w: usize, rows: &[Row], n_meshes: usize) -> Vec<String> 
             model.windings[w].name
         ));
     }
-    if 1 < n_meshes {
-        notes.push(format!(
-            "the rows stand on {n_meshes} meshes: some needed a finer one for the wanted interval; column `unknowns` \
-             tells them apart"
-        ));
+    if rows.windows(2).any(|pair| pair[0].n_unknowns != pair[1].n_unknowns) {
+        notes.push(
+            "the rows stand on different meshes, so that differences between them hold part of the discretisation \
+             error; the column of unknowns tells them apart"
+                .to_string(),
+        );
     }
     for material in &model.materials {
         if let Some((_, b_last)) = material.law.last_point() {

@@ -1,12 +1,12 @@
 //! The mesh of the study and the fields found on it: solves at any current from the nearest known ones.
 
 use super::{Row, Work, densities, is_narrow};
-use crate::adapt::again::{Again, adopt, at_density, rate_step, scaled};
+use crate::adapt::again::{Again, adopt, at_density, linkage_width, rate_step, scaled};
 use crate::adapt::{self, Outcome};
 use crate::fem::Rules;
 use crate::geometry::Outline;
 use crate::mesh::first_mesh;
-use crate::model::Model;
+use crate::model::{Accuracy, Model};
 use crate::results::linkage::{load, tangent};
 use crate::results::sample::Sampler;
 use crate::results::{Guaranteed, parts, single_carrier};
@@ -15,6 +15,10 @@ use crate::sparse::cg::dot;
 use crate::study::StudyError;
 use crate::units::{Ampere, Henry, Joule};
 use std::f64::consts::TAU;
+
+/// A point that needs a finer mesh gets one for this share of the wanted interval, so that its neighbours need no
+/// further one.
+const REFINE_SHARE: f64 = 0.7;
 
 /// Outcome, loads and known fields.
 pub struct Bench<'a> {
@@ -86,13 +90,19 @@ impl<'a> Bench<'a> {
         let steps = self.move_to(current)?;
         if 0.0 < current && !self.is_narrow() {
             let n_rounds = self.outcome.rounds.len();
-            let rules = Rules::working();
-            adapt::refine(&mut self.outcome, &rules, &self.model.accuracy, &mut |_| {})?;
+            let (rules, wanted) = (Rules::working(), self.model.accuracy);
+            let narrower = Accuracy { interval: REFINE_SHARE * wanted.interval, ..wanted };
+            adapt::refine(&mut self.outcome, &rules, &narrower, &mut |_| {})?;
             if n_rounds < self.outcome.rounds.len() {
                 self.on_new_mesh();
             }
         }
         self.read(steps)
+    }
+
+    /// Was this row solved on an older mesh than the present one?
+    pub fn is_stale(&self, row: &Row) -> bool {
+        row.n_unknowns != self.outcome.space.n_dofs
     }
 
     fn is_narrow(&self) -> bool {
@@ -101,7 +111,7 @@ impl<'a> Bench<'a> {
     }
 
     /// Moves the outcome to `current`; returns the Newton steps.
-    fn move_to(&mut self, current: Ampere) -> Result<usize, StudyError> {
+    pub fn move_to(&mut self, current: Ampere) -> Result<usize, StudyError> {
         let density: Vec<f64> = self.along.iter().map(|j| j * current).collect();
         let again = self.solve(current, &density)?;
         let steps = again.effort.n_newton_steps;
@@ -112,7 +122,8 @@ impl<'a> Bench<'a> {
 
     fn solve(&mut self, current: Ampere, density: &[f64]) -> Result<Again, StudyError> {
         let start = self.start(current);
-        let again = at_density(&mut self.outcome, density, &start, self.model.accuracy.interval)
+        let width = linkage_width(self.model.accuracy.interval);
+        let again = at_density(&mut self.outcome, density, &start, width)
             .map_err(|source| StudyError::Solve { current, source })?;
         self.work.n_solves += 1;
         self.work.n_newton_steps += again.effort.n_newton_steps;

@@ -32,14 +32,35 @@ pub fn rows(
     }
     rows.push(bench.row(0.0)?);
     rows.sort_by(|a, b| a.current.total_cmp(&b.current));
+    renew(bench, &mut rows)?;
     progress(rows.len(), n_points);
     while rows.len() < n_points {
         let Some(k) = worst(&rows, INTERVAL_MIN * wish.to) else { break };
         let middle = 0.5 * (rows[k].current + rows[k + 1].current);
         rows.insert(k + 1, bench.row(middle)?);
+        renew(bench, &mut rows)?;
         progress(rows.len(), n_points);
     }
     Ok(rows)
+}
+
+/// How often the rows are solved again before different meshes are put up with.
+const N_RENEWALS_MAX: usize = 3;
+
+/// Solves every row that stands on an older mesh again on the present one: differences between rows then tell of the
+/// current, not of the mesh.
+fn renew(bench: &mut Bench, rows: &mut [Row]) -> Result<(), StudyError> {
+    for _ in 0..N_RENEWALS_MAX {
+        if !rows.iter().any(|row| bench.is_stale(row)) {
+            break;
+        }
+        for row in rows.iter_mut().rev() {
+            if bench.is_stale(row) {
+                *row = bench.row(row.current)?;
+            }
+        }
+    }
+    Ok(())
 }
 
 /// Index of the interval in which straight lines through the rows miss λ or the incremental inductance most.
