@@ -52,7 +52,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         true => value,
         false => carrier.and_then(|w| {
             let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
-            linkage::tangent(outcome, &outcome.moments, &unit, &unit)
+            linkage::tangent(outcome, &outcome.elements, &unit, &unit)
         }),
     };
     Results {

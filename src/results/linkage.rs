@@ -4,8 +4,9 @@ use super::Guaranteed;
 use super::collect::{flux_linkage, single_carrier};
 use super::sample::Sampler;
 use crate::adapt::Outcome;
-use crate::fem::{Coefficients, Moments, assemble};
+use crate::fem::{Coefficients, Element, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
+use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
 use crate::sparse::{Stop, conjugate_gradients};
@@ -74,16 +75,17 @@ const TANGENT_DECREASE: f64 = 1e-10;
 
 /// dλ_w/dI_w at the bias from the tangent problem A_t y = b, λ' = 2π b_w·y (eq. 14) [H].
 ///
-/// - `moments`: of the tangent at the bias
+/// - `elements`: of the tangent at the bias
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
 pub fn tangent(
     outcome: &Outcome,
-    moments: &[Moments],
+    elements: &[Element],
     unit: &[f64],
     rate: &[f64],
 ) -> Option<Henry> {
-    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, moments);
+    let fans = Fans::new(&outcome.mesh);
+    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements);
     let mut work = outcome.hierarchy.workspace();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };

@@ -69,7 +69,7 @@ fn check(
         }
         InductanceKind::Incremental => {
             let rate: Vec<f64> = load(outcome, &density).iter().map(|b| b / current).collect();
-            let slope = tangent(outcome, &again.moments, &unit, &rate).unwrap_or(f64::NAN);
+            let slope = tangent(outcome, &again.elements, &unit, &rate).unwrap_or(f64::NAN);
             // Where nothing saturates both inductances are one number, and its ends are guaranteed.
             let ends = match is_alone && outcome.coefficients.is_linear() {
                 true => Some(apparent_ends(outcome, &density, &again, current)?),

@@ -185,7 +185,10 @@ pub fn saturate_svg(found: &Saturation) -> String {
     // Room for many parts, whose names may need more height than the panel has.
     let names: f64 = parts.iter().map(|c| size_of(&[c.name.clone()], TEXT)[1] + 5.0).sum();
     let bottom = bottom.max(below.area.y + names + 10.0);
-    canvas.finish(LEFT + WIDTH + 22.0 + text_width(&"m".repeat(26), TEXT) + 8.0, bottom, &title)
+    let widest = parts.iter().chain(&inductances).map(|c| text_width(&c.name, TEXT));
+    let right = LEFT + WIDTH + 22.0 + widest.fold(0.0, f64::max) + 10.0;
+    let title_right = 24.0 + text_width(&title, 15.0);
+    canvas.finish(right.max(title_right), bottom, &title)
 }
 
 /// The guaranteed ends of λ/I as a pale band; false where there are none.

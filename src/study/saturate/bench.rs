@@ -20,6 +20,9 @@ use std::f64::consts::TAU;
 /// further one.
 const REFINE_SHARE: f64 = 0.7;
 
+/// Ends of λ wider than this many times the best width 2√η are worth two more solves.
+const N_BEST_WIDTHS_MAX: f64 = 1.5;
+
 /// Outcome, loads and known fields.
 pub struct Bench<'a> {
     model: &'a Model,
@@ -162,7 +165,7 @@ impl<'a> Bench<'a> {
 
     /// dλ/dI along the scale at the outcome's field [H].
     fn slope(&self) -> Result<Henry, StudyError> {
-        tangent(&self.outcome, &self.outcome.moments, &self.load_alone, &self.load_along)
+        tangent(&self.outcome, &self.outcome.elements, &self.load_alone, &self.load_along)
             .ok_or(StudyError::Tangent { current: self.current })
     }
 
@@ -202,23 +205,42 @@ impl<'a> Bench<'a> {
         parts.into_iter().map(|(name, _)| name).collect()
     }
 
-    /// Fills in the guaranteed ends of λ; one solve above the highest current gives the last row its upper end.
+    /// Fills in the guaranteed ends of λ from the rows' own coenergies; one solve above the highest current gives the
+    /// last row its upper end, and rows that stand too far from their neighbours get two of their own.
     pub fn linkage_ends(&mut self, rows: &mut [Row]) -> Result<(), StudyError> {
         let Some(last) = rows.last() else { return Ok(()) };
         if single_carrier(self.model).is_none() {
             return Ok(());
         }
-        let width = (last.coenergy.high - last.coenergy.low) / last.coenergy.value;
-        let beyond = last.current * (1.0 + rate_step(width));
-        let density: Vec<f64> = self.along.iter().map(|j| j * beyond).collect();
-        let bound = self.solve(beyond, &density)?.bound;
+        let width = |row: &Row| (row.coenergy.high - row.coenergy.low) / row.coenergy.value;
         let mut support: Vec<(Ampere, [Joule; 2])> =
             rows.iter().map(|r| (r.current, [r.coenergy.low, r.coenergy.high])).collect();
-        support.push((beyond, [bound.low, bound.high]));
-        for (i, row) in rows.iter_mut().enumerate() {
-            row.flux_linkage_ends = Some(ends(&support, i));
+        let beyond = last.current * (1.0 + rate_step(width(last)));
+        support.push(self.support(beyond)?);
+        for row in rows.iter().skip(1) {
+            let at = support.partition_point(|(current, _)| *current < row.current);
+            let [low, high] = ends(&support, at);
+            // With neighbours in the best places the ends are 2√η apart.
+            if N_BEST_WIDTHS_MAX * 2.0 * width(row).sqrt() * row.flux_linkage < high - low {
+                for side in [-1.0, 1.0] {
+                    let near = row.current * (1.0 + side * rate_step(width(row)));
+                    let at = support.partition_point(|(current, _)| *current < near);
+                    support.insert(at, self.support(near)?);
+                }
+            }
+        }
+        for row in rows.iter_mut() {
+            let at = support.partition_point(|(current, _)| *current < row.current);
+            row.flux_linkage_ends = Some(ends(&support, at));
         }
         Ok(())
+    }
+
+    /// A coenergy that no row shows: one more point that chords may end at.
+    fn support(&mut self, current: Ampere) -> Result<(Ampere, [Joule; 2]), StudyError> {
+        let density: Vec<f64> = self.along.iter().map(|j| j * current).collect();
+        let bound = self.solve(current, &density)?.bound;
+        Ok((current, [bound.low, bound.high]))
     }
 }
 
