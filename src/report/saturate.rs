@@ -256,11 +256,12 @@ pub fn saturate_screen(found: &Saturation, look: &Look) -> String {
 fn falls(text: &mut String, found: &Saturation) {
     let Some(first) = found.rows.first() else { return };
     let name = clip(&found.winding, NAME_WIDTH);
-    let start = engineering(first.incremental, "H", 4);
-    push(
-        text,
-        &format!("  The incremental inductance of {name} is {start} at I → 0; it has fallen"),
-    );
+    let start = engineering(first.incremental, "H", 4).replace(' ', "\u{a0}");
+    let sentence =
+        format!("The incremental inductance of {name} is {start} at I → 0; it has fallen");
+    for line in wrap(&sentence, WIDTH - 2) {
+        push(text, &format!("  {line}"));
+    }
     for fall in &found.falls {
         let highest = found.rows.last().map_or(0.0, |r| r.current);
         let place = match fall.current {

@@ -4,5 +4,6 @@
 mod architecture;
 mod messages;
 mod mutations;
+mod saturation;
 mod sheets;
 mod tidy;
