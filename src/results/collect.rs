@@ -7,7 +7,7 @@ use super::{
 use crate::adapt::Outcome;
 use crate::fem::element::Frame;
 use crate::geometry::{Outline, RegionKind};
-use crate::model::{Model, Point};
+use crate::model::{Form, Model, Point, PotWall};
 use crate::results::ProbeResult;
 use crate::units::{Joule, Weber};
 use std::f64::consts::TAU;
@@ -156,16 +156,14 @@ fn notes(model: &Model, sampler: &Sampler) -> Vec<String> {
                 .to_string(),
         );
     }
-    if let Some(core) = &model.core {
-        if let crate::model::Form::Pot { wall: crate::model::PotWall::OuterLegsArea(_), .. } =
-            core.form
-        {
-            notes.push(
+    if let Some(core) = &model.core
+        && let Form::Pot { wall: PotWall::OuterLegsArea(_), .. } = core.form
+    {
+        notes.push(
                 "the outer legs are not round: they are replaced by a round wall of equal section, a model error of \
                  per cents that no interval covers"
                     .to_string(),
             );
-        }
     }
     notes
 }
@@ -178,11 +176,10 @@ pub fn flux_linkage(model: &Model, sampler: &Sampler, w: usize) -> Weber {
     for (t, region) in mesh.regions.iter().enumerate() {
         if let RegionKind::Winding { winding, section } =
             sampler.outline.regions[region.0 as usize].kind
+            && winding == w
         {
-            if winding == w {
-                psi[section] += solution.integral(mesh, t);
-                area[section] += 0.5 * Frame::new(mesh, t).det_abs;
-            }
+            psi[section] += solution.integral(mesh, t);
+            area[section] += 0.5 * Frame::new(mesh, t).det_abs;
         }
     }
     (model.windings[w].sections.iter().enumerate())

@@ -9,7 +9,7 @@ use crate::geometry::{Outline, Region, RegionKind};
 use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
-use crate::sparse::{Stop, conjugate_gradients};
+use crate::sparse::{Multilevel, Stop, Swept, Workspace};
 use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
@@ -85,13 +85,11 @@ pub fn tangent(
     rate: &[f64],
 ) -> Option<Henry> {
     let fans = Fans::new(&outcome.mesh);
-    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements);
-    let mut work = outcome.hierarchy.workspace();
+    let matrix = Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements));
+    let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
-    let mut precondition =
-        |r: &[f64], z: &mut [f64]| outcome.hierarchy.precondition(&matrix, &mut work, r, z);
-    conjugate_gradients(&matrix, rate, &mut y, &stop, 0.0, &mut precondition).ok()?;
+    Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0).ok()?;
     Some(TAU * dot(unit, &y))
 }
 

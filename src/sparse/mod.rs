@@ -4,6 +4,6 @@ pub mod cg;
 pub mod matrix;
 pub mod multilevel;
 
-pub use cg::{CgError, Convergence, Stop, conjugate_gradients};
-pub use matrix::Matrix;
-pub use multilevel::{Hierarchy, Interpolation};
+pub use cg::{CgError, Convergence, Operator, Stop, conjugate_gradients};
+pub use matrix::{Matrix, Swept};
+pub use multilevel::{Hierarchy, Interpolation, Multilevel, Workspace};

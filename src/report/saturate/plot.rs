@@ -183,7 +183,8 @@ pub fn saturate_svg(found: &Saturation) -> String {
     let bottom = current_axis(&mut canvas, &below);
     let bottom = bottom + remarks(&mut canvas, bottom, has_band);
     // Room for many parts, whose names may need more height than the panel has.
-    let names: f64 = parts.iter().map(|c| size_of(&[c.name.clone()], TEXT)[1] + 5.0).sum();
+    let names: f64 =
+        parts.iter().map(|c| size_of(std::slice::from_ref(&c.name), TEXT)[1] + 5.0).sum();
     let bottom = bottom.max(below.area.y + names + 10.0);
     let widest = parts.iter().chain(&inductances).map(|c| text_width(&c.name, TEXT));
     let right = LEFT + WIDTH + 22.0 + widest.fold(0.0, f64::max) + 10.0;
