@@ -1,7 +1,7 @@
 //! `Results` → `result.json` and its JSON Schema. The file's shape is private to this module; all values are SI.
 
 use super::{StageTimes, shortfall};
-use crate::results::{Guaranteed, LedgerRow, PartResult, Results};
+use crate::results::{Guaranteed, LedgerRow, PartResult, RequirementResult, Results, RippleResult};
 use schemars::JsonSchema;
 use schemars::generate::SchemaSettings;
 use serde::Serialize;
@@ -42,6 +42,9 @@ struct ResultFile {
     inductance_factor: Option<BoundedQuantity>,
     /// Slope of the flux linkage at the bias.
     incremental_inductance: Option<Quantity>,
+    /// Relative error of the best flux linkage and inductance of a saturating core: an estimate, not a guarantee;
+    /// null where the inductance carries the interval.
+    estimated_error: Option<f64>,
     coenergy: BoundedQuantity,
     energy: Quantity,
     windings: Vec<WindingEntry>,
@@ -50,6 +53,8 @@ struct ResultFile {
     gap_factors: GapFactors,
     hot_spots: Vec<HotSpotEntry>,
     parts: Vec<PartEntry>,
+    /// What the ripple does, all windings in phase; null without one.
+    ripple: Option<RippleEntry>,
     probes: Vec<ProbeEntry>,
     /// The verdict on the estimate.
     estimate: Option<EstimateEntry>,
@@ -212,7 +217,7 @@ struct EstimateEntry {
 
 #[derive(Serialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-struct RequireEntry {
+pub(super) struct RequireEntry {
     winding: String,
     /// [A]
     current: f64,
@@ -221,9 +226,41 @@ struct RequireEntry {
     least: Option<f64>,
     /// [H]
     most: Option<f64>,
-    /// [H]
+    /// Best value [H].
     inductance: f64,
+    /// Guaranteed ends [H]; null where nothing is guaranteed.
+    low: Option<f64>,
+    high: Option<f64>,
     met: bool,
+    /// True when the guaranteed ends decide, false when only the best value does.
+    certain: bool,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RippleEntry {
+    windings: Vec<RippleCurrentEntry>,
+    parts: Vec<RipplePartEntry>,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RippleCurrentEntry {
+    name: String,
+    /// current − ripple/2 [A]
+    trough: f64,
+    /// current + ripple/2 [A]
+    peak: f64,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RipplePartEntry {
+    name: String,
+    /// Peak-to-peak change of the flux density that 5 % of the volume exceed [T].
+    swing: f64,
+    /// Flux density at the peak current that 5 % of the volume exceed [T].
+    peak: f64,
 }
 
 #[derive(Serialize, JsonSchema)]
@@ -259,6 +296,7 @@ impl ResultFile {
             incremental_inductance: results
                 .incremental_inductance
                 .map(|value| Quantity { value, unit: "H" }),
+            estimated_error: results.estimated_error,
             coenergy: BoundedQuantity::new(&results.coenergy, "J"),
             energy: Quantity { value: results.energy, unit: "J" },
             windings: windings(results),
@@ -266,9 +304,10 @@ impl ResultFile {
             gap_factors: gap_factors(results),
             hot_spots: hot_spots(results),
             parts: results.parts.iter().map(PartEntry::from_part).collect(),
+            ripple: results.ripple.as_ref().map(RippleEntry::from_ripple),
             probes: probes(results),
             estimate: estimate(results),
-            require: requirements(results),
+            require: require_entries(&results.requirements),
             losses: None,
             notes: shortfall(results).into_iter().chain(results.notes.iter().cloned()).collect(),
             timings: times.map(|t| {
@@ -278,6 +317,22 @@ impl ResultFile {
                     .collect()
             }),
         }
+    }
+}
+
+impl RippleEntry {
+    fn from_ripple(ripple: &RippleResult) -> RippleEntry {
+        let windings = ripple.currents.iter().map(|c| RippleCurrentEntry {
+            name: c.winding.clone(),
+            trough: c.trough,
+            peak: c.peak,
+        });
+        let parts = ripple.parts.iter().map(|p| RipplePartEntry {
+            name: p.name.clone(),
+            swing: p.swing,
+            peak: p.peak,
+        });
+        RippleEntry { windings: windings.collect(), parts: parts.collect() }
     }
 }
 
@@ -369,7 +424,7 @@ fn estimate(results: &Results) -> Option<EstimateEntry> {
     })
 }
 
-fn requirements(results: &Results) -> Vec<RequireEntry> {
+pub(super) fn require_entries(requirements: &[RequirementResult]) -> Vec<RequireEntry> {
     let entry = |r: &crate::results::RequirementResult| RequireEntry {
         winding: r.winding.clone(),
         current: r.current,
@@ -377,9 +432,12 @@ fn requirements(results: &Results) -> Vec<RequireEntry> {
         least: r.least,
         most: r.most,
         inductance: r.inductance,
+        low: r.ends.map(|e| e[0]),
+        high: r.ends.map(|e| e[1]),
         met: r.met,
+        certain: r.is_certain,
     };
-    results.requirements.iter().map(entry).collect()
+    requirements.iter().map(entry).collect()
 }
 
 #[cfg(test)]

@@ -2,14 +2,14 @@
 
 use super::numbers::{clip, decimals_for, grouped, interval, percent, signed, wrap};
 use super::{StageTimes, shortfall};
-use crate::results::{Results, Verdict, WindingResult};
+use crate::results::{Guaranteed, Results, RipplePart, Verdict, WindingResult};
 use crate::units::engineering;
 use comfy_table::{CellAlignment, Table, presets};
 
 /// Columns of the screen.
-const WIDTH: usize = 80;
+pub(super) const WIDTH: usize = 80;
 /// Longest name of a region, a part or a winding that is printed in full.
-const NAME_WIDTH: usize = 24;
+pub(super) const NAME_WIDTH: usize = 24;
 /// Width of the left column of the answer.
 const LABEL_WIDTH: usize = 14;
 
@@ -47,7 +47,8 @@ pub fn solve_screen(results: &Results, look: &Look) -> String {
     gaps(&mut text, results, look);
     hot_spots(&mut text, results, look);
     parts(&mut text, results, look);
-    notes(&mut text, results, look);
+    ripple(&mut text, results, look);
+    notes(&mut text, &results.notes, look);
     if let Some(times) = look.times {
         timings(&mut text, results, times, look);
     }
@@ -64,20 +65,20 @@ pub fn progress_line(round: usize, n_unknowns: usize, low: f64, high: f64) -> St
     )
 }
 
-const BOLD: &str = "1";
+pub(super) const BOLD: &str = "1";
 const GOOD: &str = "32";
-const WARN: &str = "33";
+pub(super) const WARN: &str = "33";
 
-fn paint(text: &str, code: &str, colour: bool) -> String {
+pub(super) fn paint(text: &str, code: &str, colour: bool) -> String {
     if colour { format!("\u{1b}[{code}m{text}\u{1b}[0m") } else { text.to_string() }
 }
 
-fn push(text: &mut String, line: &str) {
+pub(super) fn push(text: &mut String, line: &str) {
     text.push_str(line.trim_end());
     text.push('\n');
 }
 
-fn heading(text: &mut String, line: &str, look: &Look) {
+pub(super) fn heading(text: &mut String, line: &str, look: &Look) {
     text.push('\n');
     push(text, &paint(line, BOLD, look.colour));
 }
@@ -104,7 +105,10 @@ fn answer(text: &mut String, results: &Results, look: &Look) {
         [("A_L", &results.inductance_factor), ("inductance", &results.inductance)]
     {
         if let Some(quantity) = quantity {
-            let (value, ends) = bounded(quantity, "H");
+            let (value, ends) = match results.estimated_error {
+                Some(error) => estimated(quantity, error),
+                None => bounded(quantity, "H"),
+            };
             answer_line(text, label, &value, &ends);
         }
     }
@@ -113,7 +117,7 @@ fn answer(text: &mut String, results: &Results, look: &Look) {
             text,
             "incremental",
             &engineering(slope, "H", 4),
-            "slope of the flux linkage at this current",
+            "slope of the flux linkage at this current, best value",
         );
     }
     if is_estimate || results.inductance.is_none() {
@@ -132,6 +136,23 @@ fn answer(text: &mut String, results: &Results, look: &Look) {
         requirement_line(text, requirement, look);
     }
     push(text, &format!("  {}", work(results, look)));
+}
+
+/// Best value of a saturating core's inductance with its estimated error, apart from the guaranteed ends.
+fn estimated(quantity: &Guaranteed, error: f64) -> (String, String) {
+    // One digit beyond the estimated error: 1e-4 leaves 5 of them.
+    let n_digits = (1.0 - error.log10().floor()).clamp(3.0, 7.0) as usize;
+    let ends = interval(quantity, "H");
+    let unit = ends.value.rsplit(' ').next().unwrap_or("H").to_string();
+    (
+        engineering(quantity.value, "H", n_digits),
+        format!(
+            "best value, error about {} (estimated); surely between {} and {}\u{a0}{unit}",
+            percent(error, 1).replace(' ', "\u{a0}"),
+            ends.low,
+            ends.high
+        ),
+    )
 }
 
 /// "2 852 unknowns, 7 rounds, 0.06 s".
@@ -173,7 +194,7 @@ fn verdict_lines(text: &mut String, verdict: &Verdict, look: &Look) {
     }
 }
 
-fn requirement_line(
+pub(super) fn requirement_line(
     text: &mut String,
     requirement: &crate::results::RequirementResult,
     look: &Look,
@@ -189,10 +210,11 @@ fn requirement_line(
             .collect();
     let (verdict, code) = if requirement.met { ("kept", GOOD) } else { ("broken", WARN) };
     let rest = format!(
-        "{kind}, {} at {}: wanted {}, {verdict}",
+        "{kind}, {} at {}: wanted {}, {verdict}{}",
         clip(&requirement.winding, NAME_WIDTH),
         engineering(requirement.current, "A", 3),
-        limits.join(" and ")
+        limits.join(" and "),
+        if requirement.is_certain { " surely" } else { " by the best value" }
     );
     answer_line(text, "requirement", &engineering(requirement.inductance, "H", 4), &rest);
     if look.colour
@@ -203,7 +225,7 @@ fn requirement_line(
 }
 
 /// A table without lines: first column left, the others right, indented by two.
-fn push_table(text: &mut String, header: &[&str], rows: &[Vec<String>]) {
+pub(super) fn push_table(text: &mut String, header: &[&str], rows: &[Vec<String>]) {
     let mut table = Table::new();
     table.load_style(presets::NOTHING);
     table.set_header(header.iter().map(|h| h.to_string()));
@@ -342,12 +364,38 @@ fn parts(text: &mut String, results: &Results, look: &Look) {
     push_table(text, &["", "1 %", "5 %", "50 %", "room to the knee"], &rows);
 }
 
-fn notes(text: &mut String, results: &Results, look: &Look) {
-    if results.notes.is_empty() {
+fn ripple(text: &mut String, results: &Results, look: &Look) {
+    let Some(ripple) = &results.ripple else { return };
+    heading(text, "Ripple: swing of the flux density, and its peak, in 5 % of each part", look);
+    for current in &ripple.currents {
+        push(
+            text,
+            &format!(
+                "  {} swings between {} and {}",
+                clip(&current.winding, NAME_WIDTH),
+                engineering(current.trough, "A", 3),
+                engineering(current.peak, "A", 3)
+            ),
+        );
+    }
+    let row = |part: &RipplePart| {
+        vec![
+            clip(&part.name, NAME_WIDTH),
+            engineering(part.swing, "T", 3),
+            engineering(part.peak, "T", 3),
+        ]
+    };
+    let rows: Vec<Vec<String>> = ripple.parts.iter().map(row).collect();
+    push_table(text, &["", "swing", "peak"], &rows);
+}
+
+/// The notes, one indented paragraph each.
+pub(super) fn notes(text: &mut String, notes: &[String], look: &Look) {
+    if notes.is_empty() {
         return;
     }
     heading(text, "Notes", look);
-    for note in &results.notes {
+    for note in notes {
         for (i, line) in wrap(note, WIDTH - 4).iter().enumerate() {
             push(text, &format!("  {} {line}", if i == 0 { "·" } else { " " }));
         }

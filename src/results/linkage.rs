@@ -4,7 +4,7 @@ use super::Guaranteed;
 use super::collect::{flux_linkage, single_carrier};
 use super::sample::Sampler;
 use crate::adapt::Outcome;
-use crate::fem::{Coefficients, assemble};
+use crate::fem::{Coefficients, Element, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
 use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
@@ -66,8 +66,7 @@ pub fn unit_density(model: &Model, outline: &Outline, w: usize) -> Vec<AmperePer
 /// The load vector b of given current densities on the outcome's mesh; for 1 A in a winding its λ is 2π b·x.
 pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
     // `load` reads the densities only.
-    let coefficients =
-        Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
+    let coefficients = Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
     assemble::load(&outcome.mesh, &outcome.space, &coefficients)
 }
 
@@ -76,12 +75,17 @@ const TANGENT_DECREASE: f64 = 1e-10;
 
 /// dλ_w/dI_w at the bias from the tangent problem A_t y = b, λ' = 2π b_w·y (eq. 14) [H].
 ///
+/// - `elements`: of the tangent at the bias
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
-pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
+pub fn tangent(
+    outcome: &Outcome,
+    elements: &[Element],
+    unit: &[f64],
+    rate: &[f64],
+) -> Option<Henry> {
     let fans = Fans::new(&outcome.mesh);
-    let matrix =
-        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements));
+    let matrix = Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };

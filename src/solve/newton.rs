@@ -18,6 +18,11 @@ const N_NEWTON_MAX: usize = 60;
 const N_HALVINGS_MAX: usize = 40;
 /// CG iterations before giving up; 20–40 are usual.
 const N_CG_MAX: usize = 2000;
+/// CG iterations above which the coarser levels are taken for stale (of another current) and rebuilt: good ones need
+/// 20–36 for 1e-10 from zero.
+const N_CG_STALE: usize = 25;
+/// F rounds to about this share of itself: a smaller predicted decrease cannot be told from noise.
+const ROUNDING: f64 = 1e-15;
 /// Sufficient decrease of F, as a share of the predicted one (Armijo).
 const ARMIJO: f64 = 1e-4;
 
@@ -115,6 +120,7 @@ fn newton(
     x: &mut Vec<f64>,
     decrease: f64,
 ) -> Result<Effort, SolveError> {
+    let decrease = decrease.max(ROUNDING);
     let mut effort = Effort::default();
     let problem = Problem { system, load, saturating: saturating_triangles(system) };
     let mut state = State::new(&problem, elements, x);
@@ -129,6 +135,9 @@ fn newton(
         let mut step = vec![0.0; x.len()];
         let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
+        if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
+            return Err(SolveError::CoarseNotPositive);
+        }
         effort.n_cg_iterations += convergence.n_iterations;
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);

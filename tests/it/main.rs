@@ -2,8 +2,8 @@
 #![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod architecture;
-mod cli;
 mod cases;
+mod cli;
 mod forces;
 mod guarantee;
 mod hot_spots;
@@ -13,6 +13,7 @@ mod messages;
 mod mutations;
 mod points;
 mod rates;
+mod saturation;
 mod sheets;
 mod tidy;
 mod vtk_reader;
