@@ -6,7 +6,10 @@
 mod axis;
 mod bessel;
 mod bessel_form;
+mod builders;
+mod campaigns;
 mod cell;
+mod checks;
 mod coils;
 mod demag;
 mod elliptic;
@@ -14,4 +17,6 @@ mod modes;
 mod quadrature;
 mod random;
 mod references;
+mod solver;
 mod sphere;
+mod table;

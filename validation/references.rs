@@ -72,3 +72,8 @@ pub fn published(prefix: &str) -> Vec<Published> {
 fn number(value: &Value) -> Option<f64> {
     value.as_f64().or_else(|| value.as_str().and_then(|text| text.parse().ok()))
 }
+
+/// The field problems R1 … R10 with their computed values (lengths there in millimetres).
+pub fn field_cases() -> Value {
+    serde_json::from_str(include_str!("references/field_cases.json")).unwrap()
+}

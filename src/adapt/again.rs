@@ -2,16 +2,16 @@
 
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
-use crate::fem::{Moments, Rules};
+use crate::fem::{Element, Rules};
 use crate::mesh::fans::Fans;
 use crate::solve::{self, Effort, Solution, SolveError, System};
-use crate::units::Joule;
+use crate::units::{AmperePerSquareMeter, Joule};
 
-/// A field at scaled currents on an outcome's mesh.
+/// A field at other currents on an outcome's mesh.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Again {
     pub solution: Solution,
-    pub moments: Vec<Moments>,
+    pub elements: Vec<Element>,
     pub bound: Bound,
     pub effort: Effort,
 }
@@ -25,32 +25,60 @@ pub fn at_factor(
     start: &Solution,
     width: f64,
 ) -> Result<Again, SolveError> {
-    let mut coefficients = outcome.coefficients.clone();
-    coefficients.current_density.iter_mut().for_each(|j| *j *= factor);
+    let density: Vec<f64> =
+        outcome.coefficients.current_density.iter().map(|j| j * factor).collect();
+    at_density(outcome, &density, start, width)
+}
+
+/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
+///
+/// The outcome itself stays as it is, but for the preconditioner's finest level.
+pub fn at_density(
+    outcome: &mut Outcome,
+    density: &[AmperePerSquareMeter],
+    start: &Solution,
+    width: f64,
+) -> Result<Again, SolveError> {
+    let (mut solution, mut elements) = (start.clone(), outcome.elements.clone());
+    let before = std::mem::replace(&mut outcome.coefficients.current_density, density.to_vec());
+    let result = solve_and_bound(outcome, &mut solution, &mut elements, width);
+    outcome.coefficients.current_density = before;
+    let (effort, bound) = result?;
+    Ok(Again { solution, elements, bound, effort })
+}
+
+fn solve_and_bound(
+    outcome: &mut Outcome,
+    solution: &mut Solution,
+    elements: &mut [Element],
+    width: f64,
+) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();
-    let (mut solution, mut moments) = (start.clone(), outcome.moments.clone());
-    let system = System {
-        mesh: &outcome.mesh,
-        space: &outcome.space,
-        coefficients: &coefficients,
-        rules: &rules,
-    };
-    let effort = solve::solve(
-        &system,
-        &mut moments,
-        &mut outcome.hierarchy,
-        &mut solution,
-        ALGEBRAIC_SHARE * width,
-    )?;
-    let field = Field {
-        mesh: &outcome.mesh,
-        coefficients: &coefficients,
-        rules: &rules,
-        moments: &moments,
-        solution: &solution,
-    };
-    let bound = bound::bound(&field, &Fans::new(&outcome.mesh));
-    Ok(Again { solution, moments, bound, effort })
+    let Outcome { mesh, space, coefficients, hierarchy, .. } = outcome;
+    let fans = Fans::new(mesh);
+    let system = System { mesh, space, fans: &fans, coefficients, rules: &rules };
+    let effort = solve::solve(&system, elements, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
+    let field = Field { mesh, coefficients, rules: &rules, elements, solution };
+    Ok((effort, bound::bound(&field, &fans)))
+}
+
+/// Puts a field at the current densities `density` into the outcome's place, on the same mesh.
+///
+/// What belonged to the old currents goes: `work_rate_ends` becomes `None`; `rounds` stays as history.
+pub fn adopt(outcome: &mut Outcome, density: &[AmperePerSquareMeter], again: Again) {
+    outcome.coefficients.current_density.copy_from_slice(density);
+    outcome.solution = again.solution;
+    outcome.elements = again.elements;
+    outcome.bound = again.bound;
+    outcome.work_rate_ends = None;
+}
+
+/// The field multiplied by `factor`: the start for currents multiplied by it, and the answer where nothing saturates.
+pub fn scaled(solution: &Solution, factor: f64) -> Solution {
+    Solution {
+        vertex: solution.vertex.iter().map(|v| v * factor).collect(),
+        edge: solution.edge.iter().map(|v| v * factor).collect(),
+    }
 }
 
 /// Guaranteed ends of dW'/ds at s = 1, where s scales all currents (with one current: λ·I).
@@ -60,12 +88,11 @@ pub fn at_factor(
 pub fn work_rate_ends(outcome: &mut Outcome) -> Result<[Joule; 2], SolveError> {
     let width = outcome.bound.relative_width();
     let step = width.max(1e-12).sqrt().min(0.5);
-    let scaled = |solution: &Solution, factor: f64| Solution {
-        vertex: solution.vertex.iter().map(|v| v * factor).collect(),
-        edge: solution.edge.iter().map(|v| v * factor).collect(),
-    };
-    let below = at_factor(outcome, 1.0 - step, &scaled(&outcome.solution, 1.0 - step), width)?;
-    let above = at_factor(outcome, 1.0 + step, &scaled(&outcome.solution, 1.0 + step), width)?;
+    let [below, above] = [1.0 - step, 1.0 + step].map(|factor| {
+        let start = scaled(&outcome.solution, factor);
+        at_factor(outcome, factor, &start, width)
+    });
+    let (below, above) = (below?, above?);
     Ok([
         (outcome.bound.low - below.bound.high) / step,
         (above.bound.high - outcome.bound.low) / step,

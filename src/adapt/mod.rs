@@ -4,8 +4,8 @@ pub mod again;
 mod mark;
 
 use crate::bound::{self, Bound, Field};
-use crate::fem::moments::update_constant;
-use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space};
+use crate::fem::elements::update_constant;
+use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space};
 use crate::geometry::{Outline, Region};
 use crate::mesh::bisect::{Carried, bisect};
 use crate::mesh::fans::Fans;
@@ -33,6 +33,26 @@ pub struct Round {
     pub high: Joule,
 }
 
+/// The parts of a round, for callers that keep time.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Stage {
+    FirstMesh,
+    /// Moments and matrices of new triangles.
+    Elements,
+    /// Assembly, levels and iteration.
+    Solve,
+    Bound,
+    /// Marking and bisection.
+    Refine,
+}
+
+/// What the rounds tell while they run; no stage reads a clock, the caller may.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Event<'a> {
+    Finished(Stage),
+    Round(&'a Round),
+}
+
 /// The last round's field and what was reached.
 #[derive(Debug)]
 pub struct Outcome {
@@ -40,8 +60,8 @@ pub struct Outcome {
     pub space: Space,
     pub coefficients: Coefficients,
     pub solution: Solution,
-    /// Moments at the solution: constant, or the tangent.
-    pub moments: Vec<Moments>,
+    /// Element at the solution: constant, or the tangent.
+    pub elements: Vec<Element>,
     pub bound: Bound,
     pub rounds: Vec<Round>,
     /// Levels of the preconditioner, for further solves on this mesh.
@@ -61,14 +81,15 @@ pub enum AdaptError {
     Solve(#[from] SolveError),
 }
 
-/// Solves `model` in its `outline` to the wanted interval; `progress` sees every finished round.
+/// Solves `model` in its `outline` to the wanted interval; `progress` hears of every finished part and round.
 pub fn run(
     model: &Model,
     outline: &Outline,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<Outcome, AdaptError> {
     let coefficients = coefficients(model, &outline.regions);
     let mesh = first_mesh(outline)?;
+    progress(Event::Finished(Stage::FirstMesh));
     let solution =
         Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
     let mut outcome =
@@ -97,66 +118,91 @@ pub fn coefficients(model: &Model, regions: &[Region]) -> Coefficients {
 
 /// The rounds themselves, from any conforming mesh and start field.
 pub fn rounds(
-    mut mesh: Mesh,
+    mesh: Mesh,
     coefficients: Coefficients,
-    mut solution: Solution,
+    solution: Solution,
     rules: &Rules,
     accuracy: &Accuracy,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<Outcome, AdaptError> {
-    let mut hierarchy = Hierarchy::default();
-    let mut moments: Vec<Moments> = Vec::new();
-    let mut changed: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    let mut rounds: Vec<Round> = Vec::new();
+    let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
+    let mut outcome = Outcome {
+        mesh,
+        space: Space::default(),
+        coefficients,
+        solution,
+        elements: Vec::new(),
+        bound: Bound::default(),
+        rounds: Vec::new(),
+        hierarchy: Hierarchy::default(),
+        work_rate_ends: None,
+        reached: false,
+    };
     // Before the first bound nothing is known; 1 means an interval as wide as the value.
-    let mut width: f64 = 1.0;
-    loop {
-        let space = Space::new(&mesh);
-        update_constant(&mesh, &coefficients, rules, &changed, &mut moments);
-        let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
-        let system = System { mesh: &mesh, space: &space, coefficients: &coefficients, rules };
-        let effort = solve::solve(&system, &mut moments, &mut hierarchy, &mut solution, decrease)?;
+    round(&mut outcome, &all, 1.0, rules, accuracy, progress)?;
+    refine(&mut outcome, rules, accuracy, progress)?;
+    Ok(outcome)
+}
 
-        let fans = Fans::new(&mesh);
-        let field = Field {
-            mesh: &mesh,
-            coefficients: &coefficients,
-            rules,
-            moments: &moments,
-            solution: &solution,
-        };
-        let bound = bound::bound(&field, &fans);
-        width = bound.relative_width();
-        let round = Round {
-            n_unknowns: space.n_dofs,
-            n_triangles: mesh.triangles.len(),
-            effort,
-            low: bound.low,
-            high: bound.high,
-        };
-        progress(&round);
-        rounds.push(round);
-
-        let reached = width <= accuracy.interval;
-        let n_marked_max = mark::affordable(space.n_dofs, accuracy.n_unknowns_max);
-        if reached || n_marked_max == 0 || rounds.len() == N_ROUNDS_MAX {
-            let work_rate_ends = None;
-            return Ok(Outcome {
-                mesh,
-                space,
-                coefficients,
-                solution,
-                moments,
-                bound,
-                rounds,
-                hierarchy,
-                work_rate_ends,
-                reached,
-            });
+/// Goes on with the rounds from the outcome as it stands until its interval is as narrow as wanted.
+///
+/// Sets `reached`; stops without an error where `n_unknowns_max` leaves no room. An outcome that is narrow enough is
+/// left as it is.
+pub fn refine(
+    outcome: &mut Outcome,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(Event),
+) -> Result<(), AdaptError> {
+    for _ in 1..N_ROUNDS_MAX {
+        let width = outcome.bound.relative_width();
+        outcome.reached = width <= accuracy.interval;
+        let n_marked_max = mark::affordable(outcome.space.n_dofs, accuracy.n_unknowns_max);
+        if outcome.reached || n_marked_max == 0 {
+            return Ok(());
         }
-        let mut marked = mark::doerfler(&bound.shares, MARKED_SHARE);
+        let mut marked = mark::doerfler(&outcome.bound.shares, MARKED_SHARE);
         marked.truncate(n_marked_max);
+        let solution = &mut outcome.solution;
         let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
-        changed = bisect(&mut mesh, &marked, &mut carried);
+        let changed = bisect(&mut outcome.mesh, &marked, &mut carried);
+        progress(Event::Finished(Stage::Refine));
+        round(outcome, &changed, width, rules, accuracy, progress)?;
     }
+    outcome.reached = outcome.bound.relative_width() <= accuracy.interval;
+    Ok(())
+}
+
+/// One solve and bound on the outcome's mesh, of which the triangles `changed` are new.
+///
+/// - `width`: relative width before, which sets the algebraic accuracy
+fn round(
+    outcome: &mut Outcome,
+    changed: &[u32],
+    width: f64,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(Event),
+) -> Result<(), AdaptError> {
+    let Outcome { mesh, space, coefficients, solution, elements, bound, hierarchy, .. } = outcome;
+    *space = Space::new(mesh);
+    update_constant(mesh, coefficients, rules, changed, elements);
+    let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
+    progress(Event::Finished(Stage::Elements));
+    let fans = Fans::new(mesh);
+    let system = System { mesh, space, fans: &fans, coefficients, rules };
+    let effort = solve::solve(&system, elements, hierarchy, solution, decrease)?;
+    progress(Event::Finished(Stage::Solve));
+    *bound = bound::bound(&Field { mesh, coefficients, rules, elements, solution }, &fans);
+    let round = Round {
+        n_unknowns: space.n_dofs,
+        n_triangles: mesh.triangles.len(),
+        effort,
+        low: bound.low,
+        high: bound.high,
+    };
+    progress(Event::Finished(Stage::Bound));
+    progress(Event::Round(&round));
+    outcome.rounds.push(round);
+    Ok(())
 }

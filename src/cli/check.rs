@@ -14,7 +14,10 @@ pub fn check(options: &Options) -> Result<End, Stop> {
     let understood = understood(&sheet.model);
     if !options.json || options.out.is_some() {
         let out = files::directory(&options.sheet, options.out.as_deref());
-        files::write_all(&out, &[("section.svg", section_svg(&sheet.model, &outline).into_bytes())])?;
+        files::write_all(
+            &out,
+            &[("section.svg", section_svg(&sheet.model, &outline).into_bytes())],
+        )?;
         if !options.json && !options.quiet {
             screen::print(&check_screen(&sheet.model, &understood))?;
             screen::print(&format!("\nDrawn: {}\n", files::shown(&out.join("section.svg"))))?;
@@ -28,9 +31,12 @@ pub fn check(options: &Options) -> Result<End, Stop> {
 
 /// The hand sum's figures; why there are none becomes a note.
 fn understood(model: &Model) -> Understood {
-    let effective = model.core.as_ref().and_then(|core| hand::effective(&core.dimensions(&model.gaps)));
+    let effective =
+        model.core.as_ref().and_then(|core| hand::effective(&core.dimensions(&model.gaps)));
     match hand::hand_sum(model) {
-        Err(reason) => Understood { effective, notes: vec![reason.to_string()], ..Understood::default() },
+        Err(reason) => {
+            Understood { effective, notes: vec![reason.to_string()], ..Understood::default() }
+        }
         Ok(sum) => {
             let iron = sum.rows.iter().filter(|row| matches!(row.kind, RegionKind::Leg(_)));
             let closed: f64 = iron.map(|row| row.plain).sum();
@@ -40,7 +46,11 @@ fn understood(model: &Model) -> Understood {
                 ungapped_inductance_factor: Some(1.0 / closed),
                 gaps: gaps.map(|row| (row.region.clone(), row.plain)).collect(),
                 hand_inductance_factor: Some(1.0 / sum.total),
-                notes: sum.left_out.iter().map(|part| format!("the hand sum does not know the part {part}")).collect(),
+                notes: sum
+                    .left_out
+                    .iter()
+                    .map(|part| format!("the hand sum does not know the part {part}"))
+                    .collect(),
             }
         }
     }

@@ -1,4 +1,6 @@
 //! Files that appear whole or not at all: everything is written beside its place first, then renamed.
+//!
+//! The disk is not flushed: a power cut may lose a file, a failing program cannot halve one.
 
 use super::{End, Stop};
 use std::ffi::OsString;
@@ -17,7 +19,7 @@ pub fn directory(sheet: &Path, asked: Option<&Path>) -> PathBuf {
 
 /// Writes all files into `directory`, making it if needed.
 ///
-/// All bytes reach the disk under temporary names before the first file gets its own name. On any error no temporary
+/// All bytes are written under temporary names before the first file gets its own name. On any error no temporary
 /// file stays, nor a directory that this call made and left empty.
 pub fn write_all(directory: &Path, files: &[Finished]) -> Result<(), Stop> {
     let made = missing_ancestor(directory);
@@ -30,7 +32,11 @@ pub fn write_all(directory: &Path, files: &[Finished]) -> Result<(), Stop> {
         }
         Stop::new(
             End::NotWritten,
-            format!("{} could not be written: {}; choose another place with --out", path.display(), plain(&error)),
+            format!(
+                "{} could not be written: {}; choose another place with --out",
+                path.display(),
+                plain(&error)
+            ),
         )
     })
 }
@@ -61,13 +67,16 @@ fn temporary(directory: &Path, bytes: &[u8]) -> io::Result<NamedTempFile> {
         use std::os::unix::fs::PermissionsExt;
         file.as_file().set_permissions(fs::Permissions::from_mode(0o644))?;
     }
-    file.as_file().sync_all()?;
     Ok(file)
 }
 
 /// The topmost directory that `create_dir_all` will have to make.
 fn missing_ancestor(directory: &Path) -> Option<PathBuf> {
-    directory.ancestors().take_while(|a| !a.as_os_str().is_empty() && !a.exists()).last().map(Path::to_path_buf)
+    directory
+        .ancestors()
+        .take_while(|a| !a.as_os_str().is_empty() && !a.exists())
+        .last()
+        .map(Path::to_path_buf)
 }
 
 /// Removes `directory` and what was made above it, as long as they are empty.
@@ -96,8 +105,10 @@ mod tests {
     use super::*;
 
     fn names(directory: &Path) -> Vec<String> {
-        let mut names: Vec<String> =
-            fs::read_dir(directory).unwrap().map(|e| e.unwrap().file_name().to_string_lossy().into_owned()).collect();
+        let mut names: Vec<String> = fs::read_dir(directory)
+            .unwrap()
+            .map(|e| e.unwrap().file_name().to_string_lossy().into_owned())
+            .collect();
         names.sort();
         names
     }
@@ -113,7 +124,10 @@ mod tests {
         #[cfg(unix)]
         {
             use std::os::unix::fs::PermissionsExt;
-            assert_eq!(fs::metadata(out.join("x.txt")).unwrap().permissions().mode() & 0o777, 0o644);
+            assert_eq!(
+                fs::metadata(out.join("x.txt")).unwrap().permissions().mode() & 0o777,
+                0o644
+            );
         }
     }
 
@@ -122,9 +136,14 @@ mod tests {
         let base = tempfile::tempdir().unwrap();
         let out = base.path().join("b.out");
         fs::create_dir_all(out.join("y.txt")).unwrap();
-        let stop = write_all(&out, &[("x.txt", b"x".to_vec()), ("y.txt", b"y".to_vec())]).unwrap_err();
+        let stop =
+            write_all(&out, &[("x.txt", b"x".to_vec()), ("y.txt", b"y".to_vec())]).unwrap_err();
         assert_eq!(stop.end, End::NotWritten);
-        assert!(stop.text.contains("y.txt could not be written: a directory has that name"), "{}", stop.text);
+        assert!(
+            stop.text.contains("y.txt could not be written: a directory has that name"),
+            "{}",
+            stop.text
+        );
         assert_eq!(names(&out), ["y.txt"]);
     }
 

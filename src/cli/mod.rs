@@ -47,7 +47,8 @@ const FAULT_INSIDE: i32 = 70;
 /// Parses the arguments, runs the command and tells the user what stopped it.
 pub fn run() -> ExitCode {
     std::panic::set_hook(Box::new(|info| {
-        let place = info.location().map_or(String::new(), |l| format!(" ({}:{})", l.file(), l.line()));
+        let place =
+            info.location().map_or(String::new(), |l| format!(" ({}:{})", l.file(), l.line()));
         screen::complain(&format!(
             "gapwright: a fault inside the program stopped it{place}; no result was written. \
              Please report it together with the sheet.\n"
@@ -77,8 +78,7 @@ fn dispatch(command: &Command) -> Result<End, Stop> {
 /// Bounds the thread pool before anything uses it.
 fn set_threads(options: &Options) -> Result<(), Stop> {
     let Some(n_threads) = options.threads else { return Ok(()) };
-    rayon::ThreadPoolBuilder::new()
-        .num_threads(usize::from(n_threads))
-        .build_global()
-        .map_err(|e| Stop::new(End::InputWrong, format!("--threads {n_threads}: {e}; ask for fewer")))
+    rayon::ThreadPoolBuilder::new().num_threads(usize::from(n_threads)).build_global().map_err(
+        |e| Stop::new(End::InputWrong, format!("--threads {n_threads}: {e}; ask for fewer")),
+    )
 }

@@ -69,7 +69,8 @@ const INTERVALS: [f64; 2] = [1e-7, 0.5];
 
 /// "0.01%" or "1e-4" → 1e-4.
 fn interval(text: &str) -> Result<f64, String> {
-    let value = units::read(text, Dimension::Ratio, (0, 1.0)).map_err(|e| format!("{e}; write 0.1% or 0.001"))?;
+    let value = units::read(text, Dimension::Ratio, (0, 1.0))
+        .map_err(|e| format!("{e}; write 0.1% or 0.001"))?;
     let [low, high] = INTERVALS;
     if (low..=high).contains(&value) {
         Ok(value)
@@ -81,7 +82,9 @@ fn interval(text: &str) -> Result<f64, String> {
 /// "core=table.csv" → its two halves.
 fn material(text: &str) -> Result<(String, PathBuf), String> {
     match text.split_once('=') {
-        Some((name, file)) if !name.is_empty() && !file.is_empty() => Ok((name.to_string(), PathBuf::from(file))),
+        Some((name, file)) if !name.is_empty() && !file.is_empty() => {
+            Ok((name.to_string(), PathBuf::from(file)))
+        }
         _ => Err("write NAME=FILE.csv, the material's name in the sheet and the table".to_string()),
     }
 }

@@ -9,9 +9,10 @@ use std::io::{self, ErrorKind, IsTerminal, Write};
 pub fn print(text: &str) -> Result<(), Stop> {
     let mut stdout = io::stdout().lock();
     match stdout.write_all(text.as_bytes()).and_then(|()| stdout.flush()) {
-        Err(error) if error.kind() != ErrorKind::BrokenPipe => {
-            Err(Stop::new(End::NotWritten, format!("the screen could not be written: {}", super::files::plain(&error))))
-        }
+        Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(Stop::new(
+            End::NotWritten,
+            format!("the screen could not be written: {}", super::files::plain(&error)),
+        )),
         _ => Ok(()),
     }
 }
@@ -45,7 +46,8 @@ impl Progress {
     /// Starts the line, or a hidden one when `is_quiet`.
     pub fn new(is_quiet: bool) -> Progress {
         let is_shown = !is_quiet && io::stderr().is_terminal();
-        let target = if is_shown { ProgressDrawTarget::stderr() } else { ProgressDrawTarget::hidden() };
+        let target =
+            if is_shown { ProgressDrawTarget::stderr() } else { ProgressDrawTarget::hidden() };
         let bar = ProgressBar::with_draw_target(None, target);
         if let Ok(style) = ProgressStyle::with_template("  {msg}") {
             bar.set_style(style);

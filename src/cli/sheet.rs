@@ -13,7 +13,9 @@ pub fn read(options: &Options) -> Result<(Sheet, Outline), Stop> {
     let path = &options.sheet;
     let name = files::shown(path);
     let text = read_text(path).map_err(|fault| match fault {
-        ReadFault::System(reason) => Stop::new(End::InputWrong, format!("{name} could not be read: {reason}")),
+        ReadFault::System(reason) => {
+            Stop::new(End::InputWrong, format!("{name} could not be read: {reason}"))
+        }
         ReadFault::Content(found) => wrong(&[*found], ""),
     })?;
     let home = path.parent().unwrap_or(Path::new(""));
@@ -22,14 +24,19 @@ pub fn read(options: &Options) -> Result<(Sheet, Outline), Stop> {
     for (material, file) in &options.material {
         let shown = files::shown(file);
         let table = read_text(file).map_err(|fault| {
-            Stop::new(End::InputWrong, format!("--material: {shown} could not be read: {}", fault.sentence()))
+            Stop::new(
+                End::InputWrong,
+                format!("--material: {shown} could not be read: {}", fault.sentence()),
+            )
         })?;
-        input::replace_material(&mut sheet, material, &table, &shown).map_err(|found| wrong(&[found], &text))?;
+        input::replace_material(&mut sheet, material, &table, &shown)
+            .map_err(|found| wrong(&[found], &text))?;
     }
     if let Some(interval) = options.interval {
         sheet.model.accuracy.interval = interval;
     }
-    let outline = geometry::outline(&sheet.model).map_err(|fault| wrong(&[sheet.diagnose(&fault)], &text))?;
+    let outline =
+        geometry::outline(&sheet.model).map_err(|fault| wrong(&[sheet.diagnose(&fault)], &text))?;
     Ok((sheet, outline))
 }
 
@@ -61,7 +68,8 @@ fn read_text(path: &Path) -> Result<String, ReadFault> {
     let mut bytes = vec![];
     // A device or a pipe has no length: it is cut off one byte above the bound and then refused like a long file.
     file.take(FILE_BYTES_MAX + 1).read_to_end(&mut bytes).map_err(system)?;
-    input::check_size(bytes.len() as u64, &name).map_err(|found| ReadFault::Content(Box::new(found)))?;
+    input::check_size(bytes.len() as u64, &name)
+        .map_err(|found| ReadFault::Content(Box::new(found)))?;
     input::decode(&bytes, &name).map_err(|found| ReadFault::Content(Box::new(found)))
 }
 

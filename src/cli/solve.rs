@@ -3,7 +3,7 @@
 use super::files::Finished;
 use super::options::Options;
 use super::{End, Stop, files, screen, sheet};
-use gapwright::adapt::{self, AdaptError, Outcome};
+use gapwright::adapt::{self, AdaptError, Event, Outcome, Stage};
 use gapwright::geometry::Outline;
 use gapwright::mesh::MeshError;
 use gapwright::model::Model;
@@ -14,9 +14,8 @@ use gapwright::report::json::result_json;
 use gapwright::report::section::section_svg;
 use gapwright::report::terminal::{Look, solve_screen};
 use gapwright::report::vtk::{FieldCells, field_vtu};
-use gapwright::results::Results;
-use gapwright::results::collect;
 use gapwright::results::sample::Sampler;
+use gapwright::results::{self, Results};
 use std::time::Instant;
 
 /// Runs `solve`.
@@ -26,7 +25,7 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     let (sheet, outline) = sheet::read(options)?;
     clock.lap("sheet and section");
     let outcome = run(&sheet.model, &outline, options, &mut clock)?;
-    let results = collect(&sheet.model, &outline, &outcome);
+    let results = results::collect(&sheet.model, &outline, &outcome);
     clock.lap("results");
     let seconds = start.elapsed().as_secs_f64();
 
@@ -44,7 +43,8 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     if options.json {
         screen::print(&result_json(&results, times.as_ref()))?;
     } else if !options.quiet {
-        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+        let look =
+            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
         screen::print(&solve_screen(&results, &look))?;
         screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
     }
@@ -52,14 +52,16 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
 }
 
 /// The rounds, with progress; a failure without any field is a stop.
-fn run(model: &Model, outline: &Outline, options: &Options, clock: &mut Clock) -> Result<Outcome, Stop> {
+fn run(
+    model: &Model,
+    outline: &Outline,
+    options: &Options,
+    clock: &mut Clock,
+) -> Result<Outcome, Stop> {
     let mut progress = screen::Progress::new(options.quiet || options.json);
-    let mut n_rounds = 0;
-    let outcome = adapt::run(model, outline, &mut |round| {
-        n_rounds += 1;
-        let stage = if n_rounds == 1 { "mesh and round 1".to_string() } else { format!("round {n_rounds}") };
-        clock.lap(&stage);
-        progress.round(round.n_unknowns, round.low, round.high);
+    let outcome = adapt::run(model, outline, &mut |event| match event {
+        Event::Finished(stage) => clock.lap(stage_name(stage)),
+        Event::Round(round) => progress.round(round.n_unknowns, round.low, round.high),
     });
     outcome.map_err(|error| {
         let end = match error {
@@ -90,7 +92,11 @@ fn drawings(
     };
     let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells)
         .map_err(|e| Stop::new(End::NotWritten, format!("field.vtu: {e}")))?;
-    let quantity = if results.is_linear && results.inductance.is_some() { "inductance [H]" } else { "coenergy [J]" };
+    let quantity = if results.is_linear && results.inductance.is_some() {
+        "inductance [H]"
+    } else {
+        "coenergy [J]"
+    };
     let mut finished = vec![
         ("section.svg", section_svg(model, outline).into_bytes()),
         ("field.svg", field_svg(&map).into_bytes()),
@@ -115,10 +121,21 @@ fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) 
     (cells, values.b_corner)
 }
 
+/// A stage of the rounds as the table of times names it.
+fn stage_name(stage: Stage) -> &'static str {
+    match stage {
+        Stage::FirstMesh => "first mesh",
+        Stage::Elements => "element matrices",
+        Stage::Solve => "assembly and solve",
+        Stage::Bound => "bound",
+        Stage::Refine => "marking and bisection",
+    }
+}
+
 /// How the run ends: a missed interval weighs more than a missed promise, whose verdict it makes doubtful.
 fn end_of(results: &Results) -> End {
-    let is_met =
-        results.verdict.as_ref().is_none_or(|v| v.within_tolerance) && results.requirements.iter().all(|r| r.met);
+    let is_met = results.verdict.as_ref().is_none_or(|v| v.within_tolerance)
+        && results.requirements.iter().all(|r| r.met);
     match (results.reached, is_met) {
         (false, _) => End::NotReached,
         (true, false) => End::NotMet,
@@ -137,10 +154,14 @@ impl Clock {
         Clock { last: Instant::now(), times: StageTimes::default() }
     }
 
-    /// Books the time since the last lap under `stage`.
+    /// Adds the time since the last lap to `stage`.
     fn lap(&mut self, stage: &str) {
         let now = Instant::now();
-        self.times.stages.push((stage.to_string(), (now - self.last).as_secs_f64()));
+        let seconds = (now - self.last).as_secs_f64();
+        match self.times.stages.iter_mut().find(|(name, _)| name == stage) {
+            Some((_, sum)) => *sum += seconds,
+            None => self.times.stages.push((stage.to_string(), seconds)),
+        }
         self.last = now;
     }
 }

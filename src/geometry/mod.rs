@@ -3,6 +3,8 @@
 mod cap;
 mod drawing;
 mod fault;
+#[cfg(test)]
+mod fault_tests;
 mod fillet;
 mod form;
 mod legs;
@@ -14,9 +16,10 @@ mod solids;
 #[cfg(test)]
 mod tests;
 
+pub use crate::model::Point;
 pub use polygon::{area, contains};
 
-use crate::model::{Fault, MaterialId, Model, Point, Subject};
+use crate::model::{Fault, MaterialId, Model, Subject};
 use crate::units::{AmperePerSquareMeter, Meter};
 
 /// Index into [`Outline::regions`].
@@ -137,8 +140,29 @@ pub fn outline(model: &Model) -> Result<Outline, Fault> {
             "add a [core] or [[parts]], and [[windings]]",
         ));
     }
+    check_size(&drawing)?;
     let plane = plane::join(&drawing)?;
     Ok(finish(drawing, plane))
+}
+
+/// Largest distance from the origin that is still taken for a core or coil [m]: beyond, a unit is wrong.
+const SIZE_MAX: f64 = 1e4;
+
+/// Smallest such distance [m].
+const SIZE_MIN: f64 = 1e-6;
+
+/// Whether the section is of a size that a core or coil can have.
+fn check_size(drawing: &drawing::Drawing) -> Result<(), Fault> {
+    for shape in &drawing.shapes {
+        let farthest = shape.corners.iter().fold(0.0_f64, |m, p| m.max(p.r.abs()).max(p.z.abs()));
+        if !(SIZE_MIN..=SIZE_MAX).contains(&farthest) {
+            let message =
+                format!("{} reaches {} mm from the origin", shape.label, fault::mm(farthest));
+            let help = "write lengths between 0.001 mm and 10 km; check length_unit";
+            return Err(fault::fault(shape.subject, None, message, help));
+        }
+    }
+    Ok(())
 }
 
 /// Gives the regions their joined polygons and adds the cap and the axis.

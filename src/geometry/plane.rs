@@ -10,6 +10,7 @@ use super::polygon::{
     bounding_box, boxes_meet, contains, crossing, distance, midpoint, nearest_on_segment,
 };
 use crate::model::{Fault, Point, Subject};
+use std::collections::BTreeMap;
 
 /// Snap tolerance in units of the section's size: far above rounding (1/3 mm written twice), far below any real gap.
 const SNAP: f64 = 1e-9;
@@ -27,8 +28,6 @@ pub(super) struct Plane {
     pub window: Vec<u32>,
     /// Pieces of the window's border that run outside every shape.
     pub window_segments: Vec<[u32; 2]>,
-    /// Snap tolerance [m].
-    pub tolerance: f64,
 }
 
 /// Snaps and joins a drawing.
@@ -39,7 +38,7 @@ pub(super) fn join(drawing: &Drawing) -> Result<Plane, Fault> {
     let all = drawing.shapes.iter().flat_map(|s| &s.corners);
     let window_corners = drawing.window.as_ref().map_or(&[][..], |(_, corners)| corners);
     let size = bounding_box(all.chain(window_corners)).iter().fold(0.0_f64, |m, x| m.max(x.abs()));
-    let mut points = Points { points: Vec::new(), tolerance: SNAP * size };
+    let mut points = Points { points: Vec::new(), cells: BTreeMap::new(), tolerance: SNAP * size };
     let mut borders: Vec<Vec<u32>> = Vec::new();
     for shape in &drawing.shapes {
         borders.push(points.chain(&shape.corners));
@@ -52,16 +51,17 @@ pub(super) fn join(drawing: &Drawing) -> Result<Plane, Fault> {
             at.map(|p| points.snap(p));
         }
     }
+    let by_height = points.by_height();
     for _ in 0..N_JOIN_PASSES_MAX {
         let mut changed = false;
         for chain in borders.iter_mut().chain([&mut window]) {
-            changed |= points.split_chain(chain);
+            changed |= points.split_chain(chain, &by_height);
         }
         if !changed {
             break;
         }
     }
-    let Points { points, tolerance } = points;
+    let points = points.points;
     check_simple(drawing, &points, &borders)?;
     check_overlaps(&drawing.shapes, &points, &borders)?;
     let window_segments = segments_of(&window)
@@ -71,7 +71,7 @@ pub(super) fn join(drawing: &Drawing) -> Result<Plane, Fault> {
             on_border || !borders.iter().any(|border| contains(&corners(&points, border), middle))
         })
         .collect();
-    Ok(Plane { points, borders, window, window_segments, tolerance })
+    Ok(Plane { points, borders, window, window_segments })
 }
 
 /// Closed chain → its segments.
@@ -85,9 +85,11 @@ pub(super) fn corners(points: &[Point], chain: &[u32]) -> Vec<Point> {
     chain.iter().map(|&id| points[id as usize]).collect()
 }
 
-/// Distinct points with their snap tolerance.
+/// Distinct points with their snap tolerance [m].
 struct Points {
     points: Vec<Point>,
+    /// Points by square cells of four tolerances: a point's neighbours lie in its cell or one next to it.
+    cells: BTreeMap<(i64, i64), Vec<u32>>,
     tolerance: f64,
 }
 
@@ -98,13 +100,32 @@ impl Points {
 
     /// The point within the tolerance that was there first, else a new one; onto the axis if within it.
     fn snap(&mut self, p: Point) -> u32 {
-        let p = Point { r: if p.r.abs() <= self.tolerance { 0.0 } else { p.r }, z: p.z + 0.0 };
-        let near = |q: &Point| (q.r == 0.0) == (p.r == 0.0) && distance(*q, p) <= self.tolerance;
-        let known = self.points.iter().position(near);
+        // Heights of rounding size would only be noise to the mesher.
+        let zero_below = |x: f64, limit: f64| if x.abs() <= limit { 0.0 } else { x };
+        let p =
+            Point { r: zero_below(p.r, self.tolerance), z: zero_below(p.z, 1e-6 * self.tolerance) };
+        let cell = |x: f64| (x / (4.0 * self.tolerance)).floor() as i64;
+        let (i, j) = (cell(p.r), cell(p.z));
+        let near = |&&id: &&u32| {
+            let q = self.at(id);
+            (q.r == 0.0) == (p.r == 0.0) && distance(q, p) <= self.tolerance
+        };
+        let around = (i - 1..=i + 1).flat_map(|i| (j - 1..=j + 1).map(move |j| (i, j)));
+        let known =
+            around.filter_map(|key| self.cells.get(&key)).flatten().filter(near).min().copied();
         known.unwrap_or_else(|| {
+            let id = self.points.len() as u32;
             self.points.push(p);
-            self.points.len() - 1
-        }) as u32
+            self.cells.entry((i, j)).or_default().push(id);
+            id
+        })
+    }
+
+    /// All points by height.
+    fn by_height(&self) -> Vec<u32> {
+        let mut ids: Vec<u32> = (0..self.points.len() as u32).collect();
+        ids.sort_by(|&a, &b| self.at(a).z.total_cmp(&self.at(b).z));
+        ids
     }
 
     /// Snapped closed chain without repeated neighbours.
@@ -118,27 +139,28 @@ impl Points {
     }
 
     /// Splits every segment of a closed chain at the points that lie on it; tells whether any did.
-    fn split_chain(&self, chain: &mut Vec<u32>) -> bool {
+    fn split_chain(&self, chain: &mut Vec<u32>, by_height: &[u32]) -> bool {
         let mut split: Vec<u32> = Vec::with_capacity(chain.len());
         for [a, b] in segments_of(chain) {
             split.push(a);
             let (from, to) = (self.at(a), self.at(b));
-            let mut near_box = bounding_box([&from, &to]);
-            for (i, side) in [-1.0, 1.0, -1.0, 1.0].iter().enumerate() {
-                near_box[i] += side * self.tolerance;
-            }
+            let (low, high) =
+                (from.z.min(to.z) - self.tolerance, from.z.max(to.z) + self.tolerance);
+            let (left, right) =
+                (from.r.min(to.r) - self.tolerance, from.r.max(to.r) + self.tolerance);
+            let start = by_height.partition_point(|&id| self.at(id).z < low);
             let mut on: Vec<(f64, u32)> = Vec::new();
-            for (id, p) in self.points.iter().enumerate() {
-                let id = id as u32;
-                if id == a || id == b || !boxes_meet(&near_box, &[p.r, p.r, p.z, p.z]) {
+            for &id in by_height[start..].iter().take_while(|&&id| self.at(id).z <= high) {
+                let p = self.at(id);
+                if id == a || id == b || p.r < left || p.r > right {
                     continue;
                 }
-                let (t, away) = nearest_on_segment(from, to, *p);
+                let (t, away) = nearest_on_segment(from, to, p);
                 if away <= self.tolerance {
                     on.push((t, id));
                 }
             }
-            on.sort_by(|x, y| x.0.total_cmp(&y.0));
+            on.sort_by(|x, y| x.0.total_cmp(&y.0).then(x.1.cmp(&y.1)));
             split.extend(on.iter().map(|&(_, id)| id));
         }
         let changed = split.len() != chain.len();
@@ -179,7 +201,7 @@ fn check_simple(drawing: &Drawing, points: &[Point], borders: &[Vec<u32>]) -> Re
 /// Whether any two shapes share an area.
 fn check_overlaps(shapes: &[Shape], points: &[Point], borders: &[Vec<u32>]) -> Result<(), Fault> {
     let outlines: Vec<Vec<Point>> = borders.iter().map(|border| corners(points, border)).collect();
-    let boxes: Vec<[f64; 4]> = outlines.iter().map(|outline| bounding_box(outline)).collect();
+    let boxes: Vec<[f64; 4]> = outlines.iter().map(bounding_box).collect();
     for second in 0..shapes.len() {
         for first in 0..second {
             if !boxes_meet(&boxes[first], &boxes[second]) {

@@ -1,9 +1,10 @@
 //! Models of the reference sections R1, R5, R7, R8 for tests (lengths in millimetres here, in metres in the model).
 
 use crate::model::{
-    Accuracy, Across, Core, Corner, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Part,
-    Point, PotWall, Section, Winding,
+    Accuracy, Core, Corner, Gap, HotSpotWish, Law, Material, MaterialId, Part, Point, Section,
+    Winding,
 };
+pub use crate::model::{Across, Form, Model, PotWall};
 
 const MM: f64 = 1e-3;
 
@@ -154,12 +155,20 @@ pub fn doubled(model: &Model) -> Model {
         core.corner_radius *= 2.0;
         core.joint *= 2.0;
         match &mut core.form {
-            Form::Pot { wall, wall_inner_diameter, post_diameter, hole_diameter, height, window_height } => {
+            Form::Pot {
+                wall,
+                wall_inner_diameter,
+                post_diameter,
+                hole_diameter,
+                height,
+                window_height,
+            } => {
                 match wall {
                     PotWall::OuterDiameter(diameter) => *diameter *= 2.0,
                     PotWall::OuterLegsArea(area) => *area *= 4.0,
                 }
-                for x in [wall_inner_diameter, post_diameter, hole_diameter, height, window_height] {
+                for x in [wall_inner_diameter, post_diameter, hole_diameter, height, window_height]
+                {
                     *x *= 2.0;
                 }
             }

@@ -79,12 +79,18 @@ fn rows(text: &str) -> Result<Vec<Row>, RowFault> {
     Ok(rows)
 }
 
-/// The bytes of the line with something on it that begins at or after `start`.
+/// The bytes of the first line at or after `start` that is neither blank nor a comment.
 fn record_span(text: &str, start: usize) -> Range<usize> {
-    let rest = text.get(start..).unwrap_or_default();
-    let start = start + (rest.len() - rest.trim_start().len());
-    let line = text.get(start..).unwrap_or_default().lines().next().unwrap_or_default();
-    start..start + line.trim_end().len()
+    let mut at = start;
+    for line in text.get(start..).unwrap_or_default().split_inclusive('\n') {
+        let content = line.trim();
+        if !content.is_empty() && !content.starts_with('#') {
+            let indent = line.len() - line.trim_start().len();
+            return at + indent..at + indent + content.len();
+        }
+        at += line.len();
+    }
+    start..start
 }
 
 fn check_header(record: &csv::StringRecord, span: Range<usize>) -> Result<(), RowFault> {

@@ -128,7 +128,8 @@ impl<'a> Reader<'a> {
             self.choice(fields, "interpolation", &words).unwrap_or(Interpolation::Smooth);
         let value = fields.get("bh")?;
         match value.get_ref() {
-            DeValue::String(path) => {
+            DeValue::String(_) => {
+                let path = &self.text(fields, "bh")?;
                 let text = match (self.read_file)(path) {
                     Ok(text) => text,
                     Err(reason) => {

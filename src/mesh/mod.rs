@@ -13,7 +13,7 @@ mod triangulate;
 pub use crate::geometry::{Cap, RegionId};
 pub use triangulate::first_mesh;
 
-use crate::model::Point;
+use crate::geometry::Point;
 
 /// Which chart a triangle lives in.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]

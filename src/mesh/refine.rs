@@ -4,10 +4,11 @@
 //! power-of-two radius round acute corners (so that two borders of an acute corner do not split each other for ever).
 //! Facets of the cap are never split: a rounded midpoint would not lie on the hull.
 
+mod place;
+
 use super::MeshError;
 use super::size::{self, Measures};
-use crate::geometry::Outline;
-use crate::model::Point;
+use crate::geometry::{Outline, Point};
 use spade::handles::{FixedFaceHandle, FixedVertexHandle, InnerTag};
 use spade::{
     ConstrainedDelaunayTriangulation, HasPosition, LastUsedVertexHintGenerator, Point2,
@@ -45,26 +46,37 @@ pub(super) fn point(p: Point2<f64>) -> Point {
 /// When the kernel refuses the outline, or the section has details too fine for the vertex bound.
 pub(super) fn refined(outline: &Outline) -> Result<(Kernel, Vec<bool>, f64), MeshError> {
     let unit = size::unit(&outline.cap);
-    let points =
-        outline.points.iter().map(|p| Vertex { at: Point2::new(p.r / unit, p.z / unit) }).collect();
-    let segments = outline.segments.iter().map(|s| s.map(|id| id as usize)).collect();
-    let mut crossings = Vec::new();
-    let kernel = Kernel::try_bulk_load_cdt(points, segments, |segment| crossings.push(segment))
-        .map_err(|error| MeshError::Kernel { reason: error.to_string() })?;
-    if !crossings.is_empty() || kernel.num_vertices() != outline.points.len() {
-        let reason = format!(
-            "{} borders cross, {} of {} points kept",
-            crossings.len(),
-            kernel.num_vertices(),
-            outline.points.len()
-        );
-        return Err(MeshError::Kernel { reason });
-    }
+    let kernel = drawn(outline, unit)?;
     let mut refiner = Refiner::new(outline, kernel, unit);
     refiner.run()?;
     let n = outline.points.len();
-    let is_free = (0..refiner.on_segment.len()).map(|i| i >= n && refiner.on_segment[i].is_none()).collect();
+    let is_free =
+        (0..refiner.on_segment.len()).map(|i| i >= n && refiner.on_segment[i].is_none()).collect();
     Ok((refiner.kernel, is_free, unit))
+}
+
+/// The outline's points and borders, nothing more.
+///
+/// One by one: the kernel's bulk loading keeps the vertices that it puts off in a hash set, so that its triangles come in
+/// another order in every process.
+fn drawn(outline: &Outline, unit: f64) -> Result<Kernel, MeshError> {
+    let failed = |reason: String| MeshError::Kernel { reason };
+    let mut kernel = Kernel::new();
+    for (id, p) in outline.points.iter().enumerate() {
+        let vertex = Vertex { at: Point2::new(p.r / unit, p.z / unit) };
+        let handle = kernel.insert(vertex).map_err(|error| failed(error.to_string()))?;
+        if handle.index() != id {
+            return Err(failed(format!("points {} and {id} coincide", handle.index())));
+        }
+    }
+    for &[a, b] in &outline.segments {
+        let [from, to] = [a, b].map(|id| FixedVertexHandle::from_index(id as usize));
+        kernel.try_add_constraint(from, to);
+        if !kernel.exists_constraint(from, to) {
+            return Err(failed(format!("the border from point {a} to point {b} crosses another")));
+        }
+    }
+    Ok(kernel)
 }
 
 /// A triangle to be refined; the heap gives the worst first, the oldest of equals.
@@ -93,9 +105,6 @@ impl PartialEq for Bad {
 impl Eq for Bad {}
 
 type Border = [FixedVertexHandle; 2];
-
-/// Places that are tried where a facet forbids the wanted one.
-const N_STEPS_BESIDE_FACET: usize = 10;
 
 struct Refiner<'a> {
     outline: &'a Outline,
@@ -238,7 +247,10 @@ impl<'a> Refiner<'a> {
             let edge = self.kernel.get_edge_from_neighbors(a, b).map(|e| e.fix().as_undirected());
             edge.map(|e| self.kernel.remove_constraint_edge(e));
         }
-        let middle = self.insert(at, a, segment)?;
+        let Some(middle) = self.insert(at, a, segment)? else {
+            let reason = format!("two vertices coincide at {}", self.place(at));
+            return Err(MeshError::Kernel { reason });
+        };
         for end in [a, b] {
             if !self.kernel.exists_constraint(end, middle)
                 && self.kernel.try_add_constraint(end, middle).is_empty()
@@ -287,12 +299,13 @@ impl<'a> Refiner<'a> {
         format!("r = {:.6} mm, z = {:.6} mm", at.r * self.unit * 1e3, at.z * self.unit * 1e3)
     }
 
+    /// A new vertex, or `None` where there is one already.
     fn insert(
         &mut self,
         at: Point,
         hint: FixedVertexHandle,
         segment: Option<u32>,
-    ) -> Result<FixedVertexHandle, MeshError> {
+    ) -> Result<Option<FixedVertexHandle>, MeshError> {
         let vertex = Vertex { at: Point2::new(at.r, at.z) };
         let n_before = self.kernel.num_vertices();
         let handle = self
@@ -300,39 +313,30 @@ impl<'a> Refiner<'a> {
             .insert_with_hint(vertex, hint)
             .map_err(|error| MeshError::Kernel { reason: error.to_string() })?;
         if self.kernel.num_vertices() == n_before {
-            return Err(MeshError::Kernel {
-                reason: format!("two vertices coincide at {}", self.place(at)),
-            });
+            return Ok(None);
         }
         self.on_segment.push(segment);
-        Ok(handle)
+        Ok(Some(handle))
     }
 
     /// Queues the borders and bad triangles round a new vertex.
     fn queue_star(&mut self, center: FixedVertexHandle) {
-        let star: Vec<(Border, bool, Option<(Border, bool)>, Option<Face>)> = self
-            .kernel
-            .vertex(center)
-            .out_edges()
-            .map(|spoke| {
-                let face = spoke.face().as_inner().map(|f| f.fix());
-                let rim = face
-                    .map(|_| spoke.next())
-                    .map(|e| (e.vertices().map(|v| v.fix()), e.is_constraint_edge()));
-                (spoke.vertices().map(|v| v.fix()), spoke.is_constraint_edge(), rim, face)
-            })
-            .collect();
-        for (spoke, is_border, rim, face) in star {
-            if is_border {
-                self.borders.push(spoke);
-            }
-            if let Some((rim, true)) = rim {
-                self.borders.push(rim);
-            }
-            if let Some(face) = face {
-                self.queue_if_bad(face);
+        let mut faces = std::mem::take(&mut self.cavity);
+        faces.clear();
+        for spoke in self.kernel.vertex(center).out_edges() {
+            let face = spoke.face().as_inner().map(|f| f.fix());
+            faces.extend(face);
+            let rim = face.map(|_| spoke.next());
+            for edge in [Some(spoke), rim].into_iter().flatten() {
+                if edge.is_constraint_edge() {
+                    self.borders.push(edge.vertices().map(|v| v.fix()));
+                }
             }
         }
+        for &face in &faces {
+            self.queue_if_bad(face);
+        }
+        self.cavity = faces;
     }
 
     fn queue_if_bad(&mut self, face: Face) {
@@ -385,13 +389,16 @@ impl<'a> Refiner<'a> {
         }
         if self.encroached.is_empty() {
             self.check_bounds(corners[0], corners[1], wanted)?;
-            let vertex = self.insert(wanted, bad.corners[0], None)?;
-            self.queue_star(vertex);
+            if let Some(vertex) = self.insert(wanted, bad.corners[0], None)? {
+                self.queue_star(vertex);
+            }
             return Ok(());
         }
         let encroached = std::mem::take(&mut self.encroached);
         let mut has_split = false;
-        for &border in encroached.iter().filter(|&&border| !self.is_facet(border)).collect::<Vec<_>>() {
+        for &border in
+            encroached.iter().filter(|&&border| !self.is_facet(border)).collect::<Vec<_>>()
+        {
             self.split(border)?;
             has_split = true;
         }
@@ -404,112 +411,6 @@ impl<'a> Refiner<'a> {
         }
         Ok(())
     }
-
-    /// Looks for a place between a bad triangle's shortest edge and a wanted place that a facet forbids.
-    ///
-    /// The best place counts, and only if its smallest angle is better than the bad one's: so this ends.
-    fn improve_beside_facet(&mut self, bad: &Bad, corners: &[Point; 3], wanted: Point) -> Result<(), MeshError> {
-        let k = Measures::of(corners).shortest();
-        let (a, b) = (corners[k], corners[(k + 1) % 3]);
-        let middle = Point { r: 0.5 * (a.r + b.r), z: 0.5 * (a.z + b.z) };
-        let mut best = (1.05 * bad.key.min(size::ANGLE_MIN.sin()), None);
-        for step in 2..N_STEPS_BESIDE_FACET {
-            let t = step as f64 / N_STEPS_BESIDE_FACET as f64;
-            let p = Point { r: middle.r + t * (wanted.r - middle.r), z: middle.z + t * (wanted.z - middle.z) };
-            self.encroached.clear();
-            if let Ok(face) = self.walk(bad.face, corners, p) {
-                self.dig(face, p);
-                let sine = self.star_sine(p);
-                if self.encroached.is_empty() && sine > best.0 {
-                    best = (sine, Some(p));
-                }
-            }
-        }
-        if let (_, Some(p)) = best {
-            self.check_bounds(a, b, p)?;
-            let vertex = self.insert(p, bad.corners[0], None)?;
-            self.queue_star(vertex);
-        }
-        Ok(())
-    }
-
-    /// Sine of the smallest angle of the triangles that a new vertex would make of the cavity.
-    fn star_sine(&self, p: Point) -> f64 {
-        let mut smallest = f64::INFINITY;
-        for &face in &self.cavity {
-            for edge in self.kernel.face(face).adjacent_edges() {
-                let beyond = edge.rev().face().as_inner();
-                let is_rim = edge.is_constraint_edge() || beyond.is_none_or(|f| !self.cavity.contains(&f.fix()));
-                if is_rim {
-                    let [a, b] = edge.vertices().map(|v| point(v.position()));
-                    smallest = smallest.min(Measures::of(&[a, b, p]).sine_min());
-                }
-            }
-        }
-        smallest
-    }
-
-    /// Walks straight from a triangle's centroid to a point: the triangle that holds it, or the border in the way.
-    fn walk(&self, start: Face, corners: &[Point; 3], to: Point) -> Result<Face, Border> {
-        let from = Point {
-            r: (corners[0].r + corners[1].r + corners[2].r) / 3.0,
-            z: (corners[0].z + corners[1].z + corners[2].z) / 3.0,
-        };
-        let side =
-            |a: Point, b: Point, c: Point| (b.r - a.r) * (c.z - a.z) - (b.z - a.z) * (c.r - a.r);
-        let mut face = self.kernel.face(start);
-        let mut entered = None;
-        for _ in 0..self.kernel.num_inner_faces() {
-            let exit =
-                face.adjacent_edges().into_iter().filter(|e| Some(e.fix()) != entered).find(|e| {
-                    let [a, b] = e.vertices().map(|v| point(v.position()));
-                    side(a, b, to) < 0.0 && side(from, to, a) <= 0.0 && side(from, to, b) >= 0.0
-                });
-            let Some(exit) = exit else { return Ok(face.fix()) };
-            let beyond = exit.rev();
-            match beyond.face().as_inner() {
-                Some(next) if !exit.is_constraint_edge() => {
-                    entered = Some(beyond.fix());
-                    face = next;
-                }
-                _ => return Err(exit.vertices().map(|v| v.fix())),
-            }
-        }
-        Ok(face.fix())
-    }
-
-    /// Collects the borders whose lens holds a point: they bound the cavity of triangles whose circumcircle holds it.
-    fn dig(&mut self, start: Face, p: Point) {
-        self.cavity.clear();
-        self.cavity.push(start);
-        let mut next = 0;
-        while next < self.cavity.len() {
-            let face = self.kernel.face(self.cavity[next]);
-            next += 1;
-            for edge in face.adjacent_edges() {
-                let [a, b] = edge.vertices();
-                if edge.is_constraint_edge() {
-                    let cosine = if self.is_facet([a.fix(), b.fix()]) { size::COS_FACET_LENS } else { size::COS_LENS };
-                    if size::is_encroached(point(a.position()), point(b.position()), p, cosine) {
-                        self.encroached.push([a.fix(), b.fix()]);
-                    }
-                    continue;
-                }
-                let Some(beyond) = edge.rev().face().as_inner() else { continue };
-                if !self.cavity.contains(&beyond.fix()) && in_circle(&beyond.positions(), p) {
-                    self.cavity.push(beyond.fix());
-                }
-            }
-        }
-    }
-}
-
-/// Whether a point lies inside the circumcircle of a counter-clockwise triangle.
-fn in_circle(corners: &[Point2<f64>; 3], p: Point) -> bool {
-    let [a, b, c] = corners.map(|q| (q.x - p.r, q.y - p.z));
-    let lift = |q: (f64, f64)| q.0 * q.0 + q.1 * q.1;
-    let minor = |u: (f64, f64), v: (f64, f64)| u.0 * v.1 - u.1 * v.0;
-    lift(a) * minor(b, c) + lift(b) * minor(c, a) + lift(c) * minor(a, b) > 0.0
 }
 
 /// Points of an outline where two borders meet under less than 60°.

@@ -4,7 +4,7 @@
 //! small move does what no new vertex can. Triangles, borders and the outline's points stay as they are.
 
 use super::size::{ANGLE_MIN, Measures};
-use crate::model::Point;
+use crate::geometry::Point;
 
 /// Sweeps over all bad triangles; the gain after some is below a tenth of a degree.
 const N_SWEEPS: usize = 6;
@@ -59,12 +59,23 @@ fn move_vertex(points: &mut [Point], triangles: &[[u32; 3]], star: &[u32], id: u
     if best >= ANGLE_MIN.sin() {
         return false;
     }
-    let lengths = star.iter().flat_map(|&t| Measures::of(&triangles[t as usize].map(|k| points[k as usize])).length2);
+    let lengths = star
+        .iter()
+        .flat_map(|&t| Measures::of(&triangles[t as usize].map(|k| points[k as usize])).length2);
     let mut step = 0.5 * lengths.fold(f64::INFINITY, f64::min).sqrt();
     for _ in 0..N_HALVINGS {
         let home = points[id];
         let mut place = home;
-        for (r, z) in [(1., 0.), (0., 1.), (-1., 0.), (0., -1.), (0.7, 0.7), (-0.7, 0.7), (-0.7, -0.7), (0.7, -0.7)] {
+        for (r, z) in [
+            (1., 0.),
+            (0., 1.),
+            (-1., 0.),
+            (0., -1.),
+            (0.7, 0.7),
+            (-0.7, 0.7),
+            (-0.7, -0.7),
+            (0.7, -0.7),
+        ] {
             points[id] = Point { r: home.r + step * r, z: home.z + step * z };
             let sine = quality(points);
             if sine > best {

@@ -1,8 +1,7 @@
 //! Edges of a triangle list, refinement edges, and the checks that a mesh is one.
 
 use super::{Chart, Mesh};
-use crate::geometry::area;
-use crate::model::Point;
+use crate::geometry::{Point, area};
 
 /// Squared length and ends of an edge: a strict order, the same from both sides.
 fn edge_order(points: &[Point], a: u32, b: u32) -> (f64, [u32; 2]) {

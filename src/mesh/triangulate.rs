@@ -3,12 +3,11 @@
 use super::refine::{Kernel, point, refined};
 use super::smooth::smooth;
 use super::{Chart, Mesh, MeshError, topology};
-use crate::geometry::{Outline, RegionId, area};
-use crate::model::Point;
+use crate::geometry::{Outline, Point, RegionId, area};
 use spade::Triangulation;
 use spade::handles::{FixedFaceHandle, InnerTag};
 
-/// The first mesh of an outline: graded, conforming, as coarse as its smallest angle (about 24°) allows.
+/// The first mesh of an outline: graded, conforming, as coarse as its smallest angle (22°) allows.
 ///
 /// Gaps and thin walls get whole layers; the corners that the outline itself has are left alone. Vertices: the outline's
 /// points in their order, then the mesher's, then infinity. Inside triangles run counter-clockwise, the fan of cap triangles

@@ -3,8 +3,8 @@
 use super::numbers::{clip, millimeters, percent, wrap};
 use crate::model::{Across, Law, Model, Winding};
 use crate::results::hand::Effective;
-use crate::units::engineering;
 use crate::units::{Henry, PerHenry};
+use crate::units::{engineering, number};
 use serde_json::json;
 
 /// What was understood, beside the model: figures that other stages computed.
@@ -163,7 +163,7 @@ fn gaps(text: &mut String, model: &Model, understood: &Understood) {
         line(text, &gap.name, &format!("{} {across}{center}", millimeters(gap.length)));
     }
     for (name, reluctance) in &understood.gaps {
-        let plain = engineering(*reluctance, "1/H", 4);
+        let plain = format!("{} 1/µH", number(1e-6 * reluctance, 4));
         line(text, &format!("l/(µ0 A) of {}", clip(name, 11)), &plain);
     }
 }

@@ -5,7 +5,7 @@
 use super::colour;
 use super::contour::{contours, psi_at};
 use super::labels::{Wish, around, nearest};
-use super::numbers::{clip, millimeters, signed};
+use super::numbers::{clip, decimals_for, millimeters, signed};
 use super::svg::{Anchor, Canvas, FAINT_INK, INK, Rect, text_width};
 use crate::geometry::{Outline, RegionKind};
 use crate::mesh::{Chart, Mesh};
@@ -13,6 +13,7 @@ use crate::model::Point;
 use crate::results::HotSpot;
 use crate::solve::Solution;
 use crate::units::engineering;
+use std::collections::BTreeMap;
 use std::f64::consts::TAU;
 
 /// What the picture is drawn from.
@@ -67,6 +68,7 @@ pub fn field_svg(map: &FieldMap) -> String {
     let view = view(map);
     let triangles = visible(map, &view);
     let top = top_of_scale(map, &triangles);
+    let b = smoothed(map, &triangles);
     let colours = colour::scale(N_BANDS);
     let mut canvas = Canvas::new();
     let frame = view.frame();
@@ -75,7 +77,7 @@ pub fn field_svg(map: &FieldMap) -> String {
     canvas.rect(&half, "");
     canvas.raw("</clipPath></defs>\n<g id=\"half\" clip-path=\"url(#view)\">");
     canvas.rect(&half, &format!("fill=\"{}\"", colours[0]));
-    bands(&mut canvas, map, &triangles, top, &colours);
+    bands(&mut canvas, &b, &triangles, top, &colours);
     let step = flux_lines(&mut canvas, map, &triangles);
     outlines(&mut canvas, map.outline, &view);
     canvas.raw("</g>");
@@ -172,18 +174,39 @@ fn plain_above(value: f64) -> f64 {
     decade * series.into_iter().find(|s| value <= s * decade * (1.0 + 1e-9)).unwrap_or(10.0)
 }
 
+/// |B| at the corners of the visible triangles, averaged over the triangles of one region that meet there: the jumps
+/// that this removes are discretisation, those at material boundaries stay. For eyes only; field.vtu has the raw values.
+fn smoothed(map: &FieldMap, triangles: &[(usize, [[f64; 2]; 3])]) -> Vec<[f64; 3]> {
+    let key = |t: usize, k: usize| (map.mesh.triangles[t][k], map.mesh.regions[t]);
+    let mut sums: BTreeMap<_, (f64, f64)> = BTreeMap::new();
+    for (t, _) in triangles {
+        for (k, b) in map.b_corner[*t].iter().enumerate().filter(|(_, b)| b.is_finite()) {
+            let (sum, count) = sums.entry(key(*t, k)).or_default();
+            *sum += b;
+            *count += 1.0;
+        }
+    }
+    let mean = |t: usize, k: usize| sums.get(&key(t, k)).map_or(0.0, |(sum, count)| sum / count);
+    triangles.iter().map(|(t, _)| [0, 1, 2].map(|k| mean(*t, k))).collect()
+}
+
+/// Place of a flux density on the scale, 0 … 1: its square root, so that the weak field in air and windings shows.
+fn place_on_scale(b: f64, top: f64) -> f64 {
+    (b / top).sqrt()
+}
+
 /// Paints each band of |B| as one path; a hair of stroke in the same colour closes the seams.
 fn bands(
     canvas: &mut Canvas,
-    map: &FieldMap,
+    b: &[[f64; 3]],
     triangles: &[(usize, [[f64; 2]; 3])],
     top: f64,
     colours: &[String],
 ) {
     let mut pieces: Vec<Vec<Vec<[f64; 2]>>> = vec![vec![]; N_BANDS];
-    for (t, corners) in triangles {
+    for ((_, corners), b) in triangles.iter().zip(b) {
         // In units of bands; what lies above the scale joins the last band.
-        let level = map.b_corner[*t].map(|b| N_BANDS as f64 * b / top);
+        let level = b.map(|b| N_BANDS as f64 * place_on_scale(b, top));
         let polygon: Vec<([f64; 2], f64)> = (0..3).map(|k| (corners[k], level[k])).collect();
         let low = level.iter().copied().fold(f64::MAX, f64::min).max(0.0);
         let high = level.iter().copied().fold(0.0, f64::max);
@@ -229,7 +252,7 @@ fn keep(polygon: &[([f64; 2], f64)], level: f64, side: f64) -> Vec<([f64; 2], f6
 }
 
 /// Sub-triangles that the whole picture is sampled with, about.
-const N_SAMPLES: usize = 400_000;
+const N_SAMPLES: usize = 160_000;
 
 /// Draws the flux lines and returns their step of 2πψ [Wb]; `None` when there is no flux.
 fn flux_lines(
@@ -318,6 +341,18 @@ fn hot_spots(canvas: &mut Canvas, map: &FieldMap, view: &View) {
     }
 }
 
+/// Marks of the colour scale, as shares of its top.
+const TICKS: [f64; 6] = [0.0, 0.02, 0.1, 0.25, 0.5, 1.0];
+
+/// Three significant digits without trailing zeros.
+fn plain_text(value: f64) -> String {
+    let mut text = signed(value, decimals_for(value, 3));
+    if text.contains('.') {
+        text.truncate(text.trim_end_matches('0').trim_end_matches('.').len());
+    }
+    text
+}
+
 /// Draws the colour scale and the step of the flux lines; returns the lower edge [px].
 fn legend(
     canvas: &mut Canvas,
@@ -347,18 +382,15 @@ fn legend(
     }
     let bar = Rect { x, y, width: 18.0, height };
     canvas.rect(&bar, &format!("fill=\"none\" stroke=\"{INK}\" stroke-width=\"0.8\""));
-    let n_ticks = 4;
-    let decimals = if (factor * top / f64::from(n_ticks)).fract() < 1e-6 { 0 } else { 2 };
-    for tick in 0..=n_ticks {
-        let share = f64::from(tick) / f64::from(n_ticks);
-        let y = y + height * (1.0 - share);
+    for share in TICKS {
+        let y = y + height * (1.0 - place_on_scale(share, 1.0));
         canvas.line(
             [x + 18.0, y],
             [x + 23.0, y],
             &format!("stroke=\"{INK}\" stroke-width=\"0.8\""),
         );
-        let more = if tick == n_ticks { " and more" } else { "" };
-        let text = format!("{}{more}", signed(factor * top * share, decimals));
+        let more = if share == 1.0 { " and more" } else { "" };
+        let text = format!("{}{more}", plain_text(factor * top * share));
         canvas.text([x + 27.0, y + 4.0], TEXT, Anchor::Start, "", &text);
     }
     let mut bottom = y + height;

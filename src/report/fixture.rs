@@ -15,12 +15,6 @@ use crate::solve::Solution;
 
 /// Results of the size of a real run; the numbers are rounded and belong to no guarantee.
 pub(crate) fn results() -> Results {
-    let row = |region: &str, share: f64, hand: Option<f64>| LedgerRow {
-        region: region.to_string(),
-        share,
-        reluctance: Some(share / 397.175e-9),
-        hand,
-    };
     let round = |n_unknowns, low, high| Round {
         n_unknowns,
         n_triangles: 2 * n_unknowns,
@@ -57,33 +51,10 @@ pub(crate) fn results() -> Results {
             flux_linkage: 1.2611e-3,
             flux_linkage_ends: Some([1.2605e-3, 1.2617e-3]),
         }],
-        ledger: vec![
-            row("post", 0.031, Some(81e3)),
-            row("wall", 0.014, Some(36e3)),
-            row("upper plate", 0.011, Some(27e3)),
-            row("lower plate", 0.011, Some(27e3)),
-            row("post gap", 0.724, Some(2.16e6)),
-            row("main and its window", 0.187, None),
-            row("outside", 0.022, None),
-        ],
+        ledger: ledger(),
         inductance_based: Some(1.2034),
-        gaps: vec![GapResult {
-            name: "1".to_string(),
-            gap_based: Some(1.143),
-            plain_reluctance: 2.947e6,
-            force: 4.21,
-            plain_force: 4.62,
-        }],
-        hot_spots: vec![
-            HotSpot { part: "post".to_string(), r: 5.6e-3, z: 5.6e-3, flux_density: 0.512 },
-            HotSpot { part: "post".to_string(), r: 5.6e-3, z: -5.6e-3, flux_density: 0.511 },
-            HotSpot {
-                part: "lower plate".to_string(),
-                r: 10.5e-3,
-                z: -5.7e-3,
-                flux_density: 0.344,
-            },
-        ],
+        gaps: gaps(),
+        hot_spots: hot_spots(),
         parts: vec![PartResult {
             name: "post".to_string(),
             volume: 8.9e-7,
@@ -91,20 +62,7 @@ pub(crate) fn results() -> Results {
             exceeded: [0.41, 0.38, 0.36],
             margin: Some(0.21),
         }],
-        probes: vec![ProbeResult {
-            name: "axis".to_string(),
-            points: (0..3)
-                .map(|i| ProbePoint {
-                    r: 1e-3,
-                    z: 1e-3 * f64::from(i),
-                    b_r: 0.1 / 3.0,
-                    b_z: 0.2,
-                    h_r: 1.0,
-                    h_z: 2.0,
-                    psi: 1e-7,
-                })
-                .collect(),
-        }],
+        probes: vec![probe()],
         verdict: Some(Verdict {
             inductance: 0.70e-3,
             is_hand_sum: false,
@@ -113,20 +71,77 @@ pub(crate) fn results() -> Results {
             within_tolerance: true,
             blame: "the post gap carries most of the difference".to_string(),
         }),
-        requirements: vec![RequirementResult {
-            winding: "main".to_string(),
-            current: 2.5,
-            incremental: false,
-            least: Some(650e-6),
-            most: None,
-            inductance: 700.6e-6,
-            met: true,
-        }],
+        requirements: requirements(),
         notes: vec![
             "the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an average"
                 .to_string(),
         ],
     }
+}
+
+fn ledger() -> Vec<LedgerRow> {
+    let row = |region: &str, share: f64, hand: Option<f64>| LedgerRow {
+        region: region.to_string(),
+        share,
+        reluctance: Some(share / 397.175e-9),
+        hand,
+    };
+    vec![
+        row("post", 0.031, Some(81e3)),
+        row("wall", 0.014, Some(36e3)),
+        row("upper plate", 0.011, Some(27e3)),
+        row("lower plate", 0.011, Some(27e3)),
+        row("post gap", 0.724, Some(2.16e6)),
+        row("main and its window", 0.187, None),
+        row("outside", 0.022, None),
+    ]
+}
+
+fn probe() -> ProbeResult {
+    ProbeResult {
+        name: "axis".to_string(),
+        points: (0..3)
+            .map(|i| ProbePoint {
+                r: 1e-3,
+                z: 1e-3 * f64::from(i),
+                b_r: 0.1 / 3.0,
+                b_z: 0.2,
+                h_r: 1.0,
+                h_z: 2.0,
+                psi: 1e-7,
+            })
+            .collect(),
+    }
+}
+
+fn hot_spots() -> Vec<HotSpot> {
+    vec![
+        HotSpot { part: "post".to_string(), r: 5.6e-3, z: 5.6e-3, flux_density: 0.512 },
+        HotSpot { part: "post".to_string(), r: 5.6e-3, z: -5.6e-3, flux_density: 0.511 },
+        HotSpot { part: "lower plate".to_string(), r: 10.5e-3, z: -5.7e-3, flux_density: 0.344 },
+    ]
+}
+
+fn requirements() -> Vec<RequirementResult> {
+    vec![RequirementResult {
+        winding: "main".to_string(),
+        current: 2.5,
+        incremental: false,
+        least: Some(650e-6),
+        most: None,
+        inductance: 700.6e-6,
+        met: true,
+    }]
+}
+
+fn gaps() -> Vec<GapResult> {
+    vec![GapResult {
+        name: "1".to_string(),
+        gap_based: Some(1.143),
+        plain_reluctance: 2.947e6,
+        force: 4.21,
+        plain_force: 4.62,
+    }]
 }
 
 /// The model of the same core.

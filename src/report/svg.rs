@@ -72,6 +72,7 @@ pub(super) struct Canvas {
 }
 
 impl Canvas {
+    /// An empty page.
     pub fn new() -> Canvas {
         Canvas { body: String::new() }
     }

@@ -11,36 +11,85 @@ use std::collections::BTreeMap;
 use std::f64::consts::TAU;
 
 /// Cells of one disc radius that are looked at closely; the hottest ones by their own mean.
-const N_CANDIDATES: usize = 120;
+const N_CANDIDATES: usize = 60;
 /// Rings and points a ring of the disc's averaging rule (equal areas, midpoints).
-const N_RINGS: usize = 3;
-const N_ON_RING: usize = 12;
+const N_RINGS: usize = 4;
+const N_ON_RING: usize = 16;
+/// Moves of one climb before it is called done; a climb is a few radii long.
+const N_MOVES_MAX: usize = 40;
+/// A climb ends when steps of this share of the radius no longer help.
+const FINEST_STEP: f64 = 0.06;
 
-/// The `count` hottest discs, at least two radii apart.
+/// The `count` hottest discs, at least two radii apart; each is a local maximum of the disc's mean.
 pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
-    let radius = model.hot_spots.averaging;
-    let mut spots: Vec<HotSpot> = (candidates(sampler, radius).into_iter())
-        .map(|(t, at)| HotSpot {
-            part: region(sampler, t).name.clone(),
-            r: at.r,
-            z: at.z,
-            flux_density: disc_mean(sampler, t, at, radius),
-        })
+    let (radius, count) = (model.hot_spots.averaging, model.hot_spots.count);
+    let discs = candidates(sampler, radius)
+        .into_iter()
+        .map(|(t, at)| Disc::new(sampler, t, at, radius))
         .collect();
-    spots.sort_by(|a, b| {
-        b.flux_density
-            .total_cmp(&a.flux_density)
-            .then(a.r.total_cmp(&b.r))
-            .then(a.z.total_cmp(&b.z))
-    });
-    let mut kept: Vec<HotSpot> = Vec::new();
-    for spot in spots {
-        let is_apart = |other: &HotSpot| 2.0 * radius <= (other.r - spot.r).hypot(other.z - spot.z);
-        if kept.len() < model.hot_spots.count && kept.iter().all(is_apart) {
-            kept.push(spot);
+    // A few more starts than wanted: two may climb to the same place.
+    let climbed = apart(discs, count + 4, radius)
+        .into_iter()
+        .map(|disc| climb(sampler, disc, radius))
+        .collect();
+    (apart(climbed, count, radius).into_iter())
+        .map(|disc| HotSpot {
+            part: region(sampler, disc.triangle).name.clone(),
+            r: disc.at.r,
+            z: disc.at.z,
+            flux_density: disc.mean,
+        })
+        .collect()
+}
+
+/// A disc, the triangle of its centre and its mean |B|.
+#[derive(Debug, Clone, Copy)]
+struct Disc {
+    triangle: usize,
+    at: Point,
+    mean: Tesla,
+}
+
+impl Disc {
+    fn new(sampler: &Sampler, triangle: usize, at: Point, radius: Meter) -> Disc {
+        Disc { triangle, at, mean: disc_mean(sampler, triangle, at, radius) }
+    }
+}
+
+/// The first `count` discs, hottest first, that are two radii from each other.
+fn apart(mut discs: Vec<Disc>, count: usize, radius: Meter) -> Vec<Disc> {
+    let by_place = |a: &Disc, b: &Disc| a.at.r.total_cmp(&b.at.r).then(a.at.z.total_cmp(&b.at.z));
+    discs.sort_by(|a, b| b.mean.total_cmp(&a.mean).then(by_place(a, b)));
+    let mut kept: Vec<Disc> = Vec::new();
+    for disc in discs {
+        let is_apart =
+            |other: &Disc| 2.0 * radius <= (other.at.r - disc.at.r).hypot(other.at.z - disc.at.z);
+        if kept.len() < count && kept.iter().all(is_apart) {
+            kept.push(disc);
         }
     }
     kept
+}
+
+/// Moves a disc uphill inside its body by halved steps, so that the answer does not hang on the mesh.
+fn climb(sampler: &Sampler, mut disc: Disc, radius: Meter) -> Disc {
+    let own = body(region(sampler, disc.triangle));
+    let mut step = 0.5 * radius;
+    for _ in 0..N_MOVES_MAX {
+        let moved = |(dr, dz): (f64, f64)| {
+            let at = Point { r: disc.at.r + step * dr, z: disc.at.z + step * dz };
+            let (t, _) = locate(&sampler.outcome.mesh, &sampler.edge_triangles, disc.triangle, at)?;
+            let is_inside = 0.0 <= at.r && body(region(sampler, t)) == own;
+            is_inside.then(|| Disc::new(sampler, t, at, radius))
+        };
+        let best = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)].into_iter().filter_map(moved);
+        match best.max_by(|a, b| a.mean.total_cmp(&b.mean)).filter(|best| disc.mean < best.mean) {
+            Some(best) => disc = best,
+            None if step < FINEST_STEP * radius => break,
+            None => step *= 0.5,
+        }
+    }
+    disc
 }
 
 fn region<'a>(sampler: &'a Sampler, t: usize) -> &'a Region {

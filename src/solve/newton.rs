@@ -1,10 +1,11 @@
 //! One field solution on one mesh: a single CG solve for constant laws, Newton with backtracking otherwise.
 
 use super::Solution;
-use crate::fem::element::Frame;
-use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux, tangent_moments};
-use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space, assemble, space};
+use crate::fem::element::{Frame, Pair};
+use crate::fem::moments::{Saturated, linear_energy, linear_flux, rule_of, saturated};
+use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space, assemble, space};
 use crate::mesh::Mesh;
+use crate::mesh::fans::Fans;
 use crate::sparse::cg::dot;
 use crate::sparse::{CgError, Hierarchy, Interpolation, Matrix, Stop, conjugate_gradients};
 use rayon::prelude::*;
@@ -23,6 +24,7 @@ const ARMIJO: f64 = 1e-4;
 pub struct System<'a> {
     pub mesh: &'a Mesh,
     pub space: &'a Space,
+    pub fans: &'a Fans,
     pub coefficients: &'a Coefficients,
     pub rules: &'a Rules,
 }
@@ -49,11 +51,11 @@ pub enum SolveError {
 
 /// Improves `solution` until a further step would lower F by less than `decrease`·bᵀx.
 ///
-/// - `moments`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
+/// - `elements`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
 /// - `hierarchy`: levels of the earlier rounds in, this mesh's level added
 pub fn solve(
     system: &System,
-    moments: &mut [Moments],
+    elements: &mut [Element],
     hierarchy: &mut Hierarchy,
     solution: &mut Solution,
     decrease: f64,
@@ -62,7 +64,7 @@ pub fn solve(
     let load = assemble::load(system.mesh, system.space, system.coefficients);
     let mut x = system.space.restrict(&solution.vertex, &solution.edge);
     let effort = if system.coefficients.is_linear() {
-        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
         set_level(system, hierarchy, &matrix, &interpolation)?;
         let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
         let mut work = hierarchy.workspace();
@@ -72,7 +74,7 @@ pub fn solve(
             conjugate_gradients(&matrix, &load, &mut x, &stop, 0.0, &mut precondition)?;
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
     } else {
-        newton(system, moments, hierarchy, &interpolation, &load, &mut x, decrease)?
+        newton(system, elements, hierarchy, &interpolation, &load, &mut x, decrease)?
     };
     (solution.vertex, solution.edge) = system.space.expand(system.mesh, &x);
     Ok(effort)
@@ -92,7 +94,7 @@ fn set_level(
 
 fn newton(
     system: &System,
-    moments: &mut [Moments],
+    elements: &mut [Element],
     hierarchy: &mut Hierarchy,
     interpolation: &[Interpolation],
     load: &[f64],
@@ -100,10 +102,11 @@ fn newton(
     decrease: f64,
 ) -> Result<Effort, SolveError> {
     let mut effort = Effort::default();
-    let mut state = State::new(system, moments, load, x);
+    let problem = Problem { system, load, saturating: saturating_triangles(system) };
+    let mut state = State::new(&problem, elements, x);
     loop {
-        update_tangent(system, moments, &state.solution);
-        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        state.store_tangents(&problem, elements);
+        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
         set_level(system, hierarchy, &matrix, interpolation)?;
         let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
@@ -119,7 +122,7 @@ fn newton(
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);
         let before = state.value;
-        let Some(next) = backtrack(system, moments, load, x, &step, predicted, before) else {
+        let Some(next) = backtrack(&problem, elements, x, &step, predicted, before) else {
             // No step lowers F: at the rounding floor that is convergence, elsewhere a stall.
             return match predicted <= 1e-12 * scale {
                 true => Ok(effort),
@@ -128,6 +131,7 @@ fn newton(
         };
         state = next;
         if 0.5 * predicted <= decrease * 2.0 * state.value.abs() {
+            state.store_tangents(&problem, elements);
             return Ok(effort);
         }
         if effort.n_newton_steps == N_NEWTON_MAX {
@@ -140,11 +144,27 @@ fn stalled(effort: &Effort, predicted: f64, scale: f64, wanted: f64) -> SolveErr
     SolveError::Stalled { n_steps: effort.n_newton_steps, decrement: predicted / scale, wanted }
 }
 
+/// What stays the same over the steps.
+struct Problem<'a> {
+    system: &'a System<'a>,
+    load: &'a [f64],
+    /// Triangles with a saturating law, ascending.
+    saturating: Vec<u32>,
+}
+
+fn saturating_triangles(system: &System) -> Vec<u32> {
+    let saturates = |t: &u32| matches!(law_of(system, *t as usize), Reluctivity::Saturating(_));
+    (0..system.mesh.triangles.len() as u32).filter(saturates).collect()
+}
+
+fn law_of<'a>(system: &System<'a>, t: usize) -> &'a Reluctivity {
+    &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize]
+}
+
 /// Halves the step until F falls enough; moves `x` and returns the new state.
 fn backtrack(
-    system: &System,
-    moments: &[Moments],
-    load: &[f64],
+    problem: &Problem,
+    elements: &[Element],
     x: &mut Vec<f64>,
     step: &[f64],
     predicted: f64,
@@ -153,7 +173,7 @@ fn backtrack(
     let mut length = 1.0;
     for _ in 0..N_HALVINGS_MAX {
         let trial: Vec<f64> = x.iter().zip(step).map(|(x, d)| x + length * d).collect();
-        let state = State::new(system, moments, load, &trial);
+        let state = State::new(problem, elements, &trial);
         if state.value <= before - ARMIJO * length * predicted {
             *x = trial;
             return Some(state);
@@ -163,59 +183,83 @@ fn backtrack(
     None
 }
 
-/// F/2π and its derivative's field part at one x.
+/// F/2π, its derivative's field part and its tangent at one x: one inversion of the law a quadrature point.
 struct State {
-    solution: Solution,
     /// F/2π = Σ energy − bᵀx.
     value: f64,
     /// g_i = ∫ ∇φ_i·σ̂.
     force: Vec<f64>,
+    /// Tangent matrices of the saturating triangles.
+    tangents: Vec<Element>,
 }
 
 impl State {
-    fn new(system: &System, moments: &[Moments], load: &[f64], x: &[f64]) -> State {
+    /// - `elements`: of the triangles with constant laws
+    fn new(problem: &Problem, elements: &[Element], x: &[f64]) -> State {
+        let system = problem.system;
         let (vertex, edge) = system.space.expand(system.mesh, x);
         let solution = Solution { vertex, edge };
-        let parts: Vec<_> = (0..system.mesh.triangles.len())
-            .into_par_iter()
-            .with_min_len(512)
-            .map(|t| flux_and_energy(system, moments, &solution, t))
-            .collect();
-        let energy: f64 = parts.iter().map(|p| p.1).sum();
-        let force = assemble::residual_of_flux(system.mesh, system.space, |t| parts[t].0);
-        State { solution, value: energy - dot(load, x), force }
+        let parts = linear_parts(system, elements, &solution);
+        let (mut flux, mut energy): (Vec<_>, Vec<_>) = parts.into_iter().unzip();
+        let bent = evaluate_saturating(system, &problem.saturating, &solution);
+        for (&t, part) in problem.saturating.iter().zip(&bent) {
+            (flux[t as usize], energy[t as usize]) = (part.0, part.1);
+        }
+        let force = assemble::residual_of_flux(system.mesh, system.space, |t| flux[t]);
+        let value = energy.iter().sum::<f64>() - dot(problem.load, x);
+        State { value, force, tangents: bent.into_iter().map(|part| part.2).collect() }
+    }
+
+    fn store_tangents(&self, problem: &Problem, elements: &mut [Element]) {
+        for (&t, tangent) in problem.saturating.iter().zip(&self.tangents) {
+            elements[t as usize] = *tangent;
+        }
     }
 }
 
-fn flux_and_energy(
+/// Flux elements and energy of the triangles with constant laws; zeros elsewhere.
+fn linear_parts(
     system: &System,
-    moments: &[Moments],
+    elements: &[Element],
     solution: &Solution,
-    t: usize,
-) -> ([[f64; 2]; 3], f64) {
-    let gradients = solution.gradients(system.mesh, t);
-    match &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize] {
+) -> Vec<([Pair; 3], f64)> {
+    let part = |t: usize| match law_of(system, t) {
         Reluctivity::Constant(_) => {
-            (linear_flux(&moments[t].k, &gradients), linear_energy(&moments[t].k, &gradients))
+            let gradients = solution.gradients(system.mesh, t);
+            (linear_flux(&elements[t].k, &gradients), linear_energy(&elements[t].k, &gradients))
         }
-        Reluctivity::Saturating(law) => {
-            let frame = Frame::new(system.mesh, t);
-            saturating_flux(&frame, rule_of(system.rules, &frame), law, &gradients)
-        }
-    }
+        Reluctivity::Saturating(_) => ([[0.0; 2]; 3], 0.0),
+    };
+    (0..system.mesh.triangles.len()).into_par_iter().with_min_len(2048).map(part).collect()
 }
 
-/// Sets the moments of all saturating triangles to the tangent at `solution`.
-pub fn update_tangent(system: &System, moments: &mut [Moments], solution: &Solution) {
-    moments.par_iter_mut().enumerate().with_min_len(512).for_each(|(t, moments)| {
-        if let Reluctivity::Saturating(law) =
-            &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize]
-        {
-            let frame = Frame::new(system.mesh, t);
-            let gradients = solution.gradients(system.mesh, t);
-            *moments = tangent_moments(&frame, rule_of(system.rules, &frame), law, &gradients);
-        }
-    });
+/// Flux moments, energy and tangent matrices of the triangles with saturating laws.
+fn evaluate_saturating(
+    system: &System,
+    triangles: &[u32],
+    solution: &Solution,
+) -> Vec<([Pair; 3], f64, Element)> {
+    let part = |&t: &u32| {
+        let t = t as usize;
+        let Reluctivity::Saturating(law) = law_of(system, t) else {
+            unreachable!("triangle {t} has a constant law")
+        };
+        let frame = Frame::new(system.mesh, t);
+        let gradients = solution.gradients(system.mesh, t);
+        let Saturated { flux, energy, tangent } =
+            saturated(&frame, rule_of(system.rules, &frame), law, &gradients);
+        (flux, energy, Element::new(&frame, &tangent))
+    };
+    triangles.par_iter().with_min_len(128).map(part).collect()
+}
+
+/// Sets the elements of all saturating triangles to the tangent at `solution`.
+pub fn update_tangent(system: &System, elements: &mut [Element], solution: &Solution) {
+    let triangles = saturating_triangles(system);
+    let parts = evaluate_saturating(system, &triangles, solution);
+    for (&t, part) in triangles.iter().zip(&parts) {
+        elements[t as usize] = part.2;
+    }
 }
 
 /// How each vertex unknown follows from its parents: ½, ½; next to the axis ¼ of the off-axis end, since ψ ∝ t².

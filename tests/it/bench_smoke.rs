@@ -49,10 +49,15 @@ fn sizes() -> &'static [usize] {
 fn cg_iterations_stay_below_the_aim_for_any_size_contrast_and_gap() {
     for &n in sizes() {
         for gap_mm in [0.3, THIN_GAP_MM] {
+            // The first mesh of the thin gap has 4e4 unknowns: one small size is enough.
+            if gap_mm < 0.3 && n == 1_000 {
+                continue;
+            }
             for permeability in PERMEABILITIES {
                 let count = count_pot(permeability, gap_mm, n);
                 let what = format!("µr {permeability}, gap {gap_mm} mm: {count:?}");
                 assert!(count.by_energy <= N_ITERATIONS_AIM, "{what}");
+                assert!(count.by_norm <= N_ITERATIONS_AIM, "{what}");
                 // Warm-started rounds need a few iterations only; the design measured 4.
                 assert!(count.warm <= N_ITERATIONS_AIM / 2, "{what}");
             }
@@ -67,7 +72,7 @@ fn cg_iterations_stay_below_the_aim_in_air_and_along_a_rod() {
             let text = cases::sheet_text(case.sheet);
             let (model, outline) = cases::model(&text, Goal::Unknowns(n));
             let count = count(&cases::run(&model, &outline));
-            assert!(count.by_energy <= N_ITERATIONS_AIM, "{}: {count:?}", case.name);
+            assert!(count.by_norm <= N_ITERATIONS_AIM, "{}: {count:?}", case.name);
         }
     }
 }

@@ -2,6 +2,9 @@
 #![allow(clippy::unwrap_used)]
 
 mod bench_smoke;
+mod architecture;
+mod cli;
 mod messages;
 mod mutations;
 mod sheets;
+mod tidy;

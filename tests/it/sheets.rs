@@ -1,7 +1,11 @@
-//! The sheets of `meshes/`: read without a mistake, drawn without a fault, and described by the schema.
+//! The sheets of `meshes/`: read without a mistake, drawn without a fault, solved to what they
+//! promise, and described by the schema.
 
+use gapwright::adapt;
 use gapwright::geometry::outline;
 use gapwright::input::{Sheet, read, render, schema};
+use gapwright::results::collect;
+use gapwright::units::reading;
 use std::fs;
 use std::path::{Path, PathBuf};
 
@@ -53,6 +57,29 @@ fn every_sheet_says_what_it_shows_how_to_run_it_and_what_to_expect() {
         }
         let command = format!("gapwright solve meshes/{name}");
         assert!(comment.iter().any(|line| line.contains(&command)), "{name} lacks `{command}`");
+    }
+}
+
+/// The first quantity of the comment line "# Expect: 700.6 µH, …".
+fn expected_inductance(text: &str) -> f64 {
+    let line = text.lines().find_map(|line| line.strip_prefix("# Expect: ")).unwrap();
+    let words: Vec<&str> = line.split([' ', ',']).take(2).collect();
+    reading(&words.join(" ")).unwrap().value
+}
+
+#[test]
+fn what_a_sheet_says_to_expect_is_what_comes_out() {
+    for (name, text) in all() {
+        let model = sheet(&name, &text).model;
+        let outline = outline(&model).unwrap();
+        let outcome = adapt::run(&model, &outline, &mut |_| {}).unwrap();
+        let results = collect(&model, &outline, &outcome);
+        let found = results.inductance.unwrap();
+        let expected = expected_inductance(&text);
+        // Four digits are printed in the comment: half a unit of the last is at most 0.05 %.
+        let slack = 5e-4 * expected;
+        let is_held = found.low - slack <= expected && expected <= found.high + slack;
+        assert!(results.reached && is_held, "{name}: {expected} against {found:?}");
     }
 }
 

@@ -1,9 +1,7 @@
 //! A general sparse Cholesky (faer, fill-reducing order AMD, one thread) on the same matrix, as the measure of our solver.
 
 use faer::dyn_stack::{MemBuffer, MemStack};
-use faer::sparse::linalg::cholesky::{
-    LltRef, SymmetricOrdering, factorize_symbolic_cholesky,
-};
+use faer::sparse::linalg::cholesky::{LltRef, SymmetricOrdering, factorize_symbolic_cholesky};
 use faer::sparse::{SparseColMat, SymbolicSparseColMat};
 use faer::{Conj, MatMut, Par, Side};
 use gapwright::sparse::Matrix;

@@ -47,14 +47,8 @@ impl<'a> LastSystem<'a> {
             |r: &[f64], z: &mut [f64]| hierarchy.precondition(&self.matrix, &mut work, r, z);
         let stop = Stop { decrease, n_iterations_max };
         let mut x = vec![0.0; self.load.len()];
-        let used = conjugate_gradients(
-            &self.matrix,
-            &self.load,
-            &mut x,
-            &stop,
-            0.0,
-            &mut precondition,
-        );
+        let used =
+            conjugate_gradients(&self.matrix, &self.load, &mut x, &stop, 0.0, &mut precondition);
         let n_iterations = used.map_or(n_iterations_max, |c| c.n_iterations);
         (x, n_iterations)
     }

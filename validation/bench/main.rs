@@ -56,6 +56,10 @@ fn iterations_study(n_unknowns_max: usize) -> Vec<Value> {
     let mut rows = Vec::new();
     for n in sizes {
         for gap_mm in [0.3, iterations::THIN_GAP_MM] {
+            // The first mesh of the thin gap has 4e4 unknowns: smaller sizes would repeat it.
+            if gap_mm < 0.3 && n == 1_000 {
+                continue;
+            }
             for permeability in iterations::PERMEABILITIES {
                 let count = iterations::count_pot(permeability, gap_mm, n);
                 rows.push(json!({
@@ -70,12 +74,23 @@ fn iterations_study(n_unknowns_max: usize) -> Vec<Value> {
 }
 
 fn print_iterations(rows: &[Value]) {
-    println!("\nCG iterations from zero: energy error 1e-10 / energy norm 1e-10 / warm in the last round");
-    println!("{:>10} {:>10} {:>12} {:>9} {:>9} {:>6}", "unknowns", "gap [mm]", "permeability", "energy", "norm", "warm");
+    println!(
+        "\nCG iterations from zero: energy error 1e-10 / energy norm 1e-10 / warm in the last round"
+    );
+    println!(
+        "{:>10} {:>10} {:>12} {:>9} {:>9} {:>6}",
+        "unknowns", "gap [mm]", "permeability", "energy", "norm", "warm"
+    );
     for row in rows {
+        let word = |key: &str| row[key].to_string();
         println!(
             "{:>10} {:>10} {:>12} {:>9} {:>9} {:>6}",
-            row["unknowns"], row["gap_mm"], row["permeability"], row["by_energy"], row["by_norm"], row["warm"]
+            word("unknowns"),
+            word("gap_mm"),
+            word("permeability"),
+            word("by_energy"),
+            word("by_norm"),
+            word("warm")
         );
     }
 }

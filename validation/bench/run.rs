@@ -71,23 +71,52 @@ fn facts(case: Case, goal: Goal, model: &Model, outcome: &Outcome) -> Value {
 
 /// The table.
 pub fn print(rows: &[Value]) {
-    println!("\nRuns: median time [ms] of `adapt::run`, share of the stages [%], iterations, memory");
+    println!(
+        "\nRuns: median time [ms] of `adapt::run`, share of the stages [%], iterations, memory"
+    );
     println!(
         "{:<4} {:>8} {:>2} {:>9} {:>3} {:>9} {:>5} {:>5} {:>5} {:>5} {:>5} | {:>8} {:>8} {:>4} {:>8} {:>6}",
-        "case", "goal", "th", "unknowns", "rd", "ms", "mesh", "asm", "solve", "bound", "refi",
-        "results", "report", "cg", "B/unkn", "w/err"
+        "case",
+        "goal",
+        "th",
+        "unknowns",
+        "rd",
+        "ms",
+        "mesh",
+        "asm",
+        "solve",
+        "bound",
+        "refi",
+        "results",
+        "report",
+        "cg",
+        "B/unkn",
+        "w/err"
     );
     for row in rows {
         let number = |key: &str| row[key].as_f64().unwrap_or(f64::NAN);
+        let word = |key: &str| row[key].to_string();
         let seconds = |k: usize| row["stages"][stages::NAMES[k]].as_f64().unwrap_or(f64::NAN);
         let computing: f64 = (0..5).map(seconds).sum();
         let share = |k: usize| 100.0 * seconds(k) / computing;
         println!(
             "{:<4} {:>8} {:>2} {:>9} {:>3} {:>9.2} {:>5.1} {:>5.1} {:>5.1} {:>5.1} {:>5.1} | {:>8.2} {:>8.2} {:>4} {:>8.0} {:>6.2}",
-            row["case"].as_str().unwrap_or(""), row["goal"].as_str().unwrap_or(""), row["threads"],
-            row["unknowns"], row["rounds"], 1e3 * number("seconds"), share(0), share(1), share(2),
-            share(3), share(4), 1e3 * seconds(5), 1e3 * seconds(6), row["cg_iterations"],
-            number("bytes_per_unknown"), number("width_by_error_of_low")
+            row["case"].as_str().unwrap_or(""),
+            row["goal"].as_str().unwrap_or(""),
+            word("threads"),
+            word("unknowns"),
+            word("rounds"),
+            1e3 * number("seconds"),
+            share(0),
+            share(1),
+            share(2),
+            share(3),
+            share(4),
+            1e3 * seconds(5),
+            1e3 * seconds(6),
+            word("cg_iterations"),
+            number("bytes_per_unknown"),
+            number("width_by_error_of_low")
         );
     }
 }

@@ -13,7 +13,7 @@ fn every_shape_is_named_and_every_dimension_is_there() {
     let svg = section_svg(&fixture::model(), &fixture::outline());
     check_texts(&svg);
     let texts = texts(&svg);
-    for wanted in ["post", "wall", "upper plate", "post gap", "0.3 long", "main", "42 turns"] {
+    for wanted in ["post", "wall", "upper plate", "post gap", "gap, 0.3 long", "main", "42 turns"] {
         assert!(texts.iter().any(|t| t == wanted), "{wanted} is missing from {texts:?}");
     }
     for wanted in ["Ø 5.4", "Ø 11.5", "Ø 21.2", "Ø 25.5", "11", "16.1"] {

@@ -189,6 +189,17 @@ fn inline_tables_are_refused_by_row() {
 }
 
 #[test]
+fn a_comment_above_a_broken_row_is_not_blamed() {
+    let sheet = GOOD.replace("permeability = 2000", "bh = \"hot.csv\"");
+    for line_end in ["\n", "\r\n"] {
+        let csv = ["H [A/m],B [T]", "0,0", "# measured at noon", "", "50,high", ""].join(line_end);
+        let diagnostics = read(&sheet, "buoy.toml", &|_| Ok(csv.clone())).unwrap_err();
+        assert_eq!((diagnostics[0].line, diagnostics[0].column), (5, 1));
+        assert_eq!(&csv[diagnostics[0].span.clone()], "50,high");
+    }
+}
+
+#[test]
 fn tables_in_files_are_refused_in_the_file() {
     let sheet = GOOD.replace("permeability = 2000", "bh = \"hot.csv\"");
     for (csv, expected) in [
