@@ -3,6 +3,7 @@
 use super::cases::{self, Goal};
 use gapwright::adapt::Outcome;
 use gapwright::fem::assemble;
+use gapwright::mesh::fans::Fans;
 use gapwright::sparse::cg::dot;
 use gapwright::sparse::matrix::multiply;
 use gapwright::sparse::{Matrix, Stop, conjugate_gradients};
@@ -34,7 +35,8 @@ pub struct Count {
 impl<'a> LastSystem<'a> {
     /// Assembles the last round's system again.
     pub fn new(outcome: &'a Outcome) -> LastSystem<'a> {
-        let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.moments);
+        let fans = Fans::new(&outcome.mesh);
+        let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements);
         let load = assemble::load(&outcome.mesh, &outcome.space, &outcome.coefficients);
         LastSystem { outcome, matrix, load }
     }

@@ -18,7 +18,7 @@ use serde_json::{Value, json};
 
 /// Relative widths of the interval.
 const INTERVALS: [f64; 4] = [1e-2, 1e-3, 1e-4, 1e-5];
-/// Unknowns of the ladder.
+/// Unknowns of the ladder, which R1 and R8 climb.
 const LADDER: [usize; 4] = [30_000, 100_000, 300_000, 1_000_000];
 
 fn main() {
@@ -34,11 +34,13 @@ fn main() {
 
 fn bench(ladder: &[usize], n_unknowns_max: usize) {
     let facts = history::facts();
-    let goals: Vec<Goal> = (INTERVALS.iter().map(|&i| Goal::Interval(i)))
-        .chain(ladder.iter().map(|&n| Goal::Unknowns(n)))
-        .collect();
-    let plan: Vec<(Case, Goal)> =
-        CASES.iter().flat_map(|&c| goals.iter().map(move |&g| (c, g))).collect();
+    let mut plan: Vec<(Case, Goal)> = Vec::new();
+    for case in CASES {
+        plan.extend(INTERVALS.map(|i| (case, Goal::Interval(i))));
+        if ["R1", "R8"].contains(&case.name) {
+            plan.extend(ladder.iter().map(|&n| (case, Goal::Unknowns(n))));
+        }
+    }
     let solver: Vec<Value> = plan.iter().map(|&(c, g)| solver::measure(c, g)).collect();
     solver::print(&solver);
     let runs: Vec<Value> =

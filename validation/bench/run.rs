@@ -1,11 +1,11 @@
 //! Whole runs: time of every stage, iterations, memory, and how wide the interval is against the true error.
 
 use super::cases::{self, Case, Goal};
-use super::{memory, stages};
+use super::memory;
+use super::stages::{self, Stages};
 use gapwright::adapt::Outcome;
 use gapwright::model::Model;
 use serde_json::{Value, json};
-use std::time::Instant;
 
 /// Runs whose median is kept: five, fewer where one takes seconds.
 pub fn n_runs(n_unknowns: usize) -> usize {
@@ -26,23 +26,20 @@ pub fn median(mut values: Vec<f64>) -> f64 {
 pub fn measure(case: Case, goal: Goal, n_threads: usize) -> Value {
     let (model, outline) = cases::model(&cases::sheet_text(case.sheet), goal);
     let pool = rayon::ThreadPoolBuilder::new().num_threads(n_threads).build().unwrap();
-    let (mut seconds, mut taken) = (Vec::new(), Vec::new());
     // The first run warms the caches and tells the size.
-    let mut outcome = pool.install(|| cases::run(&model, &outline));
+    let (_, mut outcome) = pool.install(|| stages::run(&model, &outline));
+    let mut taken = Vec::new();
     for _ in 0..n_runs(outcome.space.n_dofs) {
-        let start = Instant::now();
-        outcome = pool.install(|| cases::run(&model, &outline));
-        seconds.push(start.elapsed().as_secs_f64());
-        let (mut stages, end) = pool.install(|| stages::walk(&model, &outline));
-        assert_eq!(end, stages::end_of(&outcome), "the walk of the bench has left `adapt::run`");
+        let (mut stages, again) = pool.install(|| stages::run(&model, &outline));
+        outcome = again;
         pool.install(|| stages::finish(&mut stages, &model, &outline, &outcome));
         taken.push(stages);
     }
     let stage = |k: usize| median(taken.iter().map(|s| s.seconds[k]).collect());
     let mut row = facts(case, goal, &model, &outcome);
     row["threads"] = json!(n_threads);
-    row["runs"] = json!(seconds.len());
-    row["seconds"] = json!(median(seconds));
+    row["runs"] = json!(taken.len());
+    row["seconds"] = json!(median(taken.iter().map(Stages::computing).collect()));
     for (k, name) in stages::NAMES.into_iter().enumerate() {
         row["stages"][name] = json!(stage(k));
     }
@@ -71,9 +68,7 @@ fn facts(case: Case, goal: Goal, model: &Model, outcome: &Outcome) -> Value {
 
 /// The table.
 pub fn print(rows: &[Value]) {
-    println!(
-        "\nRuns: median time [ms] of `adapt::run`, share of the stages [%], iterations, memory"
-    );
+    println!("\nRuns: median time [ms] of the rounds, share of the stages [%], iterations, memory");
     println!(
         "{:<4} {:>8} {:>2} {:>9} {:>3} {:>9} {:>5} {:>5} {:>5} {:>5} {:>5} | {:>8} {:>8} {:>4} {:>8} {:>6}",
         "case",
@@ -83,7 +78,7 @@ pub fn print(rows: &[Value]) {
         "rd",
         "ms",
         "mesh",
-        "asm",
+        "elem",
         "solve",
         "bound",
         "refi",
