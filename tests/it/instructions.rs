@@ -2,6 +2,8 @@
 //!
 //! Slow (`RUN_SLOW_TESTS=1`), needs valgrind. `UPDATE_EXPECT=1` stores new counts in `validation/bench/instructions.json`.
 
+#![allow(clippy::print_stdout)]
+
 use serde_json::{Value, json};
 use std::path::{Path, PathBuf};
 use std::process::Command;

@@ -59,7 +59,7 @@ fn facts(case: Case, goal: Goal, model: &Model, outcome: &Outcome) -> Value {
     json!({
         "case": case.name, "goal": goal.label(), "unknowns": outcome.space.n_dofs,
         "triangles": outcome.mesh.triangles.len(), "rounds": outcome.rounds.len(),
-        "cg_iterations": efforts.clone().sum::<usize>(), "cg_iterations_last": efforts.last(),
+        "cg_iterations": efforts.sum::<usize>(), "cg_iterations_last": outcome.rounds.last().map(|r| r.effort.n_cg_iterations),
         "width": outcome.bound.relative_width(), "error_of_middle": error,
         "width_by_error_of_low": (ends[1] - ends[0]) / (case.inductance - ends[0]),
         "holds_reference": ends[0] <= case.inductance * (1.0 + 7e-9) && case.inductance * (1.0 - 7e-9) <= ends[1],
