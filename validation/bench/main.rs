@@ -1,6 +1,6 @@
 //! `cargo bench --bench bench`: stage times, iterations, memory, and our solver against a general sparse Cholesky.
 //!
-//! `-- small` leaves the ladder out, `-- iterations` prints the iteration study. Results are printed, ratios first, and kept in
+//! `-- small` leaves the ladder out, `-- only R1` measures one case, `-- iterations` prints the iteration study. Results are printed, ratios first, and kept in
 //! `history/`. Noise floor: on a quiet machine medians repeat to 5 %; the load average is stored beside them.
 #![allow(clippy::print_stdout, clippy::unwrap_used)]
 
@@ -27,15 +27,16 @@ fn main() {
     match words.as_slice() {
         ["memory", case, goal] => memory::child(case, goal),
         ["iterations"] => print_iterations(&iterations_study(1_000_000)),
-        ["small"] => bench(&[], 30_000),
-        _ => bench(&LADDER, 1_000_000),
+        ["small"] => bench(&CASES, &[], 30_000),
+        ["only", name] => bench(&[cases::case(name)], &LADDER, 0),
+        _ => bench(&CASES, &LADDER, 1_000_000),
     }
 }
 
-fn bench(ladder: &[usize], n_unknowns_max: usize) {
+fn bench(chosen: &[Case], ladder: &[usize], n_unknowns_max: usize) {
     let facts = history::facts();
     let mut plan: Vec<(Case, Goal)> = Vec::new();
-    for case in CASES {
+    for &case in chosen {
         plan.extend(INTERVALS.map(|i| (case, Goal::Interval(i))));
         if ["R1", "R8"].contains(&case.name) {
             plan.extend(ladder.iter().map(|&n| (case, Goal::Unknowns(n))));
