@@ -5,8 +5,8 @@ use gapwright::adapt::Outcome;
 use gapwright::fem::assemble;
 use gapwright::mesh::fans::Fans;
 use gapwright::sparse::cg::dot;
-use gapwright::sparse::matrix::multiply;
-use gapwright::sparse::{Matrix, Stop, conjugate_gradients};
+use gapwright::sparse::{Multilevel, Stop, Swept, Workspace};
+use std::cell::RefCell;
 
 /// Relative error of the energy, ‖x − x*‖²_A/‖x*‖²_A, that counts as solved.
 pub const ENERGY_ERROR: f64 = 1e-10;
@@ -16,8 +16,9 @@ pub const N_ITERATIONS_AIM: usize = 40;
 /// The last round's system, ready to be solved again from zero.
 pub struct LastSystem<'a> {
     pub outcome: &'a Outcome,
-    pub matrix: Matrix,
+    pub matrix: Swept,
     pub load: Vec<f64>,
+    work: RefCell<Workspace>,
 }
 
 /// Iterations from zero on one matrix.
@@ -38,19 +39,16 @@ impl<'a> LastSystem<'a> {
         let fans = Fans::new(&outcome.mesh);
         let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements);
         let load = assemble::load(&outcome.mesh, &outcome.space, &outcome.coefficients);
-        LastSystem { outcome, matrix, load }
+        LastSystem { outcome, matrix: Swept::new(matrix), load, work: RefCell::default() }
     }
 
     /// The iterate from zero after `n_iterations_max` iterations or at the wanted decrease, and how many were used.
     pub fn solve(&self, decrease: f64, n_iterations_max: usize) -> (Vec<f64>, usize) {
-        let hierarchy = &self.outcome.hierarchy;
-        let mut work = hierarchy.workspace();
-        let mut precondition =
-            |r: &[f64], z: &mut [f64]| hierarchy.precondition(&self.matrix, &mut work, r, z);
+        let mut work = self.work.borrow_mut();
         let stop = Stop { decrease, n_iterations_max };
         let mut x = vec![0.0; self.load.len()];
-        let used =
-            conjugate_gradients(&self.matrix, &self.load, &mut x, &stop, 0.0, &mut precondition);
+        let used = Multilevel::new(&self.matrix, &self.outcome.hierarchy, &mut work)
+            .solve(&self.load, &mut x, &stop, 0.0);
         let n_iterations = used.map_or(n_iterations_max, |c| c.n_iterations);
         (x, n_iterations)
     }
@@ -63,7 +61,7 @@ impl<'a> LastSystem<'a> {
 
     fn square(&self, x: &[f64]) -> f64 {
         let mut product = vec![0.0; x.len()];
-        multiply(&self.matrix, x, &mut product);
+        self.matrix.multiply(x, &mut product);
         dot(x, &product)
     }
 

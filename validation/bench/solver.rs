@@ -17,7 +17,7 @@ pub fn measure(case: Case, goal: Goal) -> Value {
     pool.install(|| {
         let outcome = cases::run(&model, &outline);
         let system = LastSystem::new(&outcome);
-        let columns = direct::columns(&system.matrix);
+        let columns = direct::columns(system.matrix.matrix());
         let exact = direct::solve(&columns, &system.load).x;
         let n_exact = system.fewest(&exact, ENERGY_ERROR, N_ENOUGH);
         let n_norm = system.fewest(&exact, ENERGY_ERROR * ENERGY_ERROR, N_ENOUGH);
@@ -34,7 +34,7 @@ pub fn measure(case: Case, goal: Goal) -> Value {
         let step = |k: usize| median(steps.iter().map(|s| s.seconds[k]).collect());
         json!({
             "case": case.name, "goal": goal.label(), "unknowns": outcome.space.n_dofs,
-            "entries": system.matrix.nnz(), "factor_entries": steps[0].n_factor,
+            "entries": system.matrix.matrix().nnz(), "factor_entries": steps[0].n_factor,
             "ratio_exact": general / ours, "ratio_norm": general / norm,
             "ratio_needed": general / needed,
             "cg_norm_seconds": norm, "cg_norm_iterations": n_norm,
