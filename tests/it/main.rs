@@ -2,11 +2,13 @@
 #![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod architecture;
+mod bench_smoke;
 mod cases;
 mod cli;
 mod forces;
 mod guarantee;
 mod hot_spots;
+mod instructions;
 mod joint;
 mod ledger;
 mod messages;
