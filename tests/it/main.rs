@@ -6,3 +6,4 @@ mod messages;
 mod mutations;
 mod sheets;
 mod tidy;
+mod torture;
