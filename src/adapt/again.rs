@@ -5,9 +5,9 @@ use crate::bound::{self, Bound, Field};
 use crate::fem::{Moments, Rules};
 use crate::mesh::fans::Fans;
 use crate::solve::{self, Effort, Solution, SolveError, System};
-use crate::units::Joule;
+use crate::units::{AmperePerSquareMeter, Joule};
 
-/// A field at scaled currents on an outcome's mesh.
+/// A field at other currents on an outcome's mesh.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Again {
     pub solution: Solution,
@@ -25,32 +25,59 @@ pub fn at_factor(
     start: &Solution,
     width: f64,
 ) -> Result<Again, SolveError> {
-    let mut coefficients = outcome.coefficients.clone();
-    coefficients.current_density.iter_mut().for_each(|j| *j *= factor);
-    let rules = Rules::working();
+    let density: Vec<f64> =
+        outcome.coefficients.current_density.iter().map(|j| j * factor).collect();
+    at_density(outcome, &density, start, width)
+}
+
+/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
+///
+/// The outcome itself stays as it is, but for the preconditioner's finest level.
+pub fn at_density(
+    outcome: &mut Outcome,
+    density: &[AmperePerSquareMeter],
+    start: &Solution,
+    width: f64,
+) -> Result<Again, SolveError> {
     let (mut solution, mut moments) = (start.clone(), outcome.moments.clone());
-    let system = System {
-        mesh: &outcome.mesh,
-        space: &outcome.space,
-        coefficients: &coefficients,
-        rules: &rules,
-    };
-    let effort = solve::solve(
-        &system,
-        &mut moments,
-        &mut outcome.hierarchy,
-        &mut solution,
-        ALGEBRAIC_SHARE * width,
-    )?;
-    let field = Field {
-        mesh: &outcome.mesh,
-        coefficients: &coefficients,
-        rules: &rules,
-        moments: &moments,
-        solution: &solution,
-    };
-    let bound = bound::bound(&field, &Fans::new(&outcome.mesh));
+    let before = std::mem::replace(&mut outcome.coefficients.current_density, density.to_vec());
+    let result = solve_and_bound(outcome, &mut solution, &mut moments, width);
+    outcome.coefficients.current_density = before;
+    let (effort, bound) = result?;
     Ok(Again { solution, moments, bound, effort })
+}
+
+fn solve_and_bound(
+    outcome: &mut Outcome,
+    solution: &mut Solution,
+    moments: &mut [Moments],
+    width: f64,
+) -> Result<(Effort, Bound), SolveError> {
+    let rules = Rules::working();
+    let Outcome { mesh, space, coefficients, hierarchy, .. } = outcome;
+    let system = System { mesh, space, coefficients, rules: &rules };
+    let effort = solve::solve(&system, moments, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
+    let field = Field { mesh, coefficients, rules: &rules, moments, solution };
+    Ok((effort, bound::bound(&field, &Fans::new(mesh))))
+}
+
+/// Puts a field at the current densities `density` into the outcome's place, on the same mesh.
+///
+/// What belonged to the old currents goes: `work_rate_ends` becomes `None`; `rounds` stays as history.
+pub fn adopt(outcome: &mut Outcome, density: &[AmperePerSquareMeter], again: Again) {
+    outcome.coefficients.current_density.copy_from_slice(density);
+    outcome.solution = again.solution;
+    outcome.moments = again.moments;
+    outcome.bound = again.bound;
+    outcome.work_rate_ends = None;
+}
+
+/// The field multiplied by `factor`: the start for currents multiplied by it, and the answer where nothing saturates.
+pub fn scaled(solution: &Solution, factor: f64) -> Solution {
+    Solution {
+        vertex: solution.vertex.iter().map(|v| v * factor).collect(),
+        edge: solution.edge.iter().map(|v| v * factor).collect(),
+    }
 }
 
 /// Guaranteed ends of dW'/ds at s = 1, where s scales all currents (with one current: λ·I).
@@ -60,12 +87,11 @@ pub fn at_factor(
 pub fn work_rate_ends(outcome: &mut Outcome) -> Result<[Joule; 2], SolveError> {
     let width = outcome.bound.relative_width();
     let step = width.max(1e-12).sqrt().min(0.5);
-    let scaled = |solution: &Solution, factor: f64| Solution {
-        vertex: solution.vertex.iter().map(|v| v * factor).collect(),
-        edge: solution.edge.iter().map(|v| v * factor).collect(),
-    };
-    let below = at_factor(outcome, 1.0 - step, &scaled(&outcome.solution, 1.0 - step), width)?;
-    let above = at_factor(outcome, 1.0 + step, &scaled(&outcome.solution, 1.0 + step), width)?;
+    let [below, above] = [1.0 - step, 1.0 + step].map(|factor| {
+        let start = scaled(&outcome.solution, factor);
+        at_factor(outcome, factor, &start, width)
+    });
+    let (below, above) = (below?, above?);
     Ok([
         (outcome.bound.low - below.bound.high) / step,
         (above.bound.high - outcome.bound.low) / step,

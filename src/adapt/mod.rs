@@ -97,66 +97,87 @@ pub fn coefficients(model: &Model, regions: &[Region]) -> Coefficients {
 
 /// The rounds themselves, from any conforming mesh and start field.
 pub fn rounds(
-    mut mesh: Mesh,
+    mesh: Mesh,
     coefficients: Coefficients,
-    mut solution: Solution,
+    solution: Solution,
     rules: &Rules,
     accuracy: &Accuracy,
     progress: &mut dyn FnMut(&Round),
 ) -> Result<Outcome, AdaptError> {
-    let mut hierarchy = Hierarchy::default();
-    let mut moments: Vec<Moments> = Vec::new();
-    let mut changed: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    let mut rounds: Vec<Round> = Vec::new();
+    let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
+    let mut outcome = Outcome {
+        mesh,
+        space: Space::default(),
+        coefficients,
+        solution,
+        moments: Vec::new(),
+        bound: Bound::default(),
+        rounds: Vec::new(),
+        hierarchy: Hierarchy::default(),
+        work_rate_ends: None,
+        reached: false,
+    };
     // Before the first bound nothing is known; 1 means an interval as wide as the value.
-    let mut width: f64 = 1.0;
-    loop {
-        let space = Space::new(&mesh);
-        update_constant(&mesh, &coefficients, rules, &changed, &mut moments);
-        let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
-        let system = System { mesh: &mesh, space: &space, coefficients: &coefficients, rules };
-        let effort = solve::solve(&system, &mut moments, &mut hierarchy, &mut solution, decrease)?;
+    round(&mut outcome, &all, 1.0, rules, accuracy, progress)?;
+    refine(&mut outcome, rules, accuracy, progress)?;
+    Ok(outcome)
+}
 
-        let fans = Fans::new(&mesh);
-        let field = Field {
-            mesh: &mesh,
-            coefficients: &coefficients,
-            rules,
-            moments: &moments,
-            solution: &solution,
-        };
-        let bound = bound::bound(&field, &fans);
-        width = bound.relative_width();
-        let round = Round {
-            n_unknowns: space.n_dofs,
-            n_triangles: mesh.triangles.len(),
-            effort,
-            low: bound.low,
-            high: bound.high,
-        };
-        progress(&round);
-        rounds.push(round);
-
-        let reached = width <= accuracy.interval;
-        let n_marked_max = mark::affordable(space.n_dofs, accuracy.n_unknowns_max);
-        if reached || n_marked_max == 0 || rounds.len() == N_ROUNDS_MAX {
-            let work_rate_ends = None;
-            return Ok(Outcome {
-                mesh,
-                space,
-                coefficients,
-                solution,
-                moments,
-                bound,
-                rounds,
-                hierarchy,
-                work_rate_ends,
-                reached,
-            });
+/// Goes on with the rounds from the outcome as it stands until its interval is as narrow as wanted.
+///
+/// Sets `reached`; stops without an error where `n_unknowns_max` leaves no room. An outcome that is narrow enough is
+/// left as it is.
+pub fn refine(
+    outcome: &mut Outcome,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(&Round),
+) -> Result<(), AdaptError> {
+    for _ in 1..N_ROUNDS_MAX {
+        let width = outcome.bound.relative_width();
+        outcome.reached = width <= accuracy.interval;
+        let n_marked_max = mark::affordable(outcome.space.n_dofs, accuracy.n_unknowns_max);
+        if outcome.reached || n_marked_max == 0 {
+            return Ok(());
         }
-        let mut marked = mark::doerfler(&bound.shares, MARKED_SHARE);
+        let mut marked = mark::doerfler(&outcome.bound.shares, MARKED_SHARE);
         marked.truncate(n_marked_max);
+        let solution = &mut outcome.solution;
         let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
-        changed = bisect(&mut mesh, &marked, &mut carried);
+        let changed = bisect(&mut outcome.mesh, &marked, &mut carried);
+        round(outcome, &changed, width, rules, accuracy, progress)?;
     }
+    outcome.reached = outcome.bound.relative_width() <= accuracy.interval;
+    Ok(())
+}
+
+/// One solve and bound on the outcome's mesh, of which the triangles `changed` are new.
+///
+/// - `width`: relative width before, which sets the algebraic accuracy
+fn round(
+    outcome: &mut Outcome,
+    changed: &[u32],
+    width: f64,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(&Round),
+) -> Result<(), AdaptError> {
+    let Outcome { mesh, space, coefficients, solution, moments, bound, hierarchy, .. } = outcome;
+    *space = Space::new(mesh);
+    update_constant(mesh, coefficients, rules, changed, moments);
+    let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
+    let system = System { mesh, space, coefficients, rules };
+    let effort = solve::solve(&system, moments, hierarchy, solution, decrease)?;
+    let fans = Fans::new(mesh);
+    *bound = bound::bound(&Field { mesh, coefficients, rules, moments, solution }, &fans);
+    let round = Round {
+        n_unknowns: space.n_dofs,
+        n_triangles: mesh.triangles.len(),
+        effort,
+        low: bound.low,
+        high: bound.high,
+    };
+    progress(&round);
+    outcome.rounds.push(round);
+    Ok(())
 }

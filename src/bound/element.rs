@@ -3,7 +3,7 @@
 use super::{Field, Flux};
 use crate::fem::assemble::LOCAL_EDGES;
 use crate::fem::element::{Frame, GRADIENT, POSITION, Pair, Tensor, blend, contract, dot, wedge};
-use crate::fem::moments::{PAIR_INDEX, flux_density, rule_of};
+use crate::fem::moments::{PAIR_INDEX, rule_of};
 use crate::mesh::Mesh;
 use crate::model::Law;
 
@@ -144,29 +144,20 @@ pub fn wedge_integral(u: &[Pair; 3], form: &[Pair; 3]) -> f64 {
     (wedge(sum(u), sum(form)) + diagonal) / 24.0
 }
 
-/// ∫ r·w(B), ∫ r·w*(|τ|) and the Fenchel–Young share of a saturating triangle, by quadrature (eq. 4).
-pub fn saturating_energies(
-    field: &Field,
-    t: usize,
-    law: &Law,
-    u: &[Pair; 3],
-    form: &[Pair; 3],
-) -> (f64, f64, f64) {
+/// ∫ r·w*(|τ|) of a saturating triangle, by quadrature (eq. 4).
+///
+/// With ∫ r·w(B) by the same points and ∫ ∇ψ·τ, which they integrate exactly, the share is a sum of Fenchel–Young
+/// defects, each ≥ 0.
+pub fn saturating_coenergy(field: &Field, t: usize, law: &Law, form: &[Pair; 3]) -> f64 {
     let frame = Frame::new(field.mesh, t);
     let rule = rule_of(field.rules, &frame);
-    let (mut primal, mut dual, mut share) = (0.0, 0.0, 0.0);
+    let mut dual = 0.0;
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
         let radius = frame.position(lambda).r;
-        let gradient = blend(lambda, u);
         let omega = blend(lambda, form);
-        let b = flux_density(&frame, radius, gradient);
         // |τ|² = ω·S ω/|det J| in the inside chart; |τ| is H.
         let h = (contract(omega, frame.metric, omega) / frame.det_abs).max(0.0).sqrt();
-        let volume = weight * radius * frame.det_abs;
-        let (energy, coenergy) = (law.energy_density(b), law.coenergy_density(h));
-        primal += volume * energy;
-        dual += volume * coenergy;
-        share += volume * (energy + coenergy) - weight * wedge(gradient, omega);
+        dual += weight * radius * frame.det_abs * law.coenergy_density(h);
     }
-    (primal, dual, share)
+    dual
 }

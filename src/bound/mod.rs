@@ -34,7 +34,7 @@ pub struct Flux {
 }
 
 /// The guaranteed ends of the coenergy W' and where the gap between them sits.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct Bound {
     /// Ends with the margin [J].
     pub low: Joule,
@@ -64,33 +64,43 @@ pub struct Field<'a> {
 
 /// Equilibrates the flux of the field and evaluates both ends.
 pub fn bound(field: &Field, fans: &Fans) -> Bound {
-    let patchwork: Vec<Patchwork> = (0..field.mesh.triangles.len())
+    let (patchwork, primal): (Vec<Patchwork>, Vec<f64>) = (0..field.mesh.triangles.len())
         .into_par_iter()
-        .with_min_len(512)
-        .map(|t| Patchwork::new(field, t, &flux_moments(field, t)))
-        .collect();
+        .with_min_len(256)
+        .map(|t| {
+            let (flux, primal) = flux_and_energy(field, t);
+            (Patchwork::new(field, t, &flux), primal)
+        })
+        .unzip();
     let mut flux = patch::equilibrate(field.mesh, fans, &patchwork);
     tree::close_divergence(field.mesh, fans, &field.coefficients.current_density, &mut flux);
-    evaluate(field, &patchwork, flux)
+    evaluate(field, &patchwork, &primal, flux)
 }
 
-/// w_m = ∫ λ_m σ̂ on triangle t.
-fn flux_moments(field: &Field, t: usize) -> [[f64; 2]; 3] {
+/// w_m = ∫ λ_m σ̂ and ∫ r·w(B) on triangle t.
+fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
     let gradients = field.solution.gradients(field.mesh, t);
     match &field.coefficients.reluctivity[field.mesh.regions[t].0 as usize] {
-        Reluctivity::Constant(_) => linear_flux(&field.moments[t].k, &gradients),
+        Reluctivity::Constant(_) => {
+            let k = &field.moments[t].k;
+            (linear_flux(k, &gradients), linear_energy(k, &gradients))
+        }
         Reluctivity::Saturating(law) => {
             let frame = Frame::new(field.mesh, t);
-            saturating_flux(&frame, rule_of(field.rules, &frame), law, &gradients).0
+            saturating_flux(&frame, rule_of(field.rules, &frame), law, &gradients)
         }
     }
 }
 
-/// Per triangle: (low, high, share)/2π.
-fn evaluate(field: &Field, patchwork: &[Patchwork], flux: Flux) -> Bound {
+/// How far below zero a share may be, as a share of the triangle's own energies: the three terms of a share cancel
+/// to rounding where the field is exact, and a Gram matrix of 6 × 36 products rounds to about 1e-13 of them.
+const SHARE_ROUNDING: f64 = 1e-11;
+
+/// Per triangle: (low, high, share)/2π; `primal` is ∫ r·w(B).
+fn evaluate(field: &Field, patchwork: &[Patchwork], primal: &[f64], flux: Flux) -> Bound {
     let parts: Vec<[f64; 3]> = (0..patchwork.len())
         .into_par_iter()
-        .with_min_len(512)
+        .with_min_len(256)
         .map(|t| {
             let mesh = field.mesh;
             let gradients = field.solution.gradients(mesh, t);
@@ -98,18 +108,17 @@ fn evaluate(field: &Field, patchwork: &[Patchwork], flux: Flux) -> Bound {
             let source = field.solution.integral(mesh, t)
                 * field.coefficients.current_density[mesh.regions[t].0 as usize];
             let product = element::wedge_integral(&gradients, &form);
-            let (primal, dual, share) =
-                match &field.coefficients.reluctivity[mesh.regions[t].0 as usize] {
-                    Reluctivity::Constant(_) => {
-                        let primal = linear_energy(&field.moments[t].k, &gradients);
-                        let dual = patchwork[t].half_square(mesh, t, &flux);
-                        (primal, dual, dual - product + primal)
-                    }
-                    Reluctivity::Saturating(law) => {
-                        element::saturating_energies(field, t, law, &gradients, &form)
-                    }
-                };
-            [source - primal, dual, share]
+            let dual = match &field.coefficients.reluctivity[mesh.regions[t].0 as usize] {
+                Reluctivity::Constant(_) => patchwork[t].half_square(mesh, t, &flux),
+                Reluctivity::Saturating(law) => element::saturating_coenergy(field, t, law, &form),
+            };
+            let share = dual - product + primal[t];
+            debug_assert!(
+                -SHARE_ROUNDING * (dual + primal[t]) <= share,
+                "triangle {t} has the share {share:e} beside {dual:e} and {:e}",
+                primal[t]
+            );
+            [source - primal[t], dual, share]
         })
         .collect();
     let sum = |k: usize| TAU * parts.iter().map(|p| p[k]).sum::<f64>();

@@ -38,9 +38,11 @@ pub fn close_divergence(mesh: &Mesh, fans: &Fans, current_density: &[f64], flux:
         let t = t as usize;
         let k = parent[t] as usize;
         let e = mesh.triangle_edges[t][k] as usize;
+        // Set, not corrected: the old value of a wild iterate would leave its own rounding behind.
+        flux.through[e] = 0.0;
         let rest = defect(mesh, current_density, flux, t);
         let is_along = mesh.edges[e][0] == mesh.triangles[t][k];
-        flux.through[e] += if is_along { -rest } else { rest };
+        flux.through[e] = if is_along { -rest } else { rest };
     }
 }
 

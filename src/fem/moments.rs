@@ -88,29 +88,54 @@ pub fn flux_density(frame: &Frame, radius: f64, u: Pair) -> f64 {
     (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / radius
 }
 
-/// Moments of the tangent tensor (ν·I + (dH/dB − ν)·b̂b̂ᵀ)/r at the field with vertex gradients `gradients` (eq. 12).
-pub fn tangent_moments(frame: &Frame, rule: &Rule, law: &Law, gradients: &[Pair; 3]) -> Moments {
-    let mut moments = Moments::default();
+/// The tangent tensor (ν·I + (dH/dB − ν)·b̂b̂ᵀ)/r in reference coordinates at reference gradient u (eq. 12).
+#[inline]
+fn tangent_tensor(frame: &Frame, radius: f64, u: Pair, nu: f64, differential: f64) -> Tensor {
+    let mut k = frame.metric.map(|s| nu / radius * s);
+    let square = contract(u, frame.metric, u);
+    if 0.0 < square {
+        let su = apply(frame.metric, u);
+        let extra = (differential - nu) / (radius * square);
+        k[0] += extra * su[0] * su[0];
+        k[1] += extra * su[0] * su[1];
+        k[2] += extra * su[1] * su[1];
+    }
+    k
+}
+
+/// What a Newton step needs of a triangle with a saturating law.
+#[derive(Debug, Clone, Copy)]
+pub struct Saturated {
+    /// w_m = ∫ λ_m σ̂ with σ̂ = K̂(B)∇ψ.
+    pub flux: [Pair; 3],
+    /// ∫ r·w(B)·|det J|.
+    pub energy: f64,
+    /// Moments of the tangent tensor.
+    pub tangent: Moments,
+}
+
+/// Flux, energy and tangent moments of a triangle with a saturating law, with one inversion of the law a point.
+pub fn saturated(frame: &Frame, rule: &Rule, law: &Law, gradients: &[Pair; 3]) -> Saturated {
+    let (mut flux, mut energy) = ([[0.0; 2]; 3], 0.0);
+    let mut tangent = Moments::default();
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
         let radius = frame.position(lambda).r;
         let u = blend(lambda, gradients);
-        let (nu, differential) = law.reluctivity(flux_density(frame, radius, u));
-        let mut k = frame.metric.map(|s| nu / radius * s);
-        let square = contract(u, frame.metric, u);
-        if 0.0 < square {
-            let su = apply(frame.metric, u);
-            let extra = (differential - nu) / (radius * square);
-            k[0] += extra * su[0] * su[0];
-            k[1] += extra * su[0] * su[1];
-            k[2] += extra * su[1] * su[1];
+        let at = law.at(flux_density(frame, radius, u));
+        energy += weight * radius * frame.det_abs * at.energy;
+        let su = apply(frame.metric, u);
+        let kappa = weight * at.reluctivity / radius;
+        for m in 0..3 {
+            flux[m][0] += kappa * lambda[m] * su[0];
+            flux[m][1] += kappa * lambda[m] * su[1];
         }
-        moments.add(weight, lambda, k);
+        tangent.add(weight, lambda, tangent_tensor(frame, radius, u, at.reluctivity, at.tangent));
     }
-    moments.clear_axis_pairs(frame);
-    moments
+    tangent.clear_axis_pairs(frame);
+    Saturated { flux, energy, tangent }
 }
 
-/// w_m = ∫ λ_m σ̂ with σ̂ = K̂(B)∇ψ, and ∫ r·w(B)·|det J|, of a triangle with a saturating law.
+/// w_m and ∫ r·w(B)·|det J| alone: what the bound and the identities need.
 pub fn saturating_flux(
     frame: &Frame,
     rule: &Rule,
@@ -121,11 +146,10 @@ pub fn saturating_flux(
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
         let radius = frame.position(lambda).r;
         let u = blend(lambda, gradients);
-        let b = flux_density(frame, radius, u);
-        let (nu, _) = law.reluctivity(b);
-        energy += weight * radius * frame.det_abs * law.energy_density(b);
+        let at = law.at(flux_density(frame, radius, u));
+        energy += weight * radius * frame.det_abs * at.energy;
         let su = apply(frame.metric, u);
-        let kappa = weight * nu / radius;
+        let kappa = weight * at.reluctivity / radius;
         for m in 0..3 {
             flux[m][0] += kappa * lambda[m] * su[0];
             flux[m][1] += kappa * lambda[m] * su[1];

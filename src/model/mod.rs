@@ -6,7 +6,7 @@ mod form;
 mod law;
 
 pub use form::Dimensions;
-pub use law::{BhTable, Interpolation, Law, LawError};
+pub use law::{BhTable, Interpolation, Law, LawError, LawPoint};
 
 use crate::units::{Ampere, Henry, Meter};
 

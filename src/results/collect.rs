@@ -50,7 +50,10 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         .collect();
     let incremental_inductance = match is_linear {
         true => value,
-        false => carrier.and_then(|w| linkage::incremental(model, outcome, w)),
+        false => carrier.and_then(|w| {
+            let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
+            linkage::tangent(outcome, &unit, &unit)
+        }),
     };
     Results {
         title: model.title.clone(),

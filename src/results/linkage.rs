@@ -4,11 +4,12 @@ use super::Guaranteed;
 use super::collect::{flux_linkage, single_carrier};
 use super::sample::Sampler;
 use crate::adapt::Outcome;
-use crate::fem::assemble;
-use crate::model::Model;
+use crate::fem::{Coefficients, assemble};
+use crate::geometry::{Outline, Region, RegionKind};
+use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
 use crate::sparse::{Stop, conjugate_gradients};
-use crate::units::{Henry, Weber};
+use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
 /// λ of one winding: best value, and guaranteed ends where there are any.
@@ -49,21 +50,42 @@ pub fn apparent(model: &Model, linkage: &Linkage, w: usize) -> Guaranteed {
     Guaranteed { value, low: a.min(b), high: a.max(b) }
 }
 
-/// dλ_w/dI_w at the bias from the tangent problem A_t y = b_w of a unit current, λ' = 2π b_w·y (eq. 14) [H].
-pub fn incremental(model: &Model, outcome: &Outcome, w: usize) -> Option<Henry> {
-    let mut unit = outcome.coefficients.clone();
-    let current = model.windings[w].current;
-    // Only the sections of this winding carry current (the caller made sure), so scaling all is scaling it.
-    unit.current_density.iter_mut().for_each(|j| *j /= current);
-    let load = assemble::load(&outcome.mesh, &outcome.space, &unit);
+/// Current density of every region when winding w alone carries 1 A [A/m²].
+pub fn unit_density(model: &Model, outline: &Outline, w: usize) -> Vec<AmperePerSquareMeter> {
+    let density = |region: &Region| match region.kind {
+        RegionKind::Winding { winding, section } if winding == w => {
+            let Section { turns, radii, heights } = model.windings[w].sections[section];
+            turns / ((radii[1] - radii[0]) * (heights[1] - heights[0]))
+        }
+        _ => 0.0,
+    };
+    outline.regions.iter().map(density).collect()
+}
+
+/// The load vector b of given current densities on the outcome's mesh; for 1 A in a winding its λ is 2π b·x.
+pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
+    // `load` reads the densities only.
+    let coefficients =
+        Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
+    assemble::load(&outcome.mesh, &outcome.space, &coefficients)
+}
+
+/// Relative error of the incremental inductance that its linear solve may add; far below any interval.
+const TANGENT_DECREASE: f64 = 1e-10;
+
+/// dλ_w/dI_w at the bias from the tangent problem A_t y = b, λ' = 2π b_w·y (eq. 14) [H].
+///
+/// - `unit`: load of 1 A in winding w alone
+/// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
+pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
     let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.moments);
     let mut work = outcome.hierarchy.workspace();
-    let mut y = vec![0.0; load.len()];
-    let stop = Stop { decrease: 1e-12, n_iterations_max: 2000 };
+    let mut y = vec![0.0; rate.len()];
+    let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
     let mut precondition =
         |r: &[f64], z: &mut [f64]| outcome.hierarchy.precondition(&matrix, &mut work, r, z);
-    conjugate_gradients(&matrix, &load, &mut y, &stop, 0.0, &mut precondition).ok()?;
-    Some(TAU * dot(&load, &y))
+    conjugate_gradients(&matrix, rate, &mut y, &stop, 0.0, &mut precondition).ok()?;
+    Some(TAU * dot(unit, &y))
 }
 
 fn sorted([a, b]: [f64; 2]) -> [f64; 2] {

@@ -1,8 +1,8 @@
 //! One field solution on one mesh: a single CG solve for constant laws, Newton with backtracking otherwise.
 
 use super::Solution;
-use crate::fem::element::Frame;
-use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux, tangent_moments};
+use crate::fem::element::{Frame, Pair};
+use crate::fem::moments::{Saturated, linear_energy, linear_flux, rule_of, saturated};
 use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space, assemble, space};
 use crate::mesh::Mesh;
 use crate::sparse::cg::dot;
@@ -100,9 +100,10 @@ fn newton(
     decrease: f64,
 ) -> Result<Effort, SolveError> {
     let mut effort = Effort::default();
-    let mut state = State::new(system, moments, load, x);
+    let problem = Problem { system, load, saturating: saturating_triangles(system) };
+    let mut state = State::new(&problem, moments, x);
     loop {
-        update_tangent(system, moments, &state.solution);
+        state.store_tangents(&problem, moments);
         let matrix = assemble::stiffness(system.mesh, system.space, moments);
         set_level(system, hierarchy, &matrix, interpolation)?;
         let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
@@ -119,7 +120,7 @@ fn newton(
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);
         let before = state.value;
-        let Some(next) = backtrack(system, moments, load, x, &step, predicted, before) else {
+        let Some(next) = backtrack(&problem, moments, x, &step, predicted, before) else {
             // No step lowers F: at the rounding floor that is convergence, elsewhere a stall.
             return match predicted <= 1e-12 * scale {
                 true => Ok(effort),
@@ -128,6 +129,7 @@ fn newton(
         };
         state = next;
         if 0.5 * predicted <= decrease * 2.0 * state.value.abs() {
+            state.store_tangents(&problem, moments);
             return Ok(effort);
         }
         if effort.n_newton_steps == N_NEWTON_MAX {
@@ -140,11 +142,27 @@ fn stalled(effort: &Effort, predicted: f64, scale: f64, wanted: f64) -> SolveErr
     SolveError::Stalled { n_steps: effort.n_newton_steps, decrement: predicted / scale, wanted }
 }
 
+/// What stays the same over the steps.
+struct Problem<'a> {
+    system: &'a System<'a>,
+    load: &'a [f64],
+    /// Triangles with a saturating law, ascending.
+    saturating: Vec<u32>,
+}
+
+fn saturating_triangles(system: &System) -> Vec<u32> {
+    let saturates = |t: &u32| matches!(law_of(system, *t as usize), Reluctivity::Saturating(_));
+    (0..system.mesh.triangles.len() as u32).filter(saturates).collect()
+}
+
+fn law_of<'a>(system: &System<'a>, t: usize) -> &'a Reluctivity {
+    &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize]
+}
+
 /// Halves the step until F falls enough; moves `x` and returns the new state.
 fn backtrack(
-    system: &System,
+    problem: &Problem,
     moments: &[Moments],
-    load: &[f64],
     x: &mut Vec<f64>,
     step: &[f64],
     predicted: f64,
@@ -153,7 +171,7 @@ fn backtrack(
     let mut length = 1.0;
     for _ in 0..N_HALVINGS_MAX {
         let trial: Vec<f64> = x.iter().zip(step).map(|(x, d)| x + length * d).collect();
-        let state = State::new(system, moments, load, &trial);
+        let state = State::new(problem, moments, &trial);
         if state.value <= before - ARMIJO * length * predicted {
             *x = trial;
             return Some(state);
@@ -163,59 +181,76 @@ fn backtrack(
     None
 }
 
-/// F/2π and its derivative's field part at one x.
+/// F/2π, its derivative's field part and its tangent at one x: one inversion of the law a quadrature point.
 struct State {
-    solution: Solution,
     /// F/2π = Σ energy − bᵀx.
     value: f64,
     /// g_i = ∫ ∇φ_i·σ̂.
     force: Vec<f64>,
+    /// Tangent moments of the saturating triangles.
+    tangents: Vec<Moments>,
 }
 
 impl State {
-    fn new(system: &System, moments: &[Moments], load: &[f64], x: &[f64]) -> State {
+    /// - `moments`: of the triangles with constant laws
+    fn new(problem: &Problem, moments: &[Moments], x: &[f64]) -> State {
+        let system = problem.system;
         let (vertex, edge) = system.space.expand(system.mesh, x);
         let solution = Solution { vertex, edge };
-        let parts: Vec<_> = (0..system.mesh.triangles.len())
-            .into_par_iter()
-            .with_min_len(512)
-            .map(|t| flux_and_energy(system, moments, &solution, t))
-            .collect();
-        let energy: f64 = parts.iter().map(|p| p.1).sum();
-        let force = assemble::residual_of_flux(system.mesh, system.space, |t| parts[t].0);
-        State { solution, value: energy - dot(load, x), force }
+        let parts = linear_parts(system, moments, &solution);
+        let (mut flux, mut energy): (Vec<_>, Vec<_>) = parts.into_iter().unzip();
+        let bent: Vec<Saturated> = evaluate_saturating(system, &problem.saturating, &solution);
+        for (&t, part) in problem.saturating.iter().zip(&bent) {
+            (flux[t as usize], energy[t as usize]) = (part.flux, part.energy);
+        }
+        let force = assemble::residual_of_flux(system.mesh, system.space, |t| flux[t]);
+        let value = energy.iter().sum::<f64>() - dot(problem.load, x);
+        State { value, force, tangents: bent.into_iter().map(|p| p.tangent).collect() }
+    }
+
+    fn store_tangents(&self, problem: &Problem, moments: &mut [Moments]) {
+        for (&t, tangent) in problem.saturating.iter().zip(&self.tangents) {
+            moments[t as usize] = *tangent;
+        }
     }
 }
 
-fn flux_and_energy(
+/// Flux moments and energy of the triangles with constant laws; zeros elsewhere.
+fn linear_parts(
     system: &System,
     moments: &[Moments],
     solution: &Solution,
-    t: usize,
-) -> ([[f64; 2]; 3], f64) {
-    let gradients = solution.gradients(system.mesh, t);
-    match &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize] {
+) -> Vec<([Pair; 3], f64)> {
+    let part = |t: usize| match law_of(system, t) {
         Reluctivity::Constant(_) => {
+            let gradients = solution.gradients(system.mesh, t);
             (linear_flux(&moments[t].k, &gradients), linear_energy(&moments[t].k, &gradients))
         }
-        Reluctivity::Saturating(law) => {
-            let frame = Frame::new(system.mesh, t);
-            saturating_flux(&frame, rule_of(system.rules, &frame), law, &gradients)
-        }
-    }
+        Reluctivity::Saturating(_) => ([[0.0; 2]; 3], 0.0),
+    };
+    (0..system.mesh.triangles.len()).into_par_iter().with_min_len(2048).map(part).collect()
+}
+
+fn evaluate_saturating(system: &System, triangles: &[u32], solution: &Solution) -> Vec<Saturated> {
+    let part = |&t: &u32| {
+        let t = t as usize;
+        let Reluctivity::Saturating(law) = law_of(system, t) else {
+            unreachable!("triangle {t} has a constant law")
+        };
+        let frame = Frame::new(system.mesh, t);
+        let gradients = solution.gradients(system.mesh, t);
+        saturated(&frame, rule_of(system.rules, &frame), law, &gradients)
+    };
+    triangles.par_iter().with_min_len(128).map(part).collect()
 }
 
 /// Sets the moments of all saturating triangles to the tangent at `solution`.
 pub fn update_tangent(system: &System, moments: &mut [Moments], solution: &Solution) {
-    moments.par_iter_mut().enumerate().with_min_len(512).for_each(|(t, moments)| {
-        if let Reluctivity::Saturating(law) =
-            &system.coefficients.reluctivity[system.mesh.regions[t].0 as usize]
-        {
-            let frame = Frame::new(system.mesh, t);
-            let gradients = solution.gradients(system.mesh, t);
-            *moments = tangent_moments(&frame, rule_of(system.rules, &frame), law, &gradients);
-        }
-    });
+    let triangles = saturating_triangles(system);
+    let parts = evaluate_saturating(system, &triangles, solution);
+    for (&t, part) in triangles.iter().zip(&parts) {
+        moments[t as usize] = part.tangent;
+    }
 }
 
 /// How each vertex unknown follows from its parents: ½, ½; next to the axis ¼ of the off-axis end, since ψ ∝ t².

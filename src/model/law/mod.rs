@@ -31,6 +31,17 @@ pub enum Law {
     Saturation { initial_permeability: f64, flux_density: Tesla },
 }
 
+/// A law at one flux density.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LawPoint {
+    /// ν = H/B [m/H], its limit at B = 0.
+    pub reluctivity: MeterPerHenry,
+    /// dH/dB [m/H].
+    pub tangent: MeterPerHenry,
+    /// w(B) = ∫₀ᴮ H dB [J/m³].
+    pub energy: JoulePerCubicMeter,
+}
+
 impl Law {
     /// B = µ0 µr H. Fails unless µr is a finite number > 0.
     pub fn constant(permeability: f64) -> Result<Law, LawError> {
@@ -94,6 +105,29 @@ impl Law {
         let tangent = 1.0 / slope;
         // Below the smallest normal number the quotient has no digits left, and the limit is exact.
         (if b < f64::MIN_POSITIVE { tangent } else { field / b }, tangent)
+    }
+
+    /// ν, dH/dB and w together: what a Newton step asks at one B, for the price of one inversion of B(H).
+    ///
+    /// The same numbers as [`Law::reluctivity`] and [`Law::energy_density`], to the last bit.
+    pub fn at(&self, b: Tesla) -> LawPoint {
+        let (field, slope, energy) = match self {
+            Law::Constant { permeability } => {
+                let reluctivity = 1.0 / (MU0 * permeability);
+                let energy = self.energy_density(b);
+                return LawPoint { reluctivity, tangent: reluctivity, energy };
+            }
+            Law::Table(table) => table.field_slope_and_energy(b),
+            Law::Saturation { .. } => {
+                let kernel = self.kernel();
+                let field = kernel.field(b);
+                (field, kernel.slope(field), kernel.energy_density_of_field(field))
+            }
+        };
+        let tangent = 1.0 / slope;
+        // As in `reluctivity`: below the smallest normal number the limit is exact.
+        let reluctivity = if b < f64::MIN_POSITIVE { tangent } else { field / b };
+        LawPoint { reluctivity, tangent, energy }
     }
 
     /// w(B) = ∫₀ᴮ H dB [J/m³] for B ≥ 0.

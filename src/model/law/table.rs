@@ -108,6 +108,15 @@ impl BhTable {
         (piece.h + s, piece.slope(s))
     }
 
+    /// H(B), dB/dH and w(B), with one inversion.
+    pub(super) fn field_slope_and_energy(
+        &self,
+        b: Tesla,
+    ) -> (AmperePerMeter, f64, JoulePerCubicMeter) {
+        let (piece, s) = self.at_flux_density(b);
+        (piece.h + s, piece.slope(s), piece.energy + piece.energy_rise(s))
+    }
+
     pub(super) fn flux_density(&self, h: AmperePerMeter) -> Tesla {
         let (piece, s) = self.at_field(h);
         piece.b + piece.rise(s)
