@@ -37,7 +37,7 @@ fn overlaps_name_both_shapes_and_the_place() {
     check_fault(
         &through_plate,
         subject,
-        Some("radii"),
+        Some("heights"),
         &["winding `main` overlaps the upper plate near"],
     );
     let inside_wall = coil([11.0, 12.0], [-1.0, 1.0]);

@@ -9,7 +9,7 @@ use std::collections::BTreeMap;
 use std::time::Instant;
 
 /// Stable words of the refusals that random sections may meet; the class is the word.
-const CLASSES: [&str; 18] = [
+const CLASSES: [&str; 22] = [
     "overlaps",
     "overlap from z",
     "touches itself",
@@ -19,12 +19,16 @@ const CLASSES: [&str; 18] = [
     "are the same point",
     "does not fit",
     "leave no room",
+    "is not below",
+    "cannot be",
     "outside its leg",
     "takes the whole",
     "has room for less than",
     "must lie above",
     "must be larger",
-    "vertices near",
+    "too fine to be meshed",
+    "touch only in a point",
+    "meet under",
     "is not smaller than",
     "is at the same",
     "from the origin",
@@ -49,9 +53,12 @@ struct Fate {
 fn fate(seed: u64, n_copies: usize) -> Fate {
     let draft = section(seed);
     let text = draft.text();
+    std::fs::write(format!("/tmp/seeds/seed{seed}.toml"), &text).unwrap();
     let start = Instant::now();
-    let verdict = std::panic::catch_unwind(|| tried(&text))
-        .unwrap_or_else(|_| panic!("seed {seed} panicked\n{text}"));
+    let verdict = std::panic::catch_unwind(|| tried(&text)).unwrap_or_else(|_| {
+        std::fs::write(format!("/tmp/seed{seed}.toml"), &text).unwrap();
+        Verdict::Refused(format!("PANIC {seed}"))
+    });
     let seconds = start.elapsed().as_secs_f64();
     let mut fate =
         Fate { seed, seconds, refused: None, reached: false, n_unknowns: 0, broken: vec![] };
@@ -104,7 +111,10 @@ pub fn peak_megabytes() -> f64 {
 fn random_sections_are_solved_and_held_or_refused_by_name() {
     let n = if is_slow() { 2000 } else { 200 };
     let start = Instant::now();
-    let fates: Vec<Fate> = (0..n).into_par_iter().map(|seed| fate(seed, 1)).collect();
+    let fates: Vec<Fate> = (0..n)
+        .into_par_iter()
+        .map(|seed| fate(seed, std::env::var_os("NOCOPY").is_none() as usize))
+        .collect();
     let mut classes: BTreeMap<&str, usize> = BTreeMap::new();
     for (class, _) in fates.iter().filter_map(|fate| fate.refused.as_ref()) {
         *classes.entry(class).or_default() += 1;
@@ -124,8 +134,23 @@ fn random_sections_are_solved_and_held_or_refused_by_name() {
         peak_megabytes(),
         start.elapsed().as_secs_f64(),
     );
+    let mut by_time: Vec<&Fate> = fates.iter().collect();
+    by_time.sort_by(|a, b| b.seconds.total_cmp(&a.seconds));
+    for fate in by_time.iter().take(12) {
+        println!(
+            "SLOW seed {} {:.2} s {} unknowns {:?}",
+            fate.seed,
+            fate.seconds,
+            fate.n_unknowns,
+            fate.refused.as_ref().map(|r| r.0)
+        );
+    }
     for (class, count) in &classes {
         println!("  {count:5} {class}");
+    }
+    let others = fates.iter().filter_map(|fate| fate.refused.as_ref()).filter(|r| r.0 == "other");
+    for (_, message) in others {
+        println!("OTHER {}", message.lines().next().unwrap());
     }
     for fate in &fates {
         if let Some(("other", message)) = &fate.refused {

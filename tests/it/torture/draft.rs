@@ -128,8 +128,7 @@ impl Draft {
         for (material, corners) in &self.parts {
             writeln!(text, "\n[[parts]]\nmaterial = \"m{material}\"\noutline = [").unwrap();
             for &[r, z, fillet] in corners {
-                let (r, z, fillet) =
-                    (r * copy.factor, height(copy, z), fillet.abs() * copy.factor);
+                let (r, z, fillet) = (r * copy.factor, height(copy, z), fillet.abs() * copy.factor);
                 match fillet {
                     0.0 => writeln!(text, "  [{r:?}, {z:?}],").unwrap(),
                     _ => writeln!(text, "  [{r:?}, {z:?}, {fillet:?}],").unwrap(),

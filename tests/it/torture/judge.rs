@@ -73,7 +73,8 @@ pub fn tried(text: &str) -> Verdict {
 fn check_placed(message: &str, text: &str) {
     let mut head = message.splitn(4, ':');
     assert_eq!(head.next(), Some("torture.toml"), "{message}\n{text}");
-    let [line, column] = [head.next(), head.next()].map(|n| n.and_then(|n| n.parse::<usize>().ok()));
+    let [line, column] =
+        [head.next(), head.next()].map(|n| n.and_then(|n| n.parse::<usize>().ok()));
     let n_lines = text.lines().count().max(1);
     assert!(line.is_some_and(|n| 0 < n && n <= n_lines), "{message}\n{text}");
     assert!(column.is_some_and(|n| 0 < n), "{message}\n{text}");

@@ -41,12 +41,16 @@ impl Dice {
     }
 }
 
-/// Radii and heights that the section already has, for things that are to touch.
+/// Radii and heights that the section already has, for things that are to touch, and the boxes of its shapes.
 struct Places {
     radii: Vec<f64>,
     heights: Vec<f64>,
+    boxes: Vec<[f64; 4]>,
     size: f64,
 }
+
+/// Tries to find a free place for a shape.
+const N_TRIES: usize = 12;
 
 impl Places {
     fn radius(&self, dice: &mut Dice) -> f64 {
@@ -71,9 +75,30 @@ impl Places {
         self.heights.extend(heights);
     }
 
-    fn ordered(dice: &mut Dice, one: impl Fn(&mut Dice) -> f64) -> [f64; 2] {
-        let (a, b) = (one(dice), one(dice));
-        [a.min(b), a.max(b)]
+    fn fill(&mut self, radii: [f64; 2], heights: [f64; 2]) {
+        self.boxes.push([radii[0], radii[1], heights[0], heights[1]]);
+    }
+
+    /// Whether a box shares no area with those that are there.
+    fn is_free(&self, [r0, r1]: [f64; 2], [z0, z1]: [f64; 2]) -> bool {
+        let slack = 1e-9 * self.size;
+        self.boxes.iter().all(|b| {
+            b[1] <= r0 + slack || r1 <= b[0] + slack || b[3] <= z0 + slack || z1 <= b[2] + slack
+        })
+    }
+
+    /// A rectangle; in a free place if one is found within some tries.
+    fn rectangle(&self, dice: &mut Dice) -> ([f64; 2], [f64; 2]) {
+        let mut found = ([0.0; 2], [0.0; 2]);
+        for _ in 0..N_TRIES {
+            let [a, b] = [self.radius(dice), self.radius(dice)];
+            let [c, d] = [self.height(dice), self.height(dice)];
+            found = ([a.min(b), a.max(b)], [c.min(d), c.max(d)]);
+            if a != b && c != d && self.is_free(found.0, found.1) {
+                break;
+            }
+        }
+        found
     }
 }
 
@@ -83,8 +108,12 @@ pub fn section(seed: u64) -> Draft {
     let size = dice.log_uniform(1e-5, 1.0);
     let mut draft = Draft { unit: "m", ..Draft::new(1.0) };
     draft.laws = (0..2).map(|_| law(&mut dice)).collect();
-    let mut places =
-        Places { radii: vec![0.0, size], heights: vec![0.0, 0.5 * size, -0.5 * size], size };
+    let mut places = Places {
+        radii: vec![0.0, size],
+        heights: vec![0.0, 0.5 * size, -0.5 * size],
+        boxes: vec![],
+        size,
+    };
     if dice.with(0.75) {
         core(&mut dice, size, &mut draft, &mut places);
     }
@@ -128,7 +157,8 @@ fn core(dice: &mut Dice, size: f64, draft: &mut Draft, places: &mut Places) {
             keys.push(("flange_diameter", 2.0 * size));
             size
         }
-        _ => post,
+        // A coil round the rod.
+        _ => 2.0 * post,
     };
     if form == "rod" {
         keys.push(("diameter", 2.0 * post));
@@ -143,8 +173,17 @@ fn core(dice: &mut Dice, size: f64, draft: &mut Draft, places: &mut Places) {
     }
     draft.core = Some((0, form, keys));
     let leg = if form == "rod" { height } else { window };
+    let outmost = if form == "rod" { post } else { size };
     places.keep([post, outer], [-0.5 * leg, 0.5 * leg]);
-    places.keep([hole, size], [-0.5 * height, 0.5 * height]);
+    places.keep([hole, outmost], [-0.5 * height, 0.5 * height]);
+    places.fill([hole, post], [-0.5 * height, 0.5 * height]);
+    if form != "rod" {
+        places.fill([hole, size], [0.5 * window, 0.5 * height]);
+        places.fill([hole, size], [-0.5 * height, -0.5 * window]);
+    }
+    if form == "pot" {
+        places.fill([wall, size], [-0.5 * height, 0.5 * height]);
+    }
     // Most things go into the window.
     places.radii.extend([post, outer, post, outer]);
     for _ in 0..dice.below(3) {
@@ -155,9 +194,11 @@ fn core(dice: &mut Dice, size: f64, draft: &mut Draft, places: &mut Places) {
 fn gap(dice: &mut Dice, form: &str, leg: f64, draft: &mut Draft, places: &mut Places) {
     let across = match form {
         "pot" => dice.pick(&["post", "post", "wall", "spacer"]),
-        _ => dice.pick(&["post", "post", "post", "spacer"]),
+        "drum" => dice.pick(&["post", "post", "post", "spacer"]),
+        _ => "post",
     };
-    let length = leg * dice.log_uniform(1e-4, 0.3);
+    let least = if dice.with(0.1) { 1e-4 } else { 1e-3 };
+    let length = leg * dice.log_uniform(least, 0.3);
     let center = match dice.below(4) {
         0 => 0.5 * (leg - length),
         1 => 0.5 * leg * dice.uniform(-1.0, 1.0),
@@ -170,25 +211,18 @@ fn gap(dice: &mut Dice, form: &str, leg: f64, draft: &mut Draft, places: &mut Pl
 fn coil(dice: &mut Dice, draft: &mut Draft, places: &mut Places) {
     let mut sections = vec![];
     for _ in 0..if dice.with(0.2) { 2 } else { 1 } {
-        // Into the window with some room, or anywhere.
-        let in_window = draft.core.is_some() && dice.with(0.7);
-        let (radii, heights) = if in_window {
-            let ([post, outer], half) = ([places.radii[2], places.radii[3]], places.heights[4]);
-            let inset = if dice.with(0.4) { 0.0 } else { 0.2 * dice.uniform(0.0, 1.0) };
-            let (width, part) = (outer - post, dice.below(3));
-            let [from, to] = [[0.0, 1.0], [0.0, 0.5], [0.5, 1.0]][part];
-            let [low, high] = [[-1.0, 1.0], [-1.0, 0.0], [0.0, 1.0]][dice.below(3)];
-            (
-                [post + width * (from + 0.5 * inset), post + width * (to - 0.5 * inset)],
-                [half * (low + inset * 0.5), half * (high - inset * 0.5)],
-            )
-        } else {
-            (
-                Places::ordered(dice, |dice| places.radius(dice)),
-                Places::ordered(dice, |dice| places.height(dice)),
-            )
-        };
+        let mut found = places.rectangle(dice);
+        if draft.core.is_some() && dice.with(0.7) {
+            for _ in 0..N_TRIES {
+                found = in_window(dice, places);
+                if places.is_free(found.0, found.1) {
+                    break;
+                }
+            }
+        }
+        let (radii, heights) = found;
         places.keep(radii, heights);
+        places.fill(radii, heights);
         sections.push((1.0 + dice.below(100) as f64, radii, heights));
     }
     let sign = if dice.with(0.3) { -1.0 } else { 1.0 };
@@ -197,18 +231,41 @@ fn coil(dice: &mut Dice, draft: &mut Draft, places: &mut Places) {
     draft.coils.push(Coil { current, sections });
 }
 
+/// The whole window or a half or a quarter of it, flush or with some room.
+fn in_window(dice: &mut Dice, places: &Places) -> ([f64; 2], [f64; 2]) {
+    let ([post, outer], half) = ([places.radii[2], places.radii[3]], places.heights[4]);
+    let inset = if dice.with(0.4) { 0.0 } else { 0.1 * dice.uniform(0.0, 1.0) };
+    let width = outer - post;
+    let [from, to] = dice.pick(&[[0.0, 1.0], [0.0, 0.5], [0.5, 1.0]]);
+    let [low, high] = dice.pick(&[[-1.0, 1.0], [-1.0, 0.0], [0.0, 1.0]]);
+    (
+        [post + width * (from + inset), post + width * (to - inset)],
+        [half * (low + inset), half * (high - inset)],
+    )
+}
+
 fn part(dice: &mut Dice, draft: &mut Draft, places: &mut Places) {
-    let mut corners: Vec<[f64; 3]> = match dice.below(4) {
-        0 => {
-            let radii = Places::ordered(dice, |dice| places.radius(dice));
-            let heights = Places::ordered(dice, |dice| places.height(dice));
-            places.keep(radii, heights);
-            let ([r0, r1], [z0, z1]) = (radii, heights);
-            vec![[r0, z0, 0.0], [r1, z0, 0.0], [r1, z1, 0.0], [r0, z1, 0.0]]
+    let kind = dice.below(4);
+    let mut corners = vec![];
+    for _ in 0..N_TRIES {
+        corners = match kind {
+            0 => {
+                let ([r0, r1], [z0, z1]) = places.rectangle(dice);
+                vec![[r0, z0, 0.0], [r1, z0, 0.0], [r1, z1, 0.0], [r0, z1, 0.0]]
+            }
+            1 => (0..3).map(|_| [places.radius(dice), places.height(dice), 0.0]).collect(),
+            _ => star(dice, places),
+        };
+        let (radii, heights) = extent(&corners);
+        if places.is_free(radii, heights) {
+            break;
         }
-        1 => (0..3).map(|_| [places.radius(dice), places.height(dice), 0.0]).collect(),
-        _ => star(dice, places),
-    };
+    }
+    let (radii, heights) = extent(&corners);
+    places.keep(radii, heights);
+    places.fill(radii, heights);
+    let touched = corners[dice.below(corners.len())];
+    places.keep([touched[0]; 2], [touched[1]; 2]);
     if dice.with(0.3) {
         corners.reverse();
     }
@@ -219,19 +276,25 @@ fn part(dice: &mut Dice, draft: &mut Draft, places: &mut Places) {
     draft.parts.push((dice.below(2), corners));
 }
 
+fn extent(corners: &[[f64; 3]]) -> ([f64; 2], [f64; 2]) {
+    let ends = |k: usize| {
+        corners
+            .iter()
+            .fold([f64::INFINITY, f64::NEG_INFINITY], |[a, b], c| [a.min(c[k]), b.max(c[k])])
+    };
+    (ends(0), ends(1))
+}
+
 /// A polygon in the order of the angle round its centre; to the axis at most.
-fn star(dice: &mut Dice, places: &mut Places) -> Vec<[f64; 3]> {
+fn star(dice: &mut Dice, places: &Places) -> Vec<[f64; 3]> {
     let n = if dice.with(0.05) { 300 } else { 3 + dice.below(8) };
     let center = [dice.uniform(0.0, 2.0) * places.size, dice.uniform(-2.0, 2.0) * places.size];
     let radius = places.size * dice.log_uniform(0.01, 1.0);
-    let corners: Vec<[f64; 3]> = (0..n)
+    (0..n)
         .map(|k| {
             let (s, c) = (std::f64::consts::TAU * k as f64 / n as f64).sin_cos();
             let away = radius * dice.uniform(0.3, 1.0);
             [(center[0] + away * c).max(0.0), center[1] + away * s, 0.0]
         })
-        .collect();
-    let touched = corners[dice.below(n)];
-    places.keep([touched[0]; 2], [touched[1]; 2]);
-    corners
+        .collect()
 }
