@@ -2,7 +2,7 @@
 
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
-use crate::fem::{Moments, Rules};
+use crate::fem::{Element, Rules};
 use crate::mesh::fans::Fans;
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::units::{AmperePerSquareMeter, Joule};
@@ -11,7 +11,7 @@ use crate::units::{AmperePerSquareMeter, Joule};
 #[derive(Debug, Clone, PartialEq)]
 pub struct Again {
     pub solution: Solution,
-    pub moments: Vec<Moments>,
+    pub elements: Vec<Element>,
     pub bound: Bound,
     pub effort: Effort,
 }
@@ -39,26 +39,27 @@ pub fn at_density(
     start: &Solution,
     width: f64,
 ) -> Result<Again, SolveError> {
-    let (mut solution, mut moments) = (start.clone(), outcome.moments.clone());
+    let (mut solution, mut elements) = (start.clone(), outcome.elements.clone());
     let before = std::mem::replace(&mut outcome.coefficients.current_density, density.to_vec());
-    let result = solve_and_bound(outcome, &mut solution, &mut moments, width);
+    let result = solve_and_bound(outcome, &mut solution, &mut elements, width);
     outcome.coefficients.current_density = before;
     let (effort, bound) = result?;
-    Ok(Again { solution, moments, bound, effort })
+    Ok(Again { solution, elements, bound, effort })
 }
 
 fn solve_and_bound(
     outcome: &mut Outcome,
     solution: &mut Solution,
-    moments: &mut [Moments],
+    elements: &mut [Element],
     width: f64,
 ) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();
     let Outcome { mesh, space, coefficients, hierarchy, .. } = outcome;
-    let system = System { mesh, space, coefficients, rules: &rules };
-    let effort = solve::solve(&system, moments, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
-    let field = Field { mesh, coefficients, rules: &rules, moments, solution };
-    Ok((effort, bound::bound(&field, &Fans::new(mesh))))
+    let fans = Fans::new(mesh);
+    let system = System { mesh, space, fans: &fans, coefficients, rules: &rules };
+    let effort = solve::solve(&system, elements, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
+    let field = Field { mesh, coefficients, rules: &rules, elements, solution };
+    Ok((effort, bound::bound(&field, &fans)))
 }
 
 /// Puts a field at the current densities `density` into the outcome's place, on the same mesh.
@@ -67,7 +68,7 @@ fn solve_and_bound(
 pub fn adopt(outcome: &mut Outcome, density: &[AmperePerSquareMeter], again: Again) {
     outcome.coefficients.current_density.copy_from_slice(density);
     outcome.solution = again.solution;
-    outcome.moments = again.moments;
+    outcome.elements = again.elements;
     outcome.bound = again.bound;
     outcome.work_rate_ends = None;
 }

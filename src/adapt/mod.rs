@@ -4,8 +4,8 @@ pub mod again;
 mod mark;
 
 use crate::bound::{self, Bound, Field};
-use crate::fem::moments::update_constant;
-use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space};
+use crate::fem::elements::update_constant;
+use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space};
 use crate::geometry::{Outline, Region};
 use crate::mesh::bisect::{Carried, bisect};
 use crate::mesh::fans::Fans;
@@ -33,6 +33,26 @@ pub struct Round {
     pub high: Joule,
 }
 
+/// The parts of a round, for callers that keep time.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Stage {
+    FirstMesh,
+    /// Moments and matrices of new triangles.
+    Elements,
+    /// Assembly, levels and iteration.
+    Solve,
+    Bound,
+    /// Marking and bisection.
+    Refine,
+}
+
+/// What the rounds tell while they run; no stage reads a clock, the caller may.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Event<'a> {
+    Finished(Stage),
+    Round(&'a Round),
+}
+
 /// The last round's field and what was reached.
 #[derive(Debug)]
 pub struct Outcome {
@@ -40,8 +60,8 @@ pub struct Outcome {
     pub space: Space,
     pub coefficients: Coefficients,
     pub solution: Solution,
-    /// Moments at the solution: constant, or the tangent.
-    pub moments: Vec<Moments>,
+    /// Element at the solution: constant, or the tangent.
+    pub elements: Vec<Element>,
     pub bound: Bound,
     pub rounds: Vec<Round>,
     /// Levels of the preconditioner, for further solves on this mesh.
@@ -61,14 +81,15 @@ pub enum AdaptError {
     Solve(#[from] SolveError),
 }
 
-/// Solves `model` in its `outline` to the wanted interval; `progress` sees every finished round.
+/// Solves `model` in its `outline` to the wanted interval; `progress` hears of every finished part and round.
 pub fn run(
     model: &Model,
     outline: &Outline,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<Outcome, AdaptError> {
     let coefficients = coefficients(model, &outline.regions);
     let mesh = first_mesh(outline)?;
+    progress(Event::Finished(Stage::FirstMesh));
     let solution =
         Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
     let mut outcome =
@@ -102,7 +123,7 @@ pub fn rounds(
     solution: Solution,
     rules: &Rules,
     accuracy: &Accuracy,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<Outcome, AdaptError> {
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
     let mut outcome = Outcome {
@@ -110,7 +131,7 @@ pub fn rounds(
         space: Space::default(),
         coefficients,
         solution,
-        moments: Vec::new(),
+        elements: Vec::new(),
         bound: Bound::default(),
         rounds: Vec::new(),
         hierarchy: Hierarchy::default(),
@@ -131,7 +152,7 @@ pub fn refine(
     outcome: &mut Outcome,
     rules: &Rules,
     accuracy: &Accuracy,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<(), AdaptError> {
     for _ in 1..N_ROUNDS_MAX {
         let width = outcome.bound.relative_width();
@@ -145,6 +166,7 @@ pub fn refine(
         let solution = &mut outcome.solution;
         let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
         let changed = bisect(&mut outcome.mesh, &marked, &mut carried);
+        progress(Event::Finished(Stage::Refine));
         round(outcome, &changed, width, rules, accuracy, progress)?;
     }
     outcome.reached = outcome.bound.relative_width() <= accuracy.interval;
@@ -160,16 +182,18 @@ fn round(
     width: f64,
     rules: &Rules,
     accuracy: &Accuracy,
-    progress: &mut dyn FnMut(&Round),
+    progress: &mut dyn FnMut(Event),
 ) -> Result<(), AdaptError> {
-    let Outcome { mesh, space, coefficients, solution, moments, bound, hierarchy, .. } = outcome;
+    let Outcome { mesh, space, coefficients, solution, elements, bound, hierarchy, .. } = outcome;
     *space = Space::new(mesh);
-    update_constant(mesh, coefficients, rules, changed, moments);
+    update_constant(mesh, coefficients, rules, changed, elements);
     let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
-    let system = System { mesh, space, coefficients, rules };
-    let effort = solve::solve(&system, moments, hierarchy, solution, decrease)?;
+    progress(Event::Finished(Stage::Elements));
     let fans = Fans::new(mesh);
-    *bound = bound::bound(&Field { mesh, coefficients, rules, moments, solution }, &fans);
+    let system = System { mesh, space, fans: &fans, coefficients, rules };
+    let effort = solve::solve(&system, elements, hierarchy, solution, decrease)?;
+    progress(Event::Finished(Stage::Solve));
+    *bound = bound::bound(&Field { mesh, coefficients, rules, elements, solution }, &fans);
     let round = Round {
         n_unknowns: space.n_dofs,
         n_triangles: mesh.triangles.len(),
@@ -177,7 +201,8 @@ fn round(
         low: bound.low,
         high: bound.high,
     };
-    progress(&round);
+    progress(Event::Finished(Stage::Bound));
+    progress(Event::Round(&round));
     outcome.rounds.push(round);
     Ok(())
 }

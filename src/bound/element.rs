@@ -1,108 +1,71 @@
 //! One triangle of the equilibration: Gram matrix, defects, targets, and its part of the ends.
 
 use super::{Field, Flux};
-use crate::fem::assemble::LOCAL_EDGES;
-use crate::fem::element::{Frame, GRADIENT, POSITION, Pair, Tensor, blend, contract, dot, wedge};
-use crate::fem::moments::{PAIR_INDEX, rule_of};
+use crate::fem::element::{Frame, GRADIENT, POSITION, Pair, blend, contract, dot, wedge};
+use crate::fem::elements::{LOCAL_EDGES, Packed, packed};
+use crate::fem::moments::rule_of;
 use crate::mesh::Mesh;
 use crate::model::Law;
 
-/// Everything that the patch problems need of a triangle.
+/// Everything that the patch problems need of a triangle beyond its Gram matrix.
 #[derive(Debug, Clone, Copy)]
 pub struct Patchwork {
-    /// Gram matrix in C of (w01, w12, w20, d01, d12, d20), upper half row by row.
-    gram: [f64; 21],
     /// F_a: what the patch of each corner must carry away here.
     pub defect: [f64; 3],
     /// For each corner a: (flux, tilt) of the interpolant of χ_a σ̃ on the spokes to a + 1 and a + 2.
     pub target: [[[f64; 2]; 2]; 3],
 }
 
-/// Index of (i ≤ j) in the packed upper half of a 6 × 6 matrix.
-const fn packed(i: usize, j: usize) -> usize {
-    let (i, j) = if i <= j { (i, j) } else { (j, i) };
-    i * (11 - i) / 2 + j
-}
-
 impl Patchwork {
     /// From the flux moments w_m = ∫ λ_m σ̂ (eq. 9).
     pub fn new(field: &Field, t: usize, w: &[Pair; 3]) -> Patchwork {
-        let frame = Frame::new(field.mesh, t);
-        let source =
-            field.coefficients.current_density[field.mesh.regions[t].0 as usize] * frame.det_abs;
-        Patchwork {
-            gram: gram(&field.moments[t].c),
-            defect: defects(&frame, w, source),
-            target: targets(&frame, w),
-        }
-    }
-
-    /// Entry (i, j) of the Gram matrix.
-    #[inline]
-    pub fn gram(&self, i: usize, j: usize) -> f64 {
-        self.gram[packed(i, j)]
-    }
-
-    /// ½ tᵀM t of the flux on this triangle: its part of `high`.
-    pub fn half_square(&self, mesh: &Mesh, t: usize, flux: &Flux) -> f64 {
-        let x = local_numbers(mesh, t, flux);
-        let mut sum = 0.0;
-        for i in 0..6 {
-            sum += 0.5 * self.gram(i, i) * x[i] * x[i];
-            for j in i + 1..6 {
-                sum += self.gram(i, j) * x[i] * x[j];
-            }
-        }
-        sum
+        let axis = field.mesh.triangles[t].map(|v| field.mesh.on_axis[v as usize]);
+        let source = match field.coefficients.current_density[field.mesh.regions[t].0 as usize] {
+            0.0 => 0.0,
+            current_density => current_density * Frame::new(field.mesh, t).det_abs,
+        };
+        Patchwork { defect: defects(axis, w, source), target: targets(axis, w) }
     }
 }
 
-/// Gram matrix of the Whitney forms w_ij = λ_i dλ_j − λ_j dλ_i and d_ij = λ_i dλ_j + λ_j dλ_i.
-fn gram(c: &[Tensor; 6]) -> [f64; 21] {
-    let mut gram = [0.0; 21];
-    let g = GRADIENT;
-    for (e, (i, j)) in LOCAL_EDGES.into_iter().enumerate() {
-        for (f, (p, q)) in LOCAL_EDGES.into_iter().enumerate() {
-            let ip = contract(g[j], c[PAIR_INDEX[i][p]], g[q]);
-            let iq = contract(g[j], c[PAIR_INDEX[i][q]], g[p]);
-            let jp = contract(g[i], c[PAIR_INDEX[j][p]], g[q]);
-            let jq = contract(g[i], c[PAIR_INDEX[j][q]], g[p]);
-            if e <= f {
-                gram[packed(e, f)] = ip - iq - jp + jq;
-                gram[packed(3 + e, 3 + f)] = ip + iq + jp + jq;
-            }
-            gram[packed(e, 3 + f)] = ip + iq - jp - jq;
+/// ½ tᵀM t of the flux on a triangle: its part of `high`.
+pub fn half_square(gram: &Packed, x: &[f64; 6]) -> f64 {
+    let mut sum = 0.0;
+    for i in 0..6 {
+        sum += 0.5 * gram[packed(i, i)] * x[i] * x[i];
+        for j in i + 1..6 {
+            sum += gram[packed(i, j)] * x[i] * x[j];
         }
     }
-    gram
+    sum
 }
 
 /// F_a = ∇λ_a·Σ w − J|det|/6, half-axis edges moved from their free end to the axis by R_e/4 (eq. 9).
-fn defects(frame: &Frame, w: &[Pair; 3], source: f64) -> [f64; 3] {
+fn defects(axis: [bool; 3], w: &[Pair; 3], source: f64) -> [f64; 3] {
     let sum = [w[0][0] + w[1][0] + w[2][0], w[0][1] + w[1][1] + w[2][1]];
     let mut defect = [0, 1, 2].map(|a| dot(GRADIENT[a], sum) - source / 6.0);
     for (i, j) in LOCAL_EDGES {
-        let (v, axis) = match (frame.on_axis(i), frame.on_axis(j)) {
+        let (v, pole) = match (axis[i], axis[j]) {
             (false, true) => (i, j),
             (true, false) => (j, i),
             _ => continue,
         };
-        let bubble = 4.0 * (dot(GRADIENT[axis], w[v]) + dot(GRADIENT[v], w[axis])) - source / 6.0;
+        let bubble = 4.0 * (dot(GRADIENT[pole], w[v]) + dot(GRADIENT[v], w[pole])) - source / 6.0;
         defect[v] -= 0.25 * bubble;
-        defect[axis] += 0.25 * bubble;
+        defect[pole] += 0.25 * bubble;
     }
     defect
 }
 
 /// Flux and tilt of the interpolant of χ_a σ̃ on both spokes of each corner, σ̃ the P1 projection of σ̂ (eq. 10).
-fn targets(frame: &Frame, w: &[Pair; 3]) -> [[[f64; 2]; 2]; 3] {
+fn targets(axis: [bool; 3], w: &[Pair; 3]) -> [[[f64; 2]; 2]; 3] {
     let sum = [w[0][0] + w[1][0] + w[2][0], w[0][1] + w[1][1] + w[2][1]];
     let s = w.map(|w| [24.0 * w[0] - 6.0 * sum[0], 24.0 * w[1] - 6.0 * sum[1]]);
     [0, 1, 2].map(|a| {
         [(a + 1) % 3, (a + 2) % 3].map(|j| {
             let e = [POSITION[j][0] - POSITION[a][0], POSITION[j][1] - POSITION[a][1]];
             let (at_a, at_j) = (wedge(s[a], e), wedge(s[j], e));
-            match (frame.on_axis(a), frame.on_axis(j)) {
+            match (axis[a], axis[j]) {
                 (true, false) => [at_a * (5.0 / 12.0) + 0.25 * at_j, 0.55 * at_a - 0.05 * at_j],
                 (false, true) => [0.25 * at_a + at_j / 12.0, 0.45 * at_a + 0.05 * at_j],
                 _ => [at_a / 3.0 + at_j / 6.0, 0.5 * at_a],
@@ -123,9 +86,8 @@ pub fn local_numbers(mesh: &Mesh, t: usize, flux: &Flux) -> [f64; 6] {
     x
 }
 
-/// Values ω^m of τ's 1-form at the three vertices: ω = Σ λ_m ω^m.
-pub fn local_form(mesh: &Mesh, t: usize, flux: &Flux) -> [Pair; 3] {
-    let x = local_numbers(mesh, t, flux);
+/// Values ω^m of τ's 1-form at the three vertices, from its local numbers: ω = Σ λ_m ω^m.
+pub fn local_form(x: &[f64; 6]) -> [Pair; 3] {
     [0, 1, 2].map(|m| {
         let (next, last) = ((m + 1) % 3, (m + 2) % 3);
         // Edge m leaves the vertex towards `next`; edge `last` arrives from `last`.

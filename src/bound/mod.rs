@@ -11,7 +11,7 @@ pub use tree::{defect, scale};
 
 use crate::fem::element::Frame;
 use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux};
-use crate::fem::{Coefficients, Moments, Reluctivity, Rules};
+use crate::fem::{Coefficients, Element, Reluctivity, Rules};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
 use crate::solve::Solution;
@@ -58,7 +58,7 @@ pub struct Field<'a> {
     pub coefficients: &'a Coefficients,
     pub rules: &'a Rules,
     /// Of the constant coefficient, or of the tangent at `solution`.
-    pub moments: &'a [Moments],
+    pub elements: &'a [Element],
     pub solution: &'a Solution,
 }
 
@@ -72,9 +72,9 @@ pub fn bound(field: &Field, fans: &Fans) -> Bound {
             (Patchwork::new(field, t, &flux), primal)
         })
         .unzip();
-    let mut flux = patch::equilibrate(field.mesh, fans, &patchwork);
+    let mut flux = patch::equilibrate(field, fans, &patchwork);
     tree::close_divergence(field.mesh, fans, &field.coefficients.current_density, &mut flux);
-    evaluate(field, &patchwork, &primal, flux)
+    evaluate(field, &primal, flux)
 }
 
 /// w_m = ∫ λ_m σ̂ and ∫ r·w(B) on triangle t.
@@ -82,7 +82,7 @@ fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
     let gradients = field.solution.gradients(field.mesh, t);
     match &field.coefficients.reluctivity[field.mesh.regions[t].0 as usize] {
         Reluctivity::Constant(_) => {
-            let k = &field.moments[t].k;
+            let k = &field.elements[t].k;
             (linear_flux(k, &gradients), linear_energy(k, &gradients))
         }
         Reluctivity::Saturating(law) => {
@@ -97,19 +97,22 @@ fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
 const SHARE_ROUNDING: f64 = 1e-11;
 
 /// Per triangle: (low, high, share)/2π; `primal` is ∫ r·w(B).
-fn evaluate(field: &Field, patchwork: &[Patchwork], primal: &[f64], flux: Flux) -> Bound {
-    let parts: Vec<[f64; 3]> = (0..patchwork.len())
+fn evaluate(field: &Field, primal: &[f64], flux: Flux) -> Bound {
+    let parts: Vec<[f64; 3]> = (0..primal.len())
         .into_par_iter()
         .with_min_len(256)
         .map(|t| {
             let mesh = field.mesh;
             let gradients = field.solution.gradients(mesh, t);
-            let form = element::local_form(mesh, t, &flux);
-            let source = field.solution.integral(mesh, t)
-                * field.coefficients.current_density[mesh.regions[t].0 as usize];
+            let numbers = element::local_numbers(mesh, t, &flux);
+            let form = element::local_form(&numbers);
+            let source = match field.coefficients.current_density[mesh.regions[t].0 as usize] {
+                0.0 => 0.0,
+                current_density => current_density * field.solution.integral(mesh, t),
+            };
             let product = element::wedge_integral(&gradients, &form);
             let dual = match &field.coefficients.reluctivity[mesh.regions[t].0 as usize] {
-                Reluctivity::Constant(_) => patchwork[t].half_square(mesh, t, &flux),
+                Reluctivity::Constant(_) => element::half_square(&field.elements[t].gram, &numbers),
                 Reluctivity::Saturating(law) => element::saturating_coenergy(field, t, law, &form),
             };
             let share = dual - product + primal[t];

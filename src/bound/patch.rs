@@ -1,7 +1,9 @@
 //! The small problem round each vertex: fluxes by a sweep, one shift and the tilts by least squares (eq. 10, 11).
 
-use super::Flux;
 use super::element::Patchwork;
+use super::{Field, Flux};
+use crate::fem::Element;
+use crate::fem::elements::packed;
 use crate::mesh::Mesh;
 use crate::mesh::fans::{Blade, Fans};
 use rayon::prelude::*;
@@ -10,14 +12,15 @@ use rayon::prelude::*;
 const N_VERTICES_CHUNK: usize = 1024;
 
 /// Adds up the patch fluxes of all vertices.
-pub fn equilibrate(mesh: &Mesh, fans: &Fans, patchwork: &[Patchwork]) -> Flux {
+pub fn equilibrate(field: &Field, fans: &Fans, patchwork: &[Patchwork]) -> Flux {
+    let mesh = field.mesh;
     let n = mesh.points.len();
     let chunks: Vec<Vec<[f64; 2]>> = (0..n.div_ceil(N_VERTICES_CHUNK))
         .into_par_iter()
         .map_init(Workspace::default, |work, chunk| {
             let mut spokes = Vec::with_capacity(8 * N_VERTICES_CHUNK);
             for v in chunk * N_VERTICES_CHUNK..((chunk + 1) * N_VERTICES_CHUNK).min(n) {
-                work.solve(fans.around(v), mesh.on_axis[v], patchwork, &mut spokes);
+                work.solve(fans.around(v), mesh.on_axis[v], field.elements, patchwork, &mut spokes);
             }
             spokes
         })
@@ -70,12 +73,13 @@ impl Workspace {
         &mut self,
         fan: &[Blade],
         is_open: bool,
+        elements: &[Element],
         patchwork: &[Patchwork],
         spokes: &mut Vec<[f64; 2]>,
     ) {
         let n_triangles = fan.len();
         let n_spokes = n_triangles + usize::from(is_open);
-        let (shift_square, shift_load) = self.collect(fan, n_spokes, patchwork);
+        let (shift_square, shift_load) = self.collect(fan, n_spokes, elements, patchwork);
         let (shift, first_tilt) = self.eliminate(n_spokes, is_open, shift_square, shift_load);
         for q in 0..n_spokes {
             let [load, with_shift, with_first] = self.columns[q];
@@ -89,7 +93,13 @@ impl Workspace {
     }
 
     /// Sweeps the fluxes and gathers the normal equations; returns the shift's own entry and load.
-    fn collect(&mut self, fan: &[Blade], n_spokes: usize, patchwork: &[Patchwork]) -> (f64, f64) {
+    fn collect(
+        &mut self,
+        fan: &[Blade],
+        n_spokes: usize,
+        elements: &[Element],
+        patchwork: &[Patchwork],
+    ) -> (f64, f64) {
         self.sweep.clear();
         self.sweep.push(0.0);
         for v in [&mut self.diagonal, &mut self.coupling] {
@@ -102,6 +112,7 @@ impl Workspace {
         for (q, blade) in fan.iter().enumerate() {
             let a = blade.corner as usize;
             let work = &patchwork[blade.triangle as usize];
+            let matrix = &elements[blade.triangle as usize].gram;
             let next = (q + 1) % n_spokes;
             let (flux, flux_next) = (self.sweep[q], self.sweep[q] - work.defect[a]);
             self.sweep.push(flux_next);
@@ -110,7 +121,7 @@ impl Workspace {
             let (out, back) = (a, (a + 2) % 3);
             let index = [out, back, 3 + out, 3 + back];
             let sign = [1.0, -1.0, 1.0, 1.0];
-            let gram = |i: usize, j: usize| sign[i] * sign[j] * work.gram(index[i], index[j]);
+            let gram = |i: usize, j: usize| sign[i] * sign[j] * matrix[packed(index[i], index[j])];
             let [[f1, c1], [f2, c2]] = work.target[a];
             let x = [flux - f1, flux_next - f2, -c1, -c2];
             let g = [0, 1, 2, 3].map(|i| (0..4).map(|j| gram(i, j) * x[j]).sum::<f64>());

@@ -1,4 +1,6 @@
 //! Files that appear whole or not at all: everything is written beside its place first, then renamed.
+//!
+//! The disk is not flushed: a power cut may lose a file, a failing program cannot halve one.
 
 use super::{End, Stop};
 use std::ffi::OsString;
@@ -17,7 +19,7 @@ pub fn directory(sheet: &Path, asked: Option<&Path>) -> PathBuf {
 
 /// Writes all files into `directory`, making it if needed.
 ///
-/// All bytes reach the disk under temporary names before the first file gets its own name. On any error no temporary
+/// All bytes are written under temporary names before the first file gets its own name. On any error no temporary
 /// file stays, nor a directory that this call made and left empty.
 pub fn write_all(directory: &Path, files: &[Finished]) -> Result<(), Stop> {
     let made = missing_ancestor(directory);
@@ -65,7 +67,6 @@ fn temporary(directory: &Path, bytes: &[u8]) -> io::Result<NamedTempFile> {
         use std::os::unix::fs::PermissionsExt;
         file.as_file().set_permissions(fs::Permissions::from_mode(0o644))?;
     }
-    file.as_file().sync_all()?;
     Ok(file)
 }
 

@@ -3,7 +3,7 @@
 use super::files::Finished;
 use super::options::Options;
 use super::{End, Stop, files, screen, sheet};
-use gapwright::adapt::{self, AdaptError, Outcome};
+use gapwright::adapt::{self, AdaptError, Event, Outcome, Stage};
 use gapwright::geometry::Outline;
 use gapwright::mesh::MeshError;
 use gapwright::model::Model;
@@ -59,16 +59,9 @@ fn run(
     clock: &mut Clock,
 ) -> Result<Outcome, Stop> {
     let mut progress = screen::Progress::new(options.quiet || options.json);
-    let mut n_rounds = 0;
-    let outcome = adapt::run(model, outline, &mut |round| {
-        n_rounds += 1;
-        let stage = if n_rounds == 1 {
-            "mesh and round 1".to_string()
-        } else {
-            format!("round {n_rounds}")
-        };
-        clock.lap(&stage);
-        progress.round(round.n_unknowns, round.low, round.high);
+    let outcome = adapt::run(model, outline, &mut |event| match event {
+        Event::Finished(stage) => clock.lap(stage_name(stage)),
+        Event::Round(round) => progress.round(round.n_unknowns, round.low, round.high),
     });
     outcome.map_err(|error| {
         let end = match error {
@@ -128,6 +121,17 @@ fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) 
     (cells, values.b_corner)
 }
 
+/// A stage of the rounds as the table of times names it.
+fn stage_name(stage: Stage) -> &'static str {
+    match stage {
+        Stage::FirstMesh => "first mesh",
+        Stage::Elements => "element matrices",
+        Stage::Solve => "assembly and solve",
+        Stage::Bound => "bound",
+        Stage::Refine => "marking and bisection",
+    }
+}
+
 /// How the run ends: a missed interval weighs more than a missed promise, whose verdict it makes doubtful.
 fn end_of(results: &Results) -> End {
     let is_met = results.verdict.as_ref().is_none_or(|v| v.within_tolerance)
@@ -150,10 +154,14 @@ impl Clock {
         Clock { last: Instant::now(), times: StageTimes::default() }
     }
 
-    /// Books the time since the last lap under `stage`.
+    /// Adds the time since the last lap to `stage`.
     fn lap(&mut self, stage: &str) {
         let now = Instant::now();
-        self.times.stages.push((stage.to_string(), (now - self.last).as_secs_f64()));
+        let seconds = (now - self.last).as_secs_f64();
+        match self.times.stages.iter_mut().find(|(name, _)| name == stage) {
+            Some((_, sum)) => *sum += seconds,
+            None => self.times.stages.push((stage.to_string(), seconds)),
+        }
         self.last = now;
     }
 }

@@ -5,12 +5,13 @@
 pub mod assemble;
 pub mod coefficients;
 pub mod element;
+pub mod elements;
 pub mod evaluate;
 pub mod moments;
 pub mod quadrature;
 pub mod space;
 
 pub use coefficients::{Coefficients, Reluctivity};
-pub use moments::Moments;
+pub use elements::Element;
 pub use quadrature::Rules;
 pub use space::Space;

@@ -2,12 +2,9 @@
 //!
 //! k_mn = ∫ λ_m λ_n K̂ and c_mn = ∫ λ_m λ_n C with C = K̂/det K̂, both over the reference triangle (eq. 7).
 
-use super::coefficients::{Coefficients, Reluctivity};
 use super::element::{Frame, Pair, Tensor, apply, blend, contract};
 use super::quadrature::{Rule, Rules};
-use crate::mesh::Mesh;
 use crate::model::Law;
-use rayon::prelude::*;
 
 /// Vertex pairs in storage order.
 pub const PAIRS: [(usize, usize); 6] = [(0, 0), (1, 1), (2, 2), (0, 1), (1, 2), (2, 0)];
@@ -177,34 +174,4 @@ pub fn linear_flux(k: &[Tensor; 6], gradients: &[Pair; 3]) -> [Pair; 3] {
 pub fn linear_energy(k: &[Tensor; 6], gradients: &[Pair; 3]) -> f64 {
     let flux = linear_flux(k, gradients);
     0.5 * (0..3).map(|m| gradients[m][0] * flux[m][0] + gradients[m][1] * flux[m][1]).sum::<f64>()
-}
-
-/// Recomputes the moments of the `changed` triangles that carry a constant law; the vector grows with the mesh.
-pub fn update_constant(
-    mesh: &Mesh,
-    coefficients: &Coefficients,
-    rules: &Rules,
-    changed: &[u32],
-    all: &mut Vec<Moments>,
-) {
-    all.resize(mesh.triangles.len(), Moments::default());
-    let fresh: Vec<Option<Moments>> = changed
-        .par_iter()
-        .with_min_len(512)
-        .map(|&t| {
-            let t = t as usize;
-            match &coefficients.reluctivity[mesh.regions[t].0 as usize] {
-                Reluctivity::Constant(nu) => {
-                    let frame = Frame::new(mesh, t);
-                    Some(constant_moments(&frame, rule_of(rules, &frame), *nu))
-                }
-                Reluctivity::Saturating(_) => None,
-            }
-        })
-        .collect();
-    for (&t, moments) in changed.iter().zip(fresh) {
-        if let Some(moments) = moments {
-            all[t as usize] = moments;
-        }
-    }
 }

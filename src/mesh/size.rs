@@ -46,6 +46,7 @@ pub(super) struct Measures {
 }
 
 impl Measures {
+    /// Measures of the triangle with those corners [m].
     pub fn of(c: &[Point; 3]) -> Measures {
         let length2 = [0, 1, 2].map(|k| {
             let (a, b) = (c[k], c[(k + 1) % 3]);

@@ -252,7 +252,7 @@ fn keep(polygon: &[([f64; 2], f64)], level: f64, side: f64) -> Vec<([f64; 2], f6
 }
 
 /// Sub-triangles that the whole picture is sampled with, about.
-const N_SAMPLES: usize = 400_000;
+const N_SAMPLES: usize = 160_000;
 
 /// Draws the flux lines and returns their step of 2πψ [Wb]; `None` when there is no flux.
 fn flux_lines(

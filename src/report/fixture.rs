@@ -53,23 +53,8 @@ pub(crate) fn results() -> Results {
         }],
         ledger: ledger(),
         inductance_based: Some(1.2034),
-        gaps: vec![GapResult {
-            name: "1".to_string(),
-            gap_based: Some(1.143),
-            plain_reluctance: 2.947e6,
-            force: 4.21,
-            plain_force: 4.62,
-        }],
-        hot_spots: vec![
-            HotSpot { part: "post".to_string(), r: 5.6e-3, z: 5.6e-3, flux_density: 0.512 },
-            HotSpot { part: "post".to_string(), r: 5.6e-3, z: -5.6e-3, flux_density: 0.511 },
-            HotSpot {
-                part: "lower plate".to_string(),
-                r: 10.5e-3,
-                z: -5.7e-3,
-                flux_density: 0.344,
-            },
-        ],
+        gaps: gaps(),
+        hot_spots: hot_spots(),
         parts: vec![PartResult {
             name: "post".to_string(),
             volume: 8.9e-7,
@@ -86,15 +71,7 @@ pub(crate) fn results() -> Results {
             within_tolerance: true,
             blame: "the post gap carries most of the difference".to_string(),
         }),
-        requirements: vec![RequirementResult {
-            winding: "main".to_string(),
-            current: 2.5,
-            incremental: false,
-            least: Some(650e-6),
-            most: None,
-            inductance: 700.6e-6,
-            met: true,
-        }],
+        requirements: requirements(),
         notes: vec![
             "the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an average"
                 .to_string(),
@@ -135,6 +112,36 @@ fn probe() -> ProbeResult {
             })
             .collect(),
     }
+}
+
+fn hot_spots() -> Vec<HotSpot> {
+    vec![
+        HotSpot { part: "post".to_string(), r: 5.6e-3, z: 5.6e-3, flux_density: 0.512 },
+        HotSpot { part: "post".to_string(), r: 5.6e-3, z: -5.6e-3, flux_density: 0.511 },
+        HotSpot { part: "lower plate".to_string(), r: 10.5e-3, z: -5.7e-3, flux_density: 0.344 },
+    ]
+}
+
+fn requirements() -> Vec<RequirementResult> {
+    vec![RequirementResult {
+        winding: "main".to_string(),
+        current: 2.5,
+        incremental: false,
+        least: Some(650e-6),
+        most: None,
+        inductance: 700.6e-6,
+        met: true,
+    }]
+}
+
+fn gaps() -> Vec<GapResult> {
+    vec![GapResult {
+        name: "1".to_string(),
+        gap_based: Some(1.143),
+        plain_reluctance: 2.947e6,
+        force: 4.21,
+        plain_force: 4.62,
+    }]
 }
 
 /// The model of the same core.

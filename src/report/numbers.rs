@@ -43,7 +43,7 @@ pub(super) fn grouped(count: usize) -> String {
     let digits = count.to_string();
     let mut text = String::new();
     for (i, digit) in digits.chars().enumerate() {
-        if 0 < i && (digits.len() - i) % 3 == 0 {
+        if 0 < i && (digits.len() - i).is_multiple_of(3) {
             text.push(' ');
         }
         text.push(digit);

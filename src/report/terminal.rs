@@ -195,10 +195,10 @@ fn requirement_line(
         limits.join(" and ")
     );
     answer_line(text, "requirement", &engineering(requirement.inductance, "H", 4), &rest);
-    if look.colour {
-        if let Some(at) = text.rfind(verdict) {
-            text.replace_range(at..at + verdict.len(), &paint(verdict, code, true));
-        }
+    if look.colour
+        && let Some(at) = text.rfind(verdict)
+    {
+        text.replace_range(at..at + verdict.len(), &paint(verdict, code, true));
     }
 }
 
@@ -248,8 +248,23 @@ fn ledger(text: &mut String, results: &Results, look: &Look) {
             ]
         })
         .collect();
+    let mut rows = rows;
+    rows.extend(ledger_sum(results, decimals));
     heading(text, "Where the reluctance sits, in 1/µH", look);
     push_table(text, &["", "share", "field", "hand", "the hand value is"], &rows);
+}
+
+/// The last line: all of the field's reluctances, and all that the hand sum has. `None` where one is missing.
+fn ledger_sum(results: &Results, decimals: usize) -> Option<Vec<String>> {
+    let field = results.ledger.iter().map(|row| row.reluctance).sum::<Option<f64>>()?;
+    let hand: f64 = results.ledger.iter().filter_map(|row| row.hand).sum();
+    let share: f64 = results.ledger.iter().map(|row| row.share).sum();
+    let (hand, verdict) = match hand {
+        0.0 => ("–".to_string(), String::new()),
+        _ => (signed(1e-6 * hand, decimals), off_by(hand / field - 1.0)),
+    };
+    let share = format!("{} %", signed(100.0 * share, 1));
+    Some(vec!["= all together".to_string(), share, signed(1e-6 * field, decimals), hand, verdict])
 }
 
 /// "18 % high" of a relative deviation.

@@ -6,6 +6,7 @@ use super::sample::Sampler;
 use crate::adapt::Outcome;
 use crate::fem::{Coefficients, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
+use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
 use crate::sparse::{Stop, conjugate_gradients};
@@ -77,7 +78,7 @@ const TANGENT_DECREASE: f64 = 1e-10;
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
 pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
-    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.moments);
+    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &Fans::new(&outcome.mesh), &outcome.elements);
     let mut work = outcome.hierarchy.workspace();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };

@@ -71,7 +71,7 @@ impl<'a> Sampler<'a> {
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
                 let energy = TAU
-                    * crate::fem::moments::linear_energy(&self.outcome.moments[t].k, &gradients);
+                    * crate::fem::moments::linear_energy(&self.outcome.elements[t].k, &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {

@@ -3,8 +3,9 @@
 use super::Solution;
 use crate::fem::element::{Frame, Pair};
 use crate::fem::moments::{Saturated, linear_energy, linear_flux, rule_of, saturated};
-use crate::fem::{Coefficients, Moments, Reluctivity, Rules, Space, assemble, space};
+use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space, assemble, space};
 use crate::mesh::Mesh;
+use crate::mesh::fans::Fans;
 use crate::sparse::cg::dot;
 use crate::sparse::{CgError, Hierarchy, Interpolation, Matrix, Stop, conjugate_gradients};
 use rayon::prelude::*;
@@ -23,6 +24,7 @@ const ARMIJO: f64 = 1e-4;
 pub struct System<'a> {
     pub mesh: &'a Mesh,
     pub space: &'a Space,
+    pub fans: &'a Fans,
     pub coefficients: &'a Coefficients,
     pub rules: &'a Rules,
 }
@@ -49,11 +51,11 @@ pub enum SolveError {
 
 /// Improves `solution` until a further step would lower F by less than `decrease`·bᵀx.
 ///
-/// - `moments`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
+/// - `elements`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
 /// - `hierarchy`: levels of the earlier rounds in, this mesh's level added
 pub fn solve(
     system: &System,
-    moments: &mut [Moments],
+    elements: &mut [Element],
     hierarchy: &mut Hierarchy,
     solution: &mut Solution,
     decrease: f64,
@@ -62,7 +64,7 @@ pub fn solve(
     let load = assemble::load(system.mesh, system.space, system.coefficients);
     let mut x = system.space.restrict(&solution.vertex, &solution.edge);
     let effort = if system.coefficients.is_linear() {
-        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
         set_level(system, hierarchy, &matrix, &interpolation)?;
         let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
         let mut work = hierarchy.workspace();
@@ -72,7 +74,7 @@ pub fn solve(
             conjugate_gradients(&matrix, &load, &mut x, &stop, 0.0, &mut precondition)?;
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
     } else {
-        newton(system, moments, hierarchy, &interpolation, &load, &mut x, decrease)?
+        newton(system, elements, hierarchy, &interpolation, &load, &mut x, decrease)?
     };
     (solution.vertex, solution.edge) = system.space.expand(system.mesh, &x);
     Ok(effort)
@@ -92,7 +94,7 @@ fn set_level(
 
 fn newton(
     system: &System,
-    moments: &mut [Moments],
+    elements: &mut [Element],
     hierarchy: &mut Hierarchy,
     interpolation: &[Interpolation],
     load: &[f64],
@@ -101,10 +103,10 @@ fn newton(
 ) -> Result<Effort, SolveError> {
     let mut effort = Effort::default();
     let problem = Problem { system, load, saturating: saturating_triangles(system) };
-    let mut state = State::new(&problem, moments, x);
+    let mut state = State::new(&problem, elements, x);
     loop {
-        state.store_tangents(&problem, moments);
-        let matrix = assemble::stiffness(system.mesh, system.space, moments);
+        state.store_tangents(&problem, elements);
+        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
         set_level(system, hierarchy, &matrix, interpolation)?;
         let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
@@ -120,7 +122,7 @@ fn newton(
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);
         let before = state.value;
-        let Some(next) = backtrack(&problem, moments, x, &step, predicted, before) else {
+        let Some(next) = backtrack(&problem, elements, x, &step, predicted, before) else {
             // No step lowers F: at the rounding floor that is convergence, elsewhere a stall.
             return match predicted <= 1e-12 * scale {
                 true => Ok(effort),
@@ -129,7 +131,7 @@ fn newton(
         };
         state = next;
         if 0.5 * predicted <= decrease * 2.0 * state.value.abs() {
-            state.store_tangents(&problem, moments);
+            state.store_tangents(&problem, elements);
             return Ok(effort);
         }
         if effort.n_newton_steps == N_NEWTON_MAX {
@@ -162,7 +164,7 @@ fn law_of<'a>(system: &System<'a>, t: usize) -> &'a Reluctivity {
 /// Halves the step until F falls enough; moves `x` and returns the new state.
 fn backtrack(
     problem: &Problem,
-    moments: &[Moments],
+    elements: &[Element],
     x: &mut Vec<f64>,
     step: &[f64],
     predicted: f64,
@@ -171,7 +173,7 @@ fn backtrack(
     let mut length = 1.0;
     for _ in 0..N_HALVINGS_MAX {
         let trial: Vec<f64> = x.iter().zip(step).map(|(x, d)| x + length * d).collect();
-        let state = State::new(problem, moments, &trial);
+        let state = State::new(problem, elements, &trial);
         if state.value <= before - ARMIJO * length * predicted {
             *x = trial;
             return Some(state);
@@ -187,51 +189,56 @@ struct State {
     value: f64,
     /// g_i = ∫ ∇φ_i·σ̂.
     force: Vec<f64>,
-    /// Tangent moments of the saturating triangles.
-    tangents: Vec<Moments>,
+    /// Tangent matrices of the saturating triangles.
+    tangents: Vec<Element>,
 }
 
 impl State {
-    /// - `moments`: of the triangles with constant laws
-    fn new(problem: &Problem, moments: &[Moments], x: &[f64]) -> State {
+    /// - `elements`: of the triangles with constant laws
+    fn new(problem: &Problem, elements: &[Element], x: &[f64]) -> State {
         let system = problem.system;
         let (vertex, edge) = system.space.expand(system.mesh, x);
         let solution = Solution { vertex, edge };
-        let parts = linear_parts(system, moments, &solution);
+        let parts = linear_parts(system, elements, &solution);
         let (mut flux, mut energy): (Vec<_>, Vec<_>) = parts.into_iter().unzip();
-        let bent: Vec<Saturated> = evaluate_saturating(system, &problem.saturating, &solution);
+        let bent = evaluate_saturating(system, &problem.saturating, &solution);
         for (&t, part) in problem.saturating.iter().zip(&bent) {
-            (flux[t as usize], energy[t as usize]) = (part.flux, part.energy);
+            (flux[t as usize], energy[t as usize]) = (part.0, part.1);
         }
         let force = assemble::residual_of_flux(system.mesh, system.space, |t| flux[t]);
         let value = energy.iter().sum::<f64>() - dot(problem.load, x);
-        State { value, force, tangents: bent.into_iter().map(|p| p.tangent).collect() }
+        State { value, force, tangents: bent.into_iter().map(|part| part.2).collect() }
     }
 
-    fn store_tangents(&self, problem: &Problem, moments: &mut [Moments]) {
+    fn store_tangents(&self, problem: &Problem, elements: &mut [Element]) {
         for (&t, tangent) in problem.saturating.iter().zip(&self.tangents) {
-            moments[t as usize] = *tangent;
+            elements[t as usize] = *tangent;
         }
     }
 }
 
-/// Flux moments and energy of the triangles with constant laws; zeros elsewhere.
+/// Flux elements and energy of the triangles with constant laws; zeros elsewhere.
 fn linear_parts(
     system: &System,
-    moments: &[Moments],
+    elements: &[Element],
     solution: &Solution,
 ) -> Vec<([Pair; 3], f64)> {
     let part = |t: usize| match law_of(system, t) {
         Reluctivity::Constant(_) => {
             let gradients = solution.gradients(system.mesh, t);
-            (linear_flux(&moments[t].k, &gradients), linear_energy(&moments[t].k, &gradients))
+            (linear_flux(&elements[t].k, &gradients), linear_energy(&elements[t].k, &gradients))
         }
         Reluctivity::Saturating(_) => ([[0.0; 2]; 3], 0.0),
     };
     (0..system.mesh.triangles.len()).into_par_iter().with_min_len(2048).map(part).collect()
 }
 
-fn evaluate_saturating(system: &System, triangles: &[u32], solution: &Solution) -> Vec<Saturated> {
+/// Flux moments, energy and tangent matrices of the triangles with saturating laws.
+fn evaluate_saturating(
+    system: &System,
+    triangles: &[u32],
+    solution: &Solution,
+) -> Vec<([Pair; 3], f64, Element)> {
     let part = |&t: &u32| {
         let t = t as usize;
         let Reluctivity::Saturating(law) = law_of(system, t) else {
@@ -239,17 +246,19 @@ fn evaluate_saturating(system: &System, triangles: &[u32], solution: &Solution) 
         };
         let frame = Frame::new(system.mesh, t);
         let gradients = solution.gradients(system.mesh, t);
-        saturated(&frame, rule_of(system.rules, &frame), law, &gradients)
+        let Saturated { flux, energy, tangent } =
+            saturated(&frame, rule_of(system.rules, &frame), law, &gradients);
+        (flux, energy, Element::new(&frame, &tangent))
     };
     triangles.par_iter().with_min_len(128).map(part).collect()
 }
 
-/// Sets the moments of all saturating triangles to the tangent at `solution`.
-pub fn update_tangent(system: &System, moments: &mut [Moments], solution: &Solution) {
+/// Sets the elements of all saturating triangles to the tangent at `solution`.
+pub fn update_tangent(system: &System, elements: &mut [Element], solution: &Solution) {
     let triangles = saturating_triangles(system);
     let parts = evaluate_saturating(system, &triangles, solution);
     for (&t, part) in triangles.iter().zip(&parts) {
-        moments[t as usize] = part.tangent;
+        elements[t as usize] = part.2;
     }
 }
 

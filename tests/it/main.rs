@@ -2,6 +2,7 @@
 #![allow(clippy::unwrap_used)]
 
 mod architecture;
+mod cli;
 mod messages;
 mod mutations;
 mod sheets;

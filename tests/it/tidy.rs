@@ -51,13 +51,14 @@ fn untidy(name: &str, text: &str) -> Vec<String> {
         if is_public_item(line) && !is_documented(&lines[..i]) {
             found.push(format!("{name}:{}: no `///` above `{}`", i + 1, line.trim()));
         }
-        if let Some(n_lines) = function_length(&lines[i..]) {
-            if is_measured && N_FUNCTION_LINES_MAX < n_lines {
-                found.push(format!(
-                    "{name}:{}: a function of {n_lines} lines, at most {N_FUNCTION_LINES_MAX}",
-                    i + 1
-                ));
-            }
+        if let Some(n_lines) = function_length(&lines[i..])
+            && is_measured
+            && N_FUNCTION_LINES_MAX < n_lines
+        {
+            found.push(format!(
+                "{name}:{}: a function of {n_lines} lines, at most {N_FUNCTION_LINES_MAX}",
+                i + 1
+            ));
         }
     }
     found

@@ -18,14 +18,15 @@ fn the_screen_answers_first() {
           2 852 unknowns, 3 rounds, 0.06 s
 
         Where the reluctance sits, in 1/µH
-                                share  field   hand  the hand value is
-          post                  3.1 %  0.078  0.081         3.8 % high
-          wall                  1.4 %  0.035  0.036         2.1 % high
-          upper plate           1.1 %  0.028  0.027          2.5 % low
-          lower plate           1.1 %  0.028  0.027          2.5 % low
-          post gap             72.4 %  1.823  2.160          18 % high
-          main and its window  18.7 %  0.471      –
-          outside               2.2 %  0.055      –
+                                 share  field   hand  the hand value is
+          post                   3.1 %  0.078  0.081         3.8 % high
+          wall                   1.4 %  0.035  0.036         2.1 % high
+          upper plate            1.1 %  0.028  0.027          2.5 % low
+          lower plate            1.1 %  0.028  0.027          2.5 % low
+          post gap              72.4 %  1.823  2.160          18 % high
+          main and its window   18.7 %  0.471      –
+          outside                2.2 %  0.055      –
+          = all together       100.0 %  2.518  2.331          7.4 % low
 
         Fringing and pull of the gaps
              own factor  l/(µ0 A), 1/µH   force  by B²A/2µ0

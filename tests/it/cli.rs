@@ -1,0 +1,257 @@
+//! The program as a user meets it: files, screen, exit codes.
+
+use std::path::{Path, PathBuf};
+use std::process::{Command, Output, Stdio};
+
+const CHOKE: &str = include_str!("../../meshes/buoy_choke.toml");
+
+/// A fresh directory with `text` as its `choke.toml`.
+fn bench(text: &str) -> (tempfile::TempDir, PathBuf) {
+    let directory = tempfile::tempdir().unwrap();
+    let sheet = directory.path().join("choke.toml");
+    std::fs::write(&sheet, text).unwrap();
+    (directory, sheet)
+}
+
+fn gapwright(arguments: &[&str], sheet: &Path) -> Command {
+    let mut command = Command::new(env!("CARGO_BIN_EXE_gapwright"));
+    command.arg(arguments[0]).arg(sheet).args(&arguments[1..]).env_remove("NO_COLOR");
+    command
+}
+
+fn run(arguments: &[&str], sheet: &Path) -> Output {
+    gapwright(arguments, sheet).output().unwrap()
+}
+
+fn names(directory: &Path) -> Vec<String> {
+    let entries = std::fs::read_dir(directory).unwrap();
+    let mut names: Vec<String> =
+        entries.map(|e| e.unwrap().file_name().to_string_lossy().into_owned()).collect();
+    names.sort();
+    names
+}
+
+#[track_caller]
+fn check_code(output: &Output, code: i32) {
+    let [out, err] =
+        [&output.stdout, &output.stderr].map(|b| String::from_utf8_lossy(b).into_owned());
+    assert_eq!(output.status.code(), Some(code), "stdout:\n{out}\nstderr:\n{err}");
+}
+
+#[test]
+fn solve_answers_on_the_screen_and_writes_every_file_beside_the_sheet() {
+    let (directory, sheet) = bench(CHOKE);
+    let output = run(&["solve"], &sheet);
+    check_code(&output, 0);
+    let screen = String::from_utf8(output.stdout).unwrap();
+    assert!(screen.starts_with("Buoy charger choke\n  A_L "), "{screen}");
+    assert!(screen.contains("surely between") && !screen.contains('\u{1b}'), "{screen}");
+    assert!(output.stderr.is_empty());
+    assert_eq!(names(directory.path()), ["choke.out", "choke.toml"]);
+    assert_eq!(
+        names(&directory.path().join("choke.out")),
+        ["field.svg", "field.vtu", "result.json", "rounds.csv", "section.svg"]
+    );
+}
+
+#[test]
+fn json_is_the_only_thing_on_stdout_and_no_file_appears() {
+    let (directory, sheet) = bench(CHOKE);
+    let output = run(&["solve", "--json"], &sheet);
+    check_code(&output, 0);
+    let value: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    let schema = gapwright::report::json::result_schema();
+    let validator = jsonschema::validator_for(&schema).unwrap();
+    let errors: Vec<String> = validator.iter_errors(&value).map(|e| e.to_string()).collect();
+    assert!(errors.is_empty(), "{errors:#?}");
+    assert!(value.get("timings").is_none());
+    assert_eq!(names(directory.path()), ["choke.toml"]);
+}
+
+#[test]
+fn quiet_prints_nothing_and_writes_the_files() {
+    let (directory, sheet) = bench(CHOKE);
+    let output = run(&["solve", "--quiet"], &sheet);
+    check_code(&output, 0);
+    assert!(output.stdout.is_empty() && output.stderr.is_empty());
+    assert!(directory.path().join("choke.out/result.json").exists());
+}
+
+#[test]
+fn equal_sheets_give_equal_bytes_for_any_number_of_threads() {
+    let (directory, sheet) = bench(CHOKE);
+    let (one, three) = (directory.path().join("one"), directory.path().join("three"));
+    check_code(&run(&["solve", "--threads", "1", "--out", one.to_str().unwrap()], &sheet), 0);
+    check_code(&run(&["solve", "--threads", "3", "--out", three.to_str().unwrap()], &sheet), 0);
+    assert_eq!(names(&one), names(&three));
+    for name in names(&one) {
+        assert!(
+            std::fs::read(one.join(&name)).unwrap() == std::fs::read(three.join(&name)).unwrap(),
+            "{name} differs"
+        );
+    }
+}
+
+#[test]
+fn stage_times_appear_only_on_request() {
+    let (_directory, sheet) = bench(CHOKE);
+    let output = run(&["solve", "--json", "--timings"], &sheet);
+    let value: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    assert!(3 < value["timings"].as_array().unwrap().len());
+}
+
+#[test]
+fn a_figure_outside_its_tolerance_ends_with_1() {
+    let (_directory, sheet) =
+        bench(&CHOKE.replace("inductance = \"0.70 mH\"", "inductance = \"0.90 mH\""));
+    let output = run(&["solve"], &sheet);
+    check_code(&output, 1);
+    assert!(String::from_utf8_lossy(&output.stdout).contains("outside your ±3 %"));
+}
+
+#[test]
+fn a_wrong_sheet_ends_with_2_and_writes_nothing() {
+    for (from, to, wanted) in [
+        ("permeability = 2000", "permeability = -1", "permeability"),
+        ("[core]", "[cord]", "cord"),
+        ("radii   = [6.6, 10.2]", "radii   = [2.0, 10.2]", "post"),
+    ] {
+        assert!(CHOKE.contains(from), "{from}");
+        let (directory, sheet) = bench(&CHOKE.replace(from, to));
+        for command in ["check", "solve"] {
+            let output = run(&[command], &sheet);
+            check_code(&output, 2);
+            let message = String::from_utf8(output.stderr).unwrap();
+            assert!(message.contains("choke.toml:") && message.contains(wanted), "{message}");
+            assert!(output.stdout.is_empty());
+            assert_eq!(names(directory.path()), ["choke.toml"]);
+        }
+    }
+}
+
+#[test]
+fn files_that_cannot_be_a_sheet_end_with_2_and_a_reason() {
+    let (directory, sheet) = bench("");
+    check_code(&run(&["check"], &sheet), 2);
+    let missing = run(&["check"], &directory.path().join("none.toml"));
+    check_code(&missing, 2);
+    assert!(
+        String::from_utf8_lossy(&missing.stderr)
+            .contains("none.toml could not be read: no such file")
+    );
+    check_code(&run(&["check"], directory.path()), 2);
+    std::fs::write(&sheet, [0xff, 0xfe, 0x00, 0x41]).unwrap();
+    check_code(&run(&["check"], &sheet), 2);
+    // Sparse: two gigabytes that take no room, refused by their length.
+    std::fs::File::create(&sheet).unwrap().set_len(2_000_000_000).unwrap();
+    let large = run(&["check"], &sheet);
+    check_code(&large, 2);
+    let message = String::from_utf8_lossy(&large.stderr).into_owned();
+    assert!(message.contains("the file has 2000") && message.contains("are read"), "{message}");
+}
+
+#[test]
+fn an_interval_that_is_not_reached_ends_with_3_says_so_first_and_is_written() {
+    let (directory, sheet) =
+        bench(&CHOKE.replace("interval = \"0.1 %\"", "interval = \"0.01 %\"\nmax_unknowns = 1500"));
+    let output = run(&["solve"], &sheet);
+    check_code(&output, 3);
+    let screen = String::from_utf8(output.stdout).unwrap();
+    assert!(screen.lines().nth(1).unwrap().contains("Not reached"), "{screen}");
+    let json = std::fs::read_to_string(directory.path().join("choke.out/result.json")).unwrap();
+    assert!(json.contains("was wanted"));
+}
+
+#[test]
+fn a_place_that_cannot_be_written_ends_with_4_and_stays_clean() {
+    let (directory, sheet) = bench(CHOKE);
+    let blocked = directory.path().join("choke.toml/deeper");
+    let output = run(&["solve", "--out", blocked.to_str().unwrap()], &sheet);
+    check_code(&output, 4);
+    assert!(String::from_utf8_lossy(&output.stderr).contains("could not be written"));
+    assert_eq!(names(directory.path()), ["choke.toml"]);
+}
+
+#[test]
+fn options_that_make_no_sense_end_with_2() {
+    let (_directory, sheet) = bench(CHOKE);
+    for wrong in [
+        &["solve", "--interval", "0"][..],
+        &["solve", "--threads", "0"],
+        &["solve", "--material", "x"],
+        &["solve", "--material", "nothing=none.csv"],
+    ] {
+        check_code(&run(wrong, &sheet), 2);
+    }
+}
+
+#[test]
+fn another_table_changes_the_material_for_one_run() {
+    let (directory, sheet) = bench(CHOKE);
+    let table = directory.path().join("hot.csv");
+    std::fs::write(&table, include_str!("../../meshes/ferrite_hot.csv")).unwrap();
+    let argument = format!("soft_ferrite={}", table.display());
+    let output = run(&["solve", "--json", "--interval", "1%", "--material", &argument], &sheet);
+    let value: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
+    let inductance = value["inductance"]["value"].as_f64().unwrap();
+    // The constant permeability gives 700.6 µH; a table that saturates lower gives another value.
+    assert!((inductance / 700.6e-6 - 1.0).abs() > 1e-3, "{inductance}");
+}
+
+#[test]
+fn a_reader_that_goes_away_is_no_fault() {
+    let (_directory, sheet) = bench(CHOKE);
+    let mut child = gapwright(&["solve", "--json"], &sheet)
+        .stdout(Stdio::piped())
+        .stderr(Stdio::piped())
+        .spawn()
+        .unwrap();
+    drop(child.stdout.take());
+    let output = child.wait_with_output().unwrap();
+    check_code(&output, 0);
+    assert!(output.stderr.is_empty());
+}
+
+#[test]
+#[cfg(target_os = "linux")]
+fn a_full_disk_behind_stdout_ends_with_4() {
+    let (_directory, sheet) = bench(CHOKE);
+    let full = std::fs::OpenOptions::new().write(true).open("/dev/full").unwrap();
+    let output = gapwright(&["solve", "--json"], &sheet)
+        .stdout(full)
+        .stderr(Stdio::piped())
+        .output()
+        .unwrap();
+    check_code(&output, 4);
+}
+
+#[test]
+fn check_reads_the_sheet_back_and_draws_the_section() {
+    let (directory, sheet) = bench(CHOKE);
+    let output = run(&["check"], &sheet);
+    check_code(&output, 0);
+    assert!(String::from_utf8_lossy(&output.stdout).contains("42 turns at 1.80 A"));
+    assert_eq!(names(&directory.path().join("choke.out")), ["section.svg"]);
+    let json = run(&["check", "--json"], &sheet);
+    let value: serde_json::Value = serde_json::from_slice(&json.stdout).unwrap();
+    assert_eq!(value["windings"][0]["turns"], 42.0);
+}
+
+#[test]
+fn the_vtk_library_reads_the_field_and_derives_the_same_flux_density() {
+    let (directory, sheet) = bench(CHOKE);
+    check_code(&run(&["solve", "--quiet"], &sheet), 0);
+    let script = Path::new(env!("CARGO_MANIFEST_DIR")).join("validation/read_vtu.py");
+    let file = directory.path().join("choke.out/field.vtu");
+    let is_ci = std::env::var_os("CI").is_some_and(|v| v == "true");
+    let Ok(output) = Command::new("python3").arg(script).arg(file).output() else {
+        assert!(!is_ci, "python3 is not installed");
+        eprintln!("skipped, not installed: python3");
+        return;
+    };
+    if output.status.code() == Some(77) && !is_ci {
+        eprintln!("{}", String::from_utf8_lossy(&output.stdout));
+        return;
+    }
+    check_code(&output, 0);
+}
