@@ -1,6 +1,6 @@
 //! First meshes of reference sections, random sections and hard corners.
 
-use super::{Chart, Mesh, MeshError, first_mesh};
+use super::{Chart, Mesh, MeshError, bisect, first_mesh};
 use crate::geometry::samples::{
     self, Across, Form, Model, PotWall, doubled, empty, part, r1_with_gap, winding,
 };
@@ -380,7 +380,8 @@ fn details_too_fine_are_told_with_their_place() {
     let parts = vec![part("a", &square(1.0, 2.0)), part("b", &square(2.000001, 3.0))];
     let outline = outline(&Model { parts, ..empty() }).unwrap();
     match first_mesh(&outline) {
-        Err(MeshError::TooFine { r_mm, z_mm, .. }) => {
+        Err(MeshError::TooFine { r_mm, z_mm, about, .. }) => {
+            assert!(about.contains('a') || about.contains('b'), "{about}");
             assert!((r_mm - 2.0).abs() < 1e-3 && (-1e-3..1.001).contains(&z_mm), "{r_mm} {z_mm}");
         }
         other => panic!("{:?}", other.map(|mesh| mesh.n_triangles())),
@@ -410,4 +411,17 @@ fn the_same_section_gives_the_same_mesh() {
         let model = random_rectangles(seed);
         assert_eq!(mesh_of(&model).1, mesh_of(&model).1);
     }
+}
+
+#[test]
+fn a_bisected_mesh_is_valid_though_its_edges_have_lost_their_order() {
+    let (_, mut mesh) = mesh_of(&samples::r1());
+    for _ in 0..3 {
+        let all: Vec<u32> = (0..mesh.n_triangles() as u32).collect();
+        let (mut vertex, mut edge) = (vec![0.0; mesh.n_vertices()], vec![0.0; mesh.edges.len()]);
+        let mut carried = bisect::Carried { vertex: &mut vertex, edge: &mut edge };
+        bisect::bisect(&mut mesh, &all, &mut carried);
+        mesh.validate();
+    }
+    assert!(mesh.edges.iter().any(|[a, b]| a > b));
 }

@@ -62,7 +62,7 @@ fn slivers_of_a_millionth_of_the_size() {
     let wedge = Draft::new(2000.0)
         .part(&[[1.0, 0.0], [10.0, 0.0], [10.0, 0.00001]])
         .coil([11.0, 12.0], [-1.0, 1.0]);
-    let words = ["torture.toml:13:11: ", "part `part 1` meet under 6.4e-5°", "r = 1 mm, z = 0 mm"];
+    let words = ["torture.toml:14:11: ", "part `part 1` meet under 6.4e-5°", "r = 1 mm, z = 0 mm"];
     refused(&wedge.text(), &words);
     let needle = Draft::new(2000.0)
         .part(&[[5.0, 0.0], [5.00001, 0.0], [5.0, 10.0]])
