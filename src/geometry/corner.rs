@@ -110,10 +110,11 @@ fn check_exponent(
     let Some(exponent) = exponent(&around).filter(|&exponent| exponent < least) else {
         return Ok(());
     };
-    // Of the shapes there, the last is blamed for the first.
+    // Of the shapes there that differ from air, the last is blamed for the first.
     let shapes = |pick: fn(usize, usize) -> usize| {
         let all = sectors.iter().map(|s| s.shape);
-        &drawing.shapes[all.reduce(pick).unwrap_or(0)]
+        let solid = all.filter(|&shape| permeability(model, drawing, shape) != 1.0);
+        &drawing.shapes[solid.reduce(pick).unwrap_or(sectors[0].shape)]
     };
     let (first, last) = (shapes(usize::min), shapes(usize::max));
     let message = format!(

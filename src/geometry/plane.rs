@@ -268,7 +268,7 @@ fn overlap([first, second]: [&Shape; 2], at: Point, boxes: [&[f64; 4]; 2]) -> Fa
         first.label
     );
     let key = match second.subject {
-        Subject::Winding { .. } => Some(shorter_way_out(boxes[0], boxes[1])),
+        Subject::Winding { .. } => Some(wrong_key(boxes[0], boxes[1])),
         other => key_of(other),
     };
     let mut it = fault(second.subject, key, message, help);
@@ -276,10 +276,16 @@ fn overlap([first, second]: [&Shape; 2], at: Point, boxes: [&[f64; 4]; 2]) -> Fa
     it
 }
 
-/// The key of a winding that moves it out of a box by the shorter way.
-fn shorter_way_out(first: &[f64; 4], second: &[f64; 4]) -> &'static str {
+/// The key of a winding that is wrong: heights where it stands out of the other's box above or below only, or, standing out
+/// at a corner, where that is the shorter way out; else radii.
+fn wrong_key(first: &[f64; 4], second: &[f64; 4]) -> &'static str {
+    let stands_out = |low: usize| second[low] < first[low] || second[low + 1] > first[low + 1];
     let depth = |low: usize| (first[low + 1] - second[low]).min(second[low + 1] - first[low]);
-    if depth(2) < depth(0) { "heights" } else { "radii" }
+    match (stands_out(0), stands_out(2)) {
+        (false, true) => "heights",
+        (true, true) if depth(2) < depth(0) => "heights",
+        _ => "radii",
+    }
 }
 
 /// The key that draws a subject's shape.
