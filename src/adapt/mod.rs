@@ -10,7 +10,7 @@ use crate::geometry::{Outline, Region};
 use crate::mesh::bisect::{Carried, bisect};
 use crate::mesh::fans::Fans;
 use crate::mesh::{Mesh, MeshError, first_mesh};
-use crate::model::{Accuracy, Law, Model};
+use crate::model::{Point, Accuracy, Law, Model};
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::sparse::Hierarchy;
 use crate::units::{Joule, MU0};
@@ -68,6 +68,8 @@ pub struct Outcome {
     pub hierarchy: Hierarchy,
     /// Guaranteed ends of dW'/ds at s = 1, all currents scaled by s; `None` with constant laws, where it is 2W'.
     pub work_rate_ends: Option<[Joule; 2]>,
+    /// Where triangles reached the size of rounding before the interval closed: no mesh resolves the field there.
+    pub unresolved: Option<Point>,
     /// False when `n_unknowns_max` stopped the rounds before the wanted width.
     pub reached: bool,
 }
@@ -136,6 +138,7 @@ pub fn rounds(
         rounds: Vec::new(),
         hierarchy: Hierarchy::default(),
         work_rate_ends: None,
+        unresolved: None,
         reached: false,
     };
     // Before the first bound nothing is known; 1 means an interval as wide as the value.
@@ -162,7 +165,13 @@ pub fn refine(
             return Ok(());
         }
         let mut marked = mark::doerfler(&outcome.bound.shares, MARKED_SHARE);
+        let worst = marked.first().copied();
+        marked.retain(|&t| mark::is_divisible(&outcome.mesh, t as usize));
         marked.truncate(n_marked_max);
+        if marked.is_empty() {
+            outcome.unresolved = worst.map(|t| outcome.mesh.corners(t as usize)[0]);
+            return Ok(());
+        }
         let solution = &mut outcome.solution;
         let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
         let changed = bisect(&mut outcome.mesh, &marked, &mut carried);

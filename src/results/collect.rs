@@ -146,6 +146,14 @@ fn probes(model: &Model, sampler: &Sampler) -> Vec<ProbeResult> {
 /// Usable but doubtful: fields past the last point of a table, legs that are not round.
 fn notes(model: &Model, sampler: &Sampler) -> Vec<String> {
     let mut notes = parts::beyond_tables(model, sampler);
+    if let Some(at) = sampler.outcome.unresolved {
+        notes.push(format!(
+            "the interval cannot close further: near r = {:.6} mm, z = {:.6} mm the field is too sharp for any mesh; \
+             parts that touch only in a point do that: let them share an edge or leave a gap",
+            1e3 * at.r,
+            1e3 * at.z
+        ));
+    }
     if let Some(core) = &model.core {
         if let crate::model::Form::Pot { wall: crate::model::PotWall::OuterLegsArea(_), .. } =
             core.form

@@ -9,7 +9,7 @@ use crate::geometry::{Outline, Region, RegionKind};
 use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
-use crate::sparse::{Stop, conjugate_gradients};
+use crate::sparse::{Multilevel, Stop, Swept, Workspace};
 use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
@@ -66,7 +66,8 @@ pub fn unit_density(model: &Model, outline: &Outline, w: usize) -> Vec<AmperePer
 /// The load vector b of given current densities on the outcome's mesh; for 1 A in a winding its λ is 2π b·x.
 pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
     // `load` reads the densities only.
-    let coefficients = Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
+    let coefficients =
+        Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
     assemble::load(&outcome.mesh, &outcome.space, &coefficients)
 }
 
@@ -78,18 +79,13 @@ const TANGENT_DECREASE: f64 = 1e-10;
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
 pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
-    let matrix = assemble::stiffness(
-        &outcome.mesh,
-        &outcome.space,
-        &Fans::new(&outcome.mesh),
-        &outcome.elements,
-    );
-    let mut work = outcome.hierarchy.workspace();
+    let fans = Fans::new(&outcome.mesh);
+    let matrix =
+        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements));
+    let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
-    let mut precondition =
-        |r: &[f64], z: &mut [f64]| outcome.hierarchy.precondition(&matrix, &mut work, r, z);
-    conjugate_gradients(&matrix, rate, &mut y, &stop, 0.0, &mut precondition).ok()?;
+    Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0).ok()?;
     Some(TAU * dot(unit, &y))
 }
 

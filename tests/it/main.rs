@@ -1,10 +1,19 @@
 //! Integration tests, one binary: text in, text out.
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod architecture;
 mod cli;
+mod cases;
+mod forces;
+mod guarantee;
+mod hot_spots;
+mod joint;
+mod ledger;
 mod messages;
 mod mutations;
+mod points;
+mod rates;
 mod sheets;
 mod tidy;
 mod torture;
+mod vtk_reader;
