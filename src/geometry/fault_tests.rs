@@ -2,7 +2,7 @@
 
 use super::samples::{core, drum, empty, gap, part, r1, r7, r8, winding};
 use super::*;
-use crate::model::{Across, Form, PotWall};
+use crate::model::{Across, Form, Law, PotWall};
 
 const MM: f64 = 1e-3;
 
@@ -37,7 +37,7 @@ fn overlaps_name_both_shapes_and_the_place() {
     check_fault(
         &through_plate,
         subject,
-        Some("radii"),
+        Some("heights"),
         &["winding `main` overlaps the upper plate near"],
     );
     let inside_wall = coil([11.0, 12.0], [-1.0, 1.0]);
@@ -265,4 +265,41 @@ fn a_section_in_the_wrong_unit_is_refused() {
         let w = Subject::Winding { winding: 0, section: 0 };
         check_fault(&model, w, None, &["winding `w` reaches", "mm from the origin"]);
     }
+}
+
+#[test]
+fn a_tip_sharper_than_the_mesh_can_do_is_refused_by_its_place() {
+    let wedge = |height: f64| Model {
+        parts: vec![part("wedge", &[(1.0, 0.0), (10.0, 0.0), (10.0, height)])],
+        ..empty()
+    };
+    let words = ["borders of part `wedge` meet under", "r = 1 mm, z = 0 mm"];
+    check_fault(&wedge(1e-5), Subject::Part(0), Some("outline"), &words);
+    outline(&wedge(1e-2)).unwrap();
+    // The axis is a border as well.
+    let needle = |r: f64| Model {
+        parts: vec![part("needle", &[(0.0, 0.0), (r, 10.0), (r, 11.0), (0.0, 11.0)])],
+        ..empty()
+    };
+    check_fault(&needle(5e-4), Subject::Part(0), Some("outline"), &["r = 0 mm, z = 0 mm"]);
+    outline(&needle(0.1)).unwrap();
+}
+
+#[test]
+fn parts_of_high_contrast_that_touch_only_in_a_point_are_refused() {
+    let pair = |permeability: f64| {
+        let mut model = Model {
+            parts: vec![
+                part("a", &[(2.0, 0.0), (4.0, 0.0), (4.0, 2.0), (2.0, 2.0)]),
+                part("b", &[(4.0, 2.0), (6.0, 2.0), (6.0, 4.0), (4.0, 4.0)]),
+            ],
+            ..empty()
+        };
+        model.materials[0].law = Law::Constant { permeability };
+        model
+    };
+    let words = ["part `a` and part `b` touch only in a point, r = 4 mm, z = 2 mm"];
+    check_fault(&pair(2000.0), Subject::Part(1), Some("outline"), &words);
+    check_fault(&pair(1e-3), Subject::Part(1), Some("outline"), &words);
+    outline(&pair(20.0)).unwrap();
 }

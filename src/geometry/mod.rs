@@ -1,6 +1,7 @@
 //! Forms, gaps, windings and parts → [`Outline`]: tagged, crossing-free segments inside the cap polygon.
 
 mod cap;
+mod corner;
 mod drawing;
 mod fault;
 #[cfg(test)]
@@ -114,7 +115,8 @@ const N_REGIONS_MAX: usize = 10_000;
 ///
 /// # Errors
 /// A [`Fault`] that names the shapes and the place [mm] for everything that cannot be drawn: dimensions that are not finite,
-/// not in order or negative; gaps outside their leg; shapes that overlap; outlines that cross themselves.
+/// not in order or negative; gaps outside their leg; shapes that overlap; outlines that cross themselves; tips and contacts in a
+/// point that no mesh resolves.
 pub fn outline(model: &Model) -> Result<Outline, Fault> {
     let n_sections: usize = model.windings.iter().map(|w| w.sections.len()).sum();
     let n_regions = n_sections + model.parts.len() + 2 * model.gaps.len();
@@ -142,6 +144,7 @@ pub fn outline(model: &Model) -> Result<Outline, Fault> {
     }
     check_size(&drawing)?;
     let plane = plane::join(&drawing)?;
+    corner::check(model, &drawing, &plane)?;
     Ok(finish(drawing, plane))
 }
 

@@ -213,7 +213,11 @@ fn check_overlaps(shapes: &[Shape], points: &[Point], borders: &[Vec<u32>]) -> R
                 [&outlines[first], &outlines[second]],
             );
             if let Some(at) = at {
-                return Err(overlap(&shapes[first], &shapes[second], at, &outlines[first]));
+                return Err(overlap(
+                    [&shapes[first], &shapes[second]],
+                    at,
+                    [&boxes[first], &boxes[second]],
+                ));
             }
         }
     }
@@ -256,20 +260,36 @@ fn runs_along(chain: &[u32], [a, b]: [u32; 2]) -> i32 {
 }
 
 /// The later shape is blamed; the help names the box of the earlier.
-fn overlap(first: &Shape, second: &Shape, at: Point, first_outline: &[Point]) -> Fault {
+fn overlap([first, second]: [&Shape; 2], at: Point, boxes: [&[f64; 4]; 2]) -> Fault {
     let message = format!("{} overlaps {} near {}", second.label, first.label, place(at));
-    let [r0, r1, z0, z1] = bounding_box(first_outline).map(super::fault::mm);
+    let [r0, r1, z0, z1] = boxes[0].map(super::fault::mm);
     let help = format!(
         "{} spans r = {r0} to {r1} mm and z = {z0} to {z1} mm; shapes may touch but not share an area",
         first.label
     );
-    let mut it = fault(second.subject, key_of(second.subject), message, help);
+    let key = match second.subject {
+        Subject::Winding { .. } => Some(wrong_key(boxes[0], boxes[1])),
+        other => key_of(other),
+    };
+    let mut it = fault(second.subject, key, message, help);
     it.other = Some(first.subject);
     it
 }
 
+/// The key of a winding that is wrong: heights where it stands out of the other's box above or below only, or, standing out
+/// at a corner, where that is the shorter way out; else radii.
+fn wrong_key(first: &[f64; 4], second: &[f64; 4]) -> &'static str {
+    let stands_out = |low: usize| second[low] < first[low] || second[low + 1] > first[low + 1];
+    let depth = |low: usize| (first[low + 1] - second[low]).min(second[low + 1] - first[low]);
+    match (stands_out(0), stands_out(2)) {
+        (false, true) => "heights",
+        (true, true) if depth(2) < depth(0) => "heights",
+        _ => "radii",
+    }
+}
+
 /// The key that draws a subject's shape.
-fn key_of(subject: Subject) -> Option<&'static str> {
+pub(super) fn key_of(subject: Subject) -> Option<&'static str> {
     match subject {
         Subject::Part(_) => Some("outline"),
         Subject::Winding { .. } => Some("radii"),

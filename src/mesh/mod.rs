@@ -50,10 +50,18 @@ pub struct Mesh {
 pub enum MeshError {
     /// Details too fine for the bounds of [`first_mesh`].
     #[error(
-        "the mesh reached {n_vertices} vertices near r = {r_mm:.6} mm, z = {z_mm:.6} mm: a gap, a sliver or an acute corner there \
-         is too fine for this section; make it thicker or leave it out"
+        "the section has a detail too fine to be meshed near r = {r_mm} mm, z = {z_mm} mm ({about}): triangles of {edge_mm:.1e} mm \
+         there, {n_vertices} vertices so far; make the gap, wall or sliver there thicker, or leave it out"
     )]
-    TooFine { n_vertices: usize, r_mm: f64, z_mm: f64 },
+    TooFine {
+        n_vertices: usize,
+        r_mm: f64,
+        z_mm: f64,
+        /// Length of the finest border [mm].
+        edge_mm: f64,
+        /// Names of the regions there.
+        about: String,
+    },
     /// The triangulation refused an outline that should have been crossing-free: our bug.
     #[error("the triangulation failed: {reason}")]
     Kernel { reason: String },

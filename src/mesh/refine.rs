@@ -286,13 +286,41 @@ impl<'a> Refiner<'a> {
     fn check_bounds(&self, a: Point, b: Point, at: Point) -> Result<(), MeshError> {
         let length = (a.r - b.r).abs().max((a.z - b.z).abs());
         if length < self.edge_min || self.kernel.num_vertices() >= size::N_VERTICES_MAX {
-            return Err(MeshError::TooFine {
-                n_vertices: self.kernel.num_vertices(),
-                r_mm: at.r * self.unit * 1e3,
-                z_mm: at.z * self.unit * 1e3,
-            });
+            return Err(self.too_fine(at, length));
         }
         Ok(())
+    }
+
+    /// The error of a detail too fine, at the shortest border of all: what is being split when the bound is met may be far away.
+    fn too_fine(&self, at: Point, length: f64) -> MeshError {
+        let shortest = self
+            .kernel
+            .undirected_edges()
+            .filter(|edge| edge.is_constraint_edge())
+            .map(|edge| {
+                let [a, b] = edge.positions().map(point);
+                let middle = Point { r: 0.5 * (a.r + b.r), z: 0.5 * (a.z + b.z) };
+                ((a.r - b.r).hypot(a.z - b.z), middle)
+            })
+            .fold((length, at), |best, next| if next.0 < best.0 { next } else { best });
+        let (edge, at) = shortest;
+        let (r, z) = (at.r * self.unit, at.z * self.unit);
+        let step = edge * self.unit;
+        let mut names: Vec<&str> = Vec::new();
+        for (dr, dz) in [(1.0, 1.0), (-1.0, 1.0), (-1.0, -1.0), (1.0, -1.0)] {
+            let near = Point { r: (r + dr * step).abs(), z: z + dz * step };
+            let name = &self.outline.regions[self.outline.region_at(near).0 as usize].name;
+            if !names.contains(&name.as_str()) {
+                names.push(name);
+            }
+        }
+        MeshError::TooFine {
+            n_vertices: self.kernel.num_vertices(),
+            r_mm: six_digits(r * 1e3),
+            z_mm: six_digits(z * 1e3),
+            edge_mm: step * 1e3,
+            about: names.join(", "),
+        }
     }
 
     fn place(&self, at: Point) -> String {
@@ -411,6 +439,11 @@ impl<'a> Refiner<'a> {
         }
         Ok(())
     }
+}
+
+/// A number rounded to six significant digits, for a message.
+fn six_digits(value: f64) -> f64 {
+    format!("{value:.5e}").parse().unwrap_or(value)
 }
 
 /// Points of an outline where two borders meet under less than 60°.

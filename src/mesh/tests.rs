@@ -1,10 +1,11 @@
 //! First meshes of reference sections, random sections and hard corners.
 
-use super::{Chart, Mesh, MeshError, first_mesh};
+use super::{Chart, Mesh, MeshError, bisect, first_mesh};
 use crate::geometry::samples::{
     self, Across, Form, Model, PotWall, doubled, empty, part, r1_with_gap, winding,
 };
 use crate::geometry::{Outline, Point, RegionKind, area, outline};
+use crate::model::Law;
 
 /// Mesh of a model with everything checked that holds for every mesh.
 #[track_caller]
@@ -125,6 +126,8 @@ fn random_rectangles(seed: u64) -> Model {
     let start = if seed.is_multiple_of(2) { 0.0 } else { 3.0 };
     let (r, z) = (lines(6, start), lines(6, -4.0));
     let mut model = samples::empty();
+    // Low enough for parts that touch only in a point.
+    model.materials[0].law = Law::Constant { permeability: 20.0 };
     let mut j = 0;
     while j < 5 {
         let tall = 1 + (dice.roll() * 2.0) as usize;
@@ -380,7 +383,8 @@ fn details_too_fine_are_told_with_their_place() {
     let parts = vec![part("a", &square(1.0, 2.0)), part("b", &square(2.000001, 3.0))];
     let outline = outline(&Model { parts, ..empty() }).unwrap();
     match first_mesh(&outline) {
-        Err(MeshError::TooFine { r_mm, z_mm, .. }) => {
+        Err(MeshError::TooFine { r_mm, z_mm, about, .. }) => {
+            assert!(about.contains('a') || about.contains('b'), "{about}");
             assert!((r_mm - 2.0).abs() < 1e-3 && (-1e-3..1.001).contains(&z_mm), "{r_mm} {z_mm}");
         }
         other => panic!("{:?}", other.map(|mesh| mesh.n_triangles())),
@@ -410,4 +414,17 @@ fn the_same_section_gives_the_same_mesh() {
         let model = random_rectangles(seed);
         assert_eq!(mesh_of(&model).1, mesh_of(&model).1);
     }
+}
+
+#[test]
+fn a_bisected_mesh_is_valid_though_its_edges_have_lost_their_order() {
+    let (_, mut mesh) = mesh_of(&samples::r1());
+    for _ in 0..3 {
+        let all: Vec<u32> = (0..mesh.n_triangles() as u32).collect();
+        let (mut vertex, mut edge) = (vec![0.0; mesh.n_vertices()], vec![0.0; mesh.edges.len()]);
+        let mut carried = bisect::Carried { vertex: &mut vertex, edge: &mut edge };
+        bisect::bisect(&mut mesh, &all, &mut carried);
+        mesh.validate();
+    }
+    assert!(mesh.edges.iter().any(|[a, b]| a > b));
 }

@@ -18,4 +18,5 @@ mod rates;
 mod saturation;
 mod sheets;
 mod tidy;
+mod torture;
 mod vtk_reader;

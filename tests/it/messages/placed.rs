@@ -130,16 +130,16 @@ fn real_faults_of_the_geometry_are_placed() {
             "heights = [-4.9, 4.9]",
             "heights = [-4.9, 5.9]",
             expect![[r#"
-            buoy.toml:20:9: winding `main` overlaps the upper plate near r = 10.2 mm, z = 5.7 mm
-                ╭─[ buoy.toml:20:9 ]
+            buoy.toml:21:11: winding `main` overlaps the upper plate near r = 10.2 mm, z = 5.7 mm
+                ╭─[ buoy.toml:21:11 ]
                 │
               4 │ [core]
                 │ ───┬──
                 │    ╰──── the core
                 │
-             20 │ radii = [6.6, 10.2]
-                │         ─────┬─────
-                │              ╰─────── winding `main`
+             21 │ heights = [-4.9, 5.9]
+                │           ─────┬─────
+                │                ╰─────── winding `main`
                 │
                 │ Help: the upper plate spans r = 0 to 12.75 mm and z = 5.5 to 8.05 mm; shapes may touch but not share an area
             ────╯

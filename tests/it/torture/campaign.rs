@@ -1,0 +1,154 @@
+//! The random campaign: how many sections were tried, refused (by class), solved, and held.
+
+use super::draft::{Copy, Draft};
+use super::is_slow;
+use super::judge::{Solved, Verdict, overlap, tried};
+use super::random::{Dice, section};
+use rayon::prelude::*;
+use std::collections::BTreeMap;
+use std::panic::catch_unwind;
+use std::time::Instant;
+
+/// Stable words of the refusals that random sections may meet; the class is the word.
+const CLASSES: [&str; 22] = [
+    "overlaps",
+    "overlap from z",
+    "touches itself",
+    "crosses itself",
+    "has no area",
+    "too thin to be told",
+    "are the same point",
+    "does not fit",
+    "leave no room",
+    "is not below",
+    "cannot be",
+    "outside its leg",
+    "takes the whole",
+    "has room for less than",
+    "must lie above",
+    "must be larger",
+    "too fine to be meshed",
+    "touch only in a point",
+    "meet under",
+    "is not smaller than",
+    "is at the same",
+    "from the origin",
+];
+
+fn class(message: &str) -> &'static str {
+    let head = message.lines().next().unwrap_or_default();
+    CLASSES.into_iter().find(|word| head.contains(word)).unwrap_or("other")
+}
+
+/// What became of one section.
+struct Fate {
+    seed: u64,
+    seconds: f64,
+    refused: Option<(&'static str, String)>,
+    reached: bool,
+    n_unknowns: usize,
+    /// Complaints about the copies and the tighter run; `None` where they were not asked for.
+    broken: Option<Vec<String>>,
+}
+
+fn fate(seed: u64, with_copies: bool) -> Fate {
+    let draft = section(seed);
+    let text = draft.text();
+    let start = Instant::now();
+    let verdict = catch_unwind(|| tried(&text))
+        .unwrap_or_else(|_| panic!("seed {seed} panicked; its sheet:\n{text}"));
+    let seconds = start.elapsed().as_secs_f64();
+    let mut fate =
+        Fate { seed, seconds, refused: None, reached: false, n_unknowns: 0, broken: None };
+    match verdict {
+        Verdict::Refused(message) => fate.refused = Some((class(&message), message)),
+        Verdict::Solved(solved) => {
+            (fate.reached, fate.n_unknowns) = (solved.reached, solved.n_unknowns);
+            fate.broken = with_copies.then(|| unlike(&draft, &solved, seed));
+        }
+    }
+    fate
+}
+
+/// A tighter run, a mirrored copy and a scaled copy against the first interval.
+fn unlike(draft: &Draft, first: &Solved, seed: u64) -> Vec<String> {
+    let mut dice = Dice(!seed);
+    let factor = dice.log_uniform(0.3, 3.0);
+    let plain = Copy { factor: 1.0, mirrored: false, interval: 0.01 };
+    let mut broken = vec![];
+    let mut look = |what: &str, copy: Copy, is_inside: bool| match tried(&draft.copy(copy)) {
+        Verdict::Refused(message) => broken.push(format!("{what} was refused: {message}")),
+        Verdict::Solved(other) => {
+            let ends = other.divided(copy.factor.powi(3));
+            let width = ends[1] - ends[0];
+            // One printed digit of a scaled length is a relative error of 1e-16; it moves a coenergy by far less than the
+            // margin of both intervals.
+            let inside = first.low - width <= ends[0] && ends[1] <= first.high + width;
+            if !overlap(ends, first.divided(1.0)) || is_inside && !inside {
+                broken.push(format!("{what}: {ends:?} against {first:?}"));
+            }
+        }
+    };
+    look("the tighter run", Copy { interval: 2e-4, ..plain }, true);
+    look("the mirrored copy", Copy { mirrored: true, ..plain }, false);
+    look("the scaled copy", Copy { factor, ..plain }, false);
+    broken
+}
+
+/// Largest resident set of this process so far [MB], where the system tells.
+fn peak_megabytes() -> f64 {
+    let status = std::fs::read_to_string("/proc/self/status").unwrap_or_default();
+    let line = status.lines().find(|line| line.starts_with("VmHWM:"));
+    let kilobytes = line.and_then(|line| line.split_whitespace().nth(1)?.parse::<f64>().ok());
+    kilobytes.unwrap_or(0.0) / 1024.0
+}
+
+#[test]
+fn random_sections_are_solved_and_held_or_refused_by_name() {
+    // Copies and the tighter run cost ten times the section itself: one in some gets them.
+    let (n, copied_every) = if is_slow() { (2000, 4) } else { (200, 10) };
+    let start = Instant::now();
+    let fates: Vec<Fate> =
+        (0..n).into_par_iter().map(|seed| fate(seed, seed % copied_every == 0)).collect();
+    let n_solved = report(&fates, start);
+    for fate in &fates {
+        let seed = fate.seed;
+        if let Some(("other", message)) = &fate.refused {
+            panic!("seed {seed}: a refusal of no known class: {message}");
+        }
+        assert!(fate.broken.iter().flatten().count() == 0, "seed {seed}: {:?}", fate.broken);
+        assert!(fate.reached || fate.refused.is_some(), "seed {seed} was not closed");
+    }
+    // A campaign in which nearly everything is refused shows nothing.
+    assert!(2 * n_solved > n as usize, "only {n_solved} of {n} solved");
+}
+
+/// Prints the counts; tells how many were solved.
+fn report(fates: &[Fate], start: Instant) -> usize {
+    let mut classes: BTreeMap<&str, usize> = BTreeMap::new();
+    for (class, _) in fates.iter().filter_map(|fate| fate.refused.as_ref()) {
+        *classes.entry(class).or_default() += 1;
+    }
+    let solved: Vec<&Fate> = fates.iter().filter(|fate| fate.refused.is_none()).collect();
+    let n_closed = solved.iter().filter(|fate| fate.reached).count();
+    let compared: Vec<_> = fates.iter().filter_map(|fate| fate.broken.as_ref()).collect();
+    let n_held = compared.iter().filter(|broken| broken.is_empty()).count();
+    println!(
+        "tried {}, refused {}, solved {}, closed {n_closed}; compared {}, held {n_held}; peak {:.0} MB, {:.1} s",
+        fates.len(),
+        fates.len() - solved.len(),
+        solved.len(),
+        compared.len(),
+        peak_megabytes(),
+        start.elapsed().as_secs_f64(),
+    );
+    for (class, count) in &classes {
+        println!("  {count:5} {class}");
+    }
+    let mut by_time: Vec<&Fate> = fates.iter().collect();
+    by_time.sort_by(|a, b| b.seconds.total_cmp(&a.seconds));
+    for fate in by_time.iter().take(5) {
+        println!("  seed {}: {:.2} s, {} unknowns", fate.seed, fate.seconds, fate.n_unknowns);
+    }
+    solved.len()
+}
