@@ -125,7 +125,13 @@ impl Hierarchy {
         }
         let prolongation = Matrix::new((n, n_coarse), start, columns, values);
         let transposed = prolongation.transpose_view().to_csr();
-        &transposed * &(a * &prolongation)
+        let mut product: Matrix = &transposed * &(a * &prolongation);
+        // The product is symmetric to rounding; sweeps and ordering want it to the last bit.
+        let mirrored: Matrix = product.transpose_view().to_csr();
+        for (v, m) in product.data_mut().iter_mut().zip(mirrored.data()) {
+            *v = 0.5 * (*v + m);
+        }
+        product
     }
 
     /// Room for one V-cycle with the present levels.

@@ -64,7 +64,8 @@ fn without_saturation_nothing_falls_and_every_row_has_one_inductance() {
     assert!(found.falls.iter().all(|fall| fall.current.is_none()));
     let first = found.rows[0].incremental;
     for row in &found.rows {
-        assert!((row.apparent / first - 1.0).abs() < 1e-6, "{row:?} beside {first}");
+        // The algebraic error of λ is 2 % of the interval.
+        assert!((row.apparent / first - 1.0).abs() < 0.02 * 5e-3, "{row:?} beside {first}");
     }
 }
 
