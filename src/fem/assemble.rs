@@ -24,7 +24,9 @@ pub fn stiffness(mesh: &Mesh, space: &Space, fans: &Fans, elements: &[Element]) 
 
 /// The vertex or the edge of every unknown.
 fn owners(space: &Space) -> Vec<u32> {
-    let free = |dofs: &[u32]| (0..dofs.len() as u32).filter(|&k| dofs[k as usize] != NONE).collect::<Vec<_>>();
+    let free = |dofs: &[u32]| {
+        (0..dofs.len() as u32).filter(|&k| dofs[k as usize] != NONE).collect::<Vec<_>>()
+    };
     let mut owner = free(&space.vertex_dof);
     owner.extend(free(&space.edge_dof));
     owner
@@ -76,7 +78,8 @@ impl Rows<'_> {
             for (&(_, k), (t, dofs)) in parts.iter().zip(&uses) {
                 for (l, &j) in dofs.iter().enumerate() {
                     if j != NONE {
-                        values[slot[j as usize] as usize] += self.elements[*t].stiffness[packed(k, l)];
+                        values[slot[j as usize] as usize] +=
+                            self.elements[*t].stiffness[packed(k, l)];
                     }
                 }
             }
@@ -93,13 +96,16 @@ impl Rows<'_> {
         parts.clear();
         let owner = self.owner[i] as usize;
         if i < self.space.n_vertex_dofs {
-            parts.extend(self.fans.around(owner).iter().map(|b| (b.triangle as usize, b.corner as usize)));
+            parts.extend(
+                self.fans.around(owner).iter().map(|b| (b.triangle as usize, b.corner as usize)),
+            );
             return;
         }
         for t in self.fans.edge_triangles[owner] {
             if t != NO_TRIANGLE {
                 let edges = self.mesh.triangle_edges[t as usize];
-                let k = usize::from(edges[1] as usize == owner) + 2 * usize::from(edges[2] as usize == owner);
+                let k = usize::from(edges[1] as usize == owner)
+                    + 2 * usize::from(edges[2] as usize == owner);
                 parts.push((t as usize, 3 + k));
             }
         }

@@ -75,7 +75,8 @@ pub fn update_constant(
     // A few changed triangles at a time, so that the copies stay in the cache.
     const N_BATCH: usize = 4096;
     for batch in changed.chunks(N_BATCH) {
-        let fresh: Vec<_> = batch.par_iter().with_min_len(512).map(|&t| fresh(t as usize)).collect();
+        let fresh: Vec<_> =
+            batch.par_iter().with_min_len(512).map(|&t| fresh(t as usize)).collect();
         for (&t, element) in batch.iter().zip(fresh) {
             if let Some(element) = element {
                 elements[t as usize] = element;
@@ -101,7 +102,8 @@ pub fn element_stiffness(k: &[Tensor; 6]) -> [[f64; 6]; 6] {
     }
     for (e, (i, j)) in LOCAL_EDGES.into_iter().enumerate() {
         for l in 0..3 {
-            stiffness[l][3 + e] = 4.0 * (contract(g[j], row[i], g[l]) + contract(g[i], row[j], g[l]));
+            stiffness[l][3 + e] =
+                4.0 * (contract(g[j], row[i], g[l]) + contract(g[i], row[j], g[l]));
         }
         for (f, (p, q)) in LOCAL_EDGES.into_iter().enumerate().skip(e) {
             let sum = contract(g[j], pair(i, p), g[q])

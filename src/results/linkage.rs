@@ -66,8 +66,7 @@ pub fn unit_density(model: &Model, outline: &Outline, w: usize) -> Vec<AmperePer
 /// The load vector b of given current densities on the outcome's mesh; for 1 A in a winding its λ is 2π b·x.
 pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
     // `load` reads the densities only.
-    let coefficients =
-        Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
+    let coefficients = Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
     assemble::load(&outcome.mesh, &outcome.space, &coefficients)
 }
 
@@ -79,7 +78,12 @@ const TANGENT_DECREASE: f64 = 1e-10;
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
 pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
-    let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &Fans::new(&outcome.mesh), &outcome.elements);
+    let matrix = assemble::stiffness(
+        &outcome.mesh,
+        &outcome.space,
+        &Fans::new(&outcome.mesh),
+        &outcome.elements,
+    );
     let mut work = outcome.hierarchy.workspace();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
