@@ -1,8 +1,7 @@
 //! |B| at the corners of triangles → one area a colour band, triangles of one band merged.
 
 use crate::mesh::Mesh;
-use crate::report::contour::CHORD;
-use crate::report::svg::{Dot, dot, thin_out};
+use crate::report::dots::{CHORD, Dot, dot, thin_out};
 
 /// A corner of a piece: its place on the page [px] and its value in units of bands.
 pub(super) type Corner = ([f64; 2], f64);
@@ -15,7 +14,7 @@ pub(super) fn band_loops(
     value: &[[f64; 3]],
     n_bands: usize,
 ) -> Vec<Vec<Vec<Dot>>> {
-    let mut sides: Vec<Vec<[Dot; 2]>> = vec![vec![]; n_bands];
+    let mut sides: Vec<Vec<Side>> = vec![vec![]; n_bands];
     let (mut above, mut between) = (vec![], vec![]);
     for ((_, corners), value) in triangles.iter().zip(value) {
         let polygon = [0, 1, 2].map(|k| (corners[k], value[k]));
@@ -23,6 +22,9 @@ pub(super) fn band_loops(
         let high = value.iter().copied().fold(0.0, f64::max);
         let first = (low as usize).min(n_bands - 1);
         let last = (high as usize).min(n_bands - 1);
+        if last == 0 {
+            continue;
+        }
         if first == last {
             push_sides(&mut sides[first], &polygon);
             continue;
@@ -95,11 +97,11 @@ pub(super) fn keep(polygon: &[Corner], level: f64, side: f64, kept: &mut Vec<Cor
 }
 
 /// Adds the sides of a piece; sides without length are dropped.
-fn push_sides(sides: &mut Vec<[Dot; 2]>, piece: &[Corner]) {
+fn push_sides(sides: &mut Vec<Side>, piece: &[Corner]) {
     let Some(last) = piece.last() else { return };
-    let mut from = dot(last.0);
+    let mut from = code(dot(last.0));
     for corner in piece {
-        let to = dot(corner.0);
+        let to = code(dot(corner.0));
         if from != to {
             sides.push([from, to]);
         }
@@ -107,30 +109,44 @@ fn push_sides(sides: &mut Vec<[Dot; 2]>, piece: &[Corner]) {
     }
 }
 
+/// A directed side, its ends as codes: one number a dot compares twice as fast as two.
+type Side = [u64; 2];
+
+/// Both coordinates in one number, in the same order; the sign bits are turned so that negative ones come first.
+fn code([x, y]: Dot) -> u64 {
+    let unsigned = |v: i32| u64::from(v as u32 ^ 0x8000_0000);
+    unsigned(x) << 32 | unsigned(y)
+}
+
+fn decode(code: u64) -> Dot {
+    [code >> 32, code & 0xffff_ffff].map(|v| (v as u32 ^ 0x8000_0000) as i32)
+}
+
 /// The sides that no neighbour has the other way round.
-fn outer_sides(mut sides: Vec<[Dot; 2]>) -> Vec<[Dot; 2]> {
-    let undirected = |s: &[Dot; 2]| if s[0] < s[1] { (s[0], s[1]) } else { (s[1], s[0]) };
+fn outer_sides(mut sides: Vec<Side>) -> Vec<Side> {
+    let undirected = |s: &Side| u128::from(s[0].min(s[1])) << 64 | u128::from(s[0].max(s[1]));
     sides.sort_unstable_by_key(undirected);
     let mut outer = vec![];
     for group in sides.chunk_by(|a, b| undirected(a) == undirected(b)) {
-        let (forth, back): (Vec<_>, Vec<_>) = group.iter().partition(|s| s[0] < s[1]);
-        let more = if back.len() < forth.len() { &forth } else { &back };
-        outer.extend(&more[forth.len().min(back.len())..]);
+        let n_forth = group.iter().filter(|s| s[0] < s[1]).count();
+        let n_back = group.len() - n_forth;
+        let is_kept = |s: &&Side| (s[0] < s[1]) == (n_back < n_forth);
+        outer.extend(group.iter().filter(is_kept).take(n_forth.abs_diff(n_back)));
     }
     outer
 }
 
 /// Joins directed sides into loops. As many sides leave a corner as enter it, so every walk comes back to its start.
-fn loops(mut sides: Vec<[Dot; 2]>) -> Vec<Vec<Dot>> {
+fn loops(mut sides: Vec<Side>) -> Vec<Vec<Dot>> {
     sides.sort_unstable();
     let mut is_used = vec![false; sides.len()];
     let mut loops = vec![];
     for start in 0..sides.len() {
-        let (mut line, mut at) = (vec![sides[start][0]], start);
+        let (mut line, mut at) = (vec![decode(sides[start][0])], start);
         while !is_used[at] {
             is_used[at] = true;
             let corner = sides[at][1];
-            line.push(corner);
+            line.push(decode(corner));
             let first = sides.partition_point(|s| s[0] < corner);
             let leaving = sides[first..].iter().take_while(|s| s[0] == corner).count();
             match (first..first + leaving).find(|&i| !is_used[i]) {
