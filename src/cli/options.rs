@@ -6,7 +6,7 @@ use std::path::PathBuf;
 
 /// Inductance of gapped round cores and coils, from the solved field, with a guaranteed interval.
 #[derive(Debug, Parser)]
-#[command(version, about, after_help = EXIT_CODES, max_term_width = 80)]
+#[command(version, after_help = EXIT_CODES, max_term_width = 80)]
 pub struct Arguments {
     #[command(subcommand)]
     pub command: Command,

@@ -294,7 +294,7 @@ fn promise(model: &Model, requirement: &Requirement) -> String {
         InductanceKind::Incremental => "incremental",
     };
     let limit = |word: &str, value: Option<Henry>| {
-        value.map(|v| format!("{word} {}", engineering(v, "H", 4)))
+        value.map(|v| format!("{word} {}", engineering(v, "H", 4).replace(' ', "\u{a0}")))
     };
     let limits = [limit("at least", requirement.least), limit("at most", requirement.most)];
     let limits: Vec<String> = limits.into_iter().flatten().collect();

@@ -44,7 +44,7 @@ pub(super) fn answer(text: &mut String, results: &Results, look: &Look) {
             text,
             "incremental",
             &engineering(slope, "H", 4),
-            "best value; slope of the flux linkage at this current",
+            "best value; slope dλ/dI at this current",
         );
     }
     if !results.is_linear || results.inductance.is_none() {
