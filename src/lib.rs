@@ -13,4 +13,5 @@ pub mod report;
 pub mod results;
 pub mod solve;
 pub mod sparse;
+pub mod study;
 pub mod units;

@@ -146,11 +146,14 @@ mod tests {
             summary.failures.len(),
             summary.n_cases
         );
-        println!("{name}: {} cases", summary.n_cases);
+        let mut text = format!("{name}: {} cases, all inside", summary.n_cases);
         if let Some([least, median, largest]) = summary.efficiency {
-            println!(
-                "    interval/true error: least {least:.2}, median {median:.2}, largest {largest:.2}"
-            );
+            text.push_str(&format!(
+                "; interval/true error: least {least:.2}, median {median:.2}, largest {largest:.2}"
+            ));
+        }
+        crate::say(&text);
+        if let Some([.., largest]) = summary.efficiency {
             // The table's limit for single cases, here for every random one.
             assert!(largest <= EFFICIENCY_MAX, "{name}: interval/true error {largest}");
         }

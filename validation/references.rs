@@ -31,6 +31,19 @@ impl Published {
         list.iter().filter_map(number).collect()
     }
 
+    /// A list of numbers among the values.
+    #[track_caller]
+    pub fn value_list(&self, name: &str) -> Vec<f64> {
+        let list =
+            self.value[name].as_array().unwrap_or_else(|| panic!("{}: no list {name}", self.id));
+        list.iter().filter_map(number).collect()
+    }
+
+    /// Source and how sure it is.
+    pub fn cited(&self) -> String {
+        format!("{} ({})", self.source, self.status)
+    }
+
     /// The value, or the part `name` of it ("" where it is a single number).
     #[track_caller]
     pub fn value(&self, name: &str) -> f64 {

@@ -1,6 +1,7 @@
 //! The one place that touches the library: a [`Model`] in, its guaranteed coenergy out.
 
-use gapwright::model::{Accuracy, Model};
+use gapwright::model::{Accuracy, Model, Point, Probe};
+use gapwright::results::{self, ProbePoint};
 use gapwright::units::{Henry, Joule};
 use gapwright::{adapt, geometry};
 
@@ -57,6 +58,30 @@ pub fn solve(model: &Model, interval: f64) -> Result<Solved, String> {
         n_unknowns,
         rounds,
     })
+}
+
+/// [`solve`], where an interval that was not reached is a failure.
+pub fn solve_wholly(model: &Model, interval: f64) -> Result<Solved, String> {
+    let solved = solve(model, interval)?;
+    if solved.reached {
+        return Ok(solved);
+    }
+    let width = (solved.high - solved.low) / solved.coenergy();
+    let Solved { n_unknowns, rounds, .. } = &solved;
+    Err(format!("{} rounds, {n_unknowns} unknowns: width {width:.1e}", rounds.len()))
+}
+
+/// The field at `points`, through the probes that a user has.
+pub fn probed(model: &Model, interval: f64, points: &[Point]) -> Result<Vec<ProbePoint>, String> {
+    let accuracy = Accuracy { interval, n_unknowns_max: N_UNKNOWNS_MAX };
+    let probe = |at: &Point| Probe { name: String::new(), from: *at, to: *at, n_points: 1 };
+    let probes = points.iter().map(probe).collect();
+    let model = Model { accuracy, probes, ..model.clone() };
+    let outline = geometry::outline(&model).map_err(|fault| fault.to_string())?;
+    let outcome = adapt::run(&model, &outline, &mut |_| {}).map_err(|error| error.to_string())?;
+    let found = results::collect(&model, &outline, &outcome);
+    let points: Vec<ProbePoint> = found.probes.into_iter().flat_map(|probe| probe.points).collect();
+    if found.reached { Ok(points) } else { Err("the interval was not reached".to_owned()) }
 }
 
 #[cfg(test)]

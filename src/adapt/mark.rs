@@ -1,5 +1,7 @@
 //! Which triangles to refine.
 
+use crate::mesh::Mesh;
+
 /// Unknowns that a marked triangle brings on average, closure included (measured 6–10 on graded meshes).
 const N_UNKNOWNS_A_MARK: usize = 12;
 
@@ -26,6 +28,22 @@ pub fn doerfler(shares: &[f64], share: f64) -> Vec<u32> {
 /// How many triangles may be marked before the number of unknowns passes its limit.
 pub fn affordable(n_unknowns: usize, n_unknowns_max: usize) -> usize {
     n_unknowns_max.saturating_sub(n_unknowns) / N_UNKNOWNS_A_MARK
+}
+
+/// Longest edge, as a share of the cap's radius, below which a triangle is not cut: four more bisections would round its
+/// corners together.
+const SMALLEST_EDGE: f64 = 1e-12;
+
+/// Is triangle t large enough to be cut? Where parts touch only in a point the field is so singular that no mesh resolves
+/// it and the rounds would halve triangles down to rounding.
+pub fn is_divisible(mesh: &Mesh, t: usize) -> bool {
+    let corners = mesh.corners(t);
+    let length = |k: usize| {
+        let (p, q) = (corners[k], corners[(k + 1) % 3]);
+        (p.r - q.r).hypot(p.z - q.z)
+    };
+    let longest = (0..3).map(length).fold(0.0, f64::max);
+    SMALLEST_EDGE * (mesh.cap.radius + mesh.cap.center_z.abs()) < longest
 }
 
 #[cfg(test)]

@@ -2,6 +2,9 @@
 
 pub mod again;
 mod mark;
+mod watch;
+
+pub use watch::Watch;
 
 use crate::bound::{self, Bound, Field};
 use crate::fem::elements::update_constant;
@@ -10,7 +13,7 @@ use crate::geometry::{Outline, Region};
 use crate::mesh::bisect::{Carried, bisect};
 use crate::mesh::fans::Fans;
 use crate::mesh::{Mesh, MeshError, first_mesh};
-use crate::model::{Accuracy, Law, Model};
+use crate::model::{Accuracy, Law, Model, Point};
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::sparse::Hierarchy;
 use crate::units::{Joule, MU0};
@@ -19,6 +22,8 @@ use crate::units::{Joule, MU0};
 const ALGEBRAIC_SHARE: f64 = 3e-4;
 /// Dörfler's share of the total that the marked triangles hold.
 const MARKED_SHARE: f64 = 0.7;
+/// Rounds at the probes alone; each halves their triangles.
+const N_SHARPENINGS_MAX: usize = 10;
 /// Rounds before giving up: each divides the interval by about 2, so 60 reach rounding from anywhere.
 const N_ROUNDS_MAX: usize = 60;
 
@@ -68,8 +73,32 @@ pub struct Outcome {
     pub hierarchy: Hierarchy,
     /// Guaranteed ends of dW'/ds at s = 1, all currents scaled by s; `None` with constant laws, where it is 2W'.
     pub work_rate_ends: Option<[Joule; 2]>,
+    /// Where triangles reached the size of rounding before the interval closed: no mesh resolves the field there.
+    pub unresolved: Option<Point>,
+    /// Places that ask for their own triangles.
+    pub watch: Watch,
     /// False when `n_unknowns_max` stopped the rounds before the wanted width.
     pub reached: bool,
+}
+
+impl Outcome {
+    /// Before the first round: a mesh and a start field.
+    fn new(mesh: Mesh, coefficients: Coefficients, solution: Solution, watch: Watch) -> Outcome {
+        Outcome {
+            mesh,
+            space: Space::default(),
+            coefficients,
+            solution,
+            elements: Vec::new(),
+            bound: Bound::default(),
+            rounds: Vec::new(),
+            hierarchy: Hierarchy::default(),
+            work_rate_ends: None,
+            unresolved: None,
+            watch,
+            reached: false,
+        }
+    }
 }
 
 /// Why the rounds failed.
@@ -92,8 +121,11 @@ pub fn run(
     progress(Event::Finished(Stage::FirstMesh));
     let solution =
         Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
-    let mut outcome =
-        rounds(mesh, coefficients, solution, &Rules::working(), &model.accuracy, progress)?;
+    let rules = Rules::working();
+    let mut outcome = Outcome::new(mesh, coefficients, solution, Watch::of(model));
+    first_round(&mut outcome, &rules, &model.accuracy, progress)?;
+    refine(&mut outcome, &rules, &model.accuracy, progress)?;
+    sharpen(&mut outcome, &rules, &model.accuracy, progress)?;
     if !outcome.coefficients.is_linear() {
         outcome.work_rate_ends = Some(again::work_rate_ends(&mut outcome)?);
     }
@@ -125,23 +157,21 @@ pub fn rounds(
     accuracy: &Accuracy,
     progress: &mut dyn FnMut(Event),
 ) -> Result<Outcome, AdaptError> {
-    let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    let mut outcome = Outcome {
-        mesh,
-        space: Space::default(),
-        coefficients,
-        solution,
-        elements: Vec::new(),
-        bound: Bound::default(),
-        rounds: Vec::new(),
-        hierarchy: Hierarchy::default(),
-        work_rate_ends: None,
-        reached: false,
-    };
-    // Before the first bound nothing is known; 1 means an interval as wide as the value.
-    round(&mut outcome, &all, 1.0, rules, accuracy, progress)?;
+    let mut outcome = Outcome::new(mesh, coefficients, solution, Watch::default());
+    first_round(&mut outcome, rules, accuracy, progress)?;
     refine(&mut outcome, rules, accuracy, progress)?;
     Ok(outcome)
+}
+
+fn first_round(
+    outcome: &mut Outcome,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(Event),
+) -> Result<(), AdaptError> {
+    let all: Vec<u32> = (0..outcome.mesh.triangles.len() as u32).collect();
+    // Before the first bound nothing is known; 1 means an interval as wide as the value.
+    round(outcome, &all, 1.0, rules, accuracy, progress)
 }
 
 /// Goes on with the rounds from the outcome as it stands until its interval is as narrow as wanted.
@@ -162,15 +192,54 @@ pub fn refine(
             return Ok(());
         }
         let mut marked = mark::doerfler(&outcome.bound.shares, MARKED_SHARE);
+        let worst = marked.first().copied();
+        marked.retain(|&t| mark::is_divisible(&outcome.mesh, t as usize));
         marked.truncate(n_marked_max);
-        let solution = &mut outcome.solution;
-        let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
-        let changed = bisect(&mut outcome.mesh, &marked, &mut carried);
-        progress(Event::Finished(Stage::Refine));
-        round(outcome, &changed, width, rules, accuracy, progress)?;
+        if marked.is_empty() {
+            outcome.unresolved = worst.map(|t| outcome.mesh.corners(t as usize)[0]);
+            return Ok(());
+        }
+        marked.extend(watch::hot_triangles(outcome));
+        marked.extend(watch::probe_triangles(outcome));
+        cut(outcome, &marked, rules, accuracy, progress)?;
     }
     outcome.reached = outcome.bound.relative_width() <= accuracy.interval;
     Ok(())
+}
+
+/// Further rounds at the probes alone, once the interval is as narrow as wanted.
+fn sharpen(
+    outcome: &mut Outcome,
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(Event),
+) -> Result<(), AdaptError> {
+    for _ in 0..N_SHARPENINGS_MAX {
+        let mut marked = watch::probe_triangles(outcome);
+        marked.retain(|&t| mark::is_divisible(&outcome.mesh, t as usize));
+        let room = mark::affordable(outcome.space.n_dofs, accuracy.n_unknowns_max);
+        if !outcome.reached || marked.is_empty() || room < marked.len() {
+            return Ok(());
+        }
+        cut(outcome, &marked, rules, accuracy, progress)?;
+    }
+    Ok(())
+}
+
+/// Bisects the marked triangles and does a round on the new mesh.
+fn cut(
+    outcome: &mut Outcome,
+    marked: &[u32],
+    rules: &Rules,
+    accuracy: &Accuracy,
+    progress: &mut dyn FnMut(Event),
+) -> Result<(), AdaptError> {
+    let width = outcome.bound.relative_width();
+    let solution = &mut outcome.solution;
+    let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
+    let changed = bisect(&mut outcome.mesh, marked, &mut carried);
+    progress(Event::Finished(Stage::Refine));
+    round(outcome, &changed, width, rules, accuracy, progress)
 }
 
 /// One solve and bound on the outcome's mesh, of which the triangles `changed` are new.

@@ -73,7 +73,7 @@ pub fn bound(field: &Field, fans: &Fans) -> Bound {
         })
         .unzip();
     let mut flux = patch::equilibrate(field, fans, &patchwork);
-    tree::close_divergence(field.mesh, fans, &field.coefficients.current_density, &mut flux);
+    tree::close_divergence(field, fans, &mut flux);
     evaluate(field, &primal, flux)
 }
 

@@ -5,6 +5,7 @@
 mod check;
 mod files;
 mod options;
+mod saturate;
 mod screen;
 mod sheet;
 mod solve;
@@ -89,6 +90,7 @@ fn dispatch(command: &Command) -> Result<End, Stop> {
     match command {
         Command::Check(options) => check::check(options),
         Command::Solve(options) => solve::solve(options),
+        Command::Saturate(options) => saturate::saturate(options),
     }
 }
 

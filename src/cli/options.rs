@@ -29,6 +29,21 @@ pub enum Command {
     Check(Options),
     /// Solve the field: A_L and inductance with their interval, gaps, hot spots, pictures
     Solve(Options),
+    /// Inductance against current: table, knee, currents at which the inductance has fallen
+    Saturate(SaturateOptions),
+}
+
+/// Options of `saturate`.
+#[derive(Debug, Clone, Args)]
+pub struct SaturateOptions {
+    #[command(flatten)]
+    pub common: Options,
+    /// Highest current of the first winding that carries some; all others scale along
+    #[arg(long, value_name = "CURRENT", value_parser = current)]
+    pub to: f64,
+    /// Points of the table, that of I → 0 included; they stand close where the curve bends
+    #[arg(long, value_name = "N", default_value_t = 24, value_parser = clap::value_parser!(u16).range(3..=1000))]
+    pub points: u16,
 }
 
 impl Command {
@@ -36,6 +51,7 @@ impl Command {
     pub fn options(&self) -> &Options {
         match self {
             Command::Check(options) | Command::Solve(options) => options,
+            Command::Saturate(options) => &options.common,
         }
     }
 }
@@ -69,6 +85,20 @@ pub struct Options {
     /// Draw both halves of the section in field.svg
     #[arg(long)]
     pub mirror: bool,
+}
+
+/// Highest current that may be asked for [A]; the sheet's currents have a bound of their own.
+const CURRENT_MAX: f64 = 1e9;
+
+/// "6A" or "6" → 6.
+fn current(text: &str) -> Result<f64, String> {
+    let value = units::read(text, Dimension::Current, (0, 1.0))
+        .map_err(|e| format!("{e}; write 6A or 6"))?;
+    if 0.0 < value && value <= CURRENT_MAX {
+        Ok(value)
+    } else {
+        Err(format!("{value} A is not above 0 and at most {CURRENT_MAX:e} A; write 6A or 6"))
+    }
 }
 
 /// Narrowest and widest interval that may be asked for; the sheet's key has the same bounds.
@@ -113,6 +143,16 @@ mod tests {
         assert_eq!(interval("1e-4"), Ok(1e-4));
         for wrong in ["0", "-1%", "80%", "1 mm", "", "much", "NaN"] {
             assert!(interval(wrong).is_err(), "{wrong}");
+        }
+    }
+
+    #[test]
+    fn a_current_is_positive() {
+        assert_eq!(current("6A"), Ok(6.0));
+        assert_eq!(current("350 mA"), Ok(0.35));
+        assert_eq!(current("6"), Ok(6.0));
+        for wrong in ["0", "-1A", "1 mm", "", "much", "NaN", "1e300"] {
+            assert!(current(wrong).is_err(), "{wrong}");
         }
     }
 

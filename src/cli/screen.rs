@@ -63,6 +63,14 @@ impl Progress {
     }
 }
 
+impl Progress {
+    /// Shows how far a study has come.
+    pub fn point(&mut self, n_done: usize, n_wanted: usize) {
+        self.bar.set_message(format!("point {n_done} of {n_wanted}"));
+        self.bar.tick();
+    }
+}
+
 impl Drop for Progress {
     fn drop(&mut self) {
         self.bar.finish_and_clear();

@@ -16,6 +16,7 @@ use gapwright::report::terminal::{Look, solve_screen};
 use gapwright::report::vtk::{FieldCells, field_vtu};
 use gapwright::results::sample::Sampler;
 use gapwright::results::{self, Results};
+use gapwright::solve::SolveError;
 use std::time::Instant;
 
 /// Runs `solve`.
@@ -24,8 +25,10 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
     let mut clock = Clock::start();
     let (sheet, outline) = sheet::read(options)?;
     clock.lap("sheet and section");
-    let outcome = run(&sheet.model, &outline, options, &mut clock)?;
-    let results = results::collect(&sheet.model, &outline, &outcome);
+    let mut outcome = run(&sheet.model, &outline, options, &mut clock)?;
+    let mut results = results::collect(&sheet.model, &outline, &outcome);
+    at_other_currents(&sheet.model, &outline, &mut outcome, &mut results)
+        .map_err(|error| Stop::new(End::NotReached, format!("no result: {error}")))?;
     clock.lap("results");
     let seconds = start.elapsed().as_secs_f64();
 
@@ -70,6 +73,20 @@ fn run(
         };
         Stop::new(end, format!("no result: {error}"))
     })
+}
+
+/// The promises and the ripple: both need the field at other currents than the sheet's.
+fn at_other_currents(
+    model: &Model,
+    outline: &Outline,
+    outcome: &mut Outcome,
+    found: &mut Results,
+) -> Result<(), SolveError> {
+    let (verdicts, notes) = results::check_requirements(model, outline, outcome)?;
+    found.requirements = verdicts;
+    found.notes.extend(notes);
+    found.ripple = results::ripple(model, outline, outcome)?;
+    Ok(())
 }
 
 /// Everything but `result.json`.

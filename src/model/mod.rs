@@ -153,6 +153,18 @@ pub struct Probe {
     pub n_points: usize,
 }
 
+impl Probe {
+    /// Its points, equally spaced from `from` to `to`.
+    pub fn points(&self) -> impl Iterator<Item = Point> + '_ {
+        let step = 1.0 / (self.n_points.max(2) - 1) as f64;
+        let (a, b) = (self.from, self.to);
+        (0..self.n_points).map(move |k| {
+            let s = k as f64 * step;
+            Point { r: a.r + s * (b.r - a.r), z: a.z + s * (b.z - a.z) }
+        })
+    }
+}
+
 /// Wanted relative width of the interval and the bound on the work.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Accuracy {

@@ -47,7 +47,7 @@ fn row(text: &mut String, head: &str, values: &[f64]) {
 }
 
 /// A CSV field, quoted where RFC 4180 wants it.
-fn field(text: &str) -> String {
+pub(super) fn field(text: &str) -> String {
     if text.contains([',', '"', '\n', '\r']) {
         format!("\"{}\"", text.replace('"', "\"\""))
     } else {

@@ -9,7 +9,8 @@ use crate::model::{
 };
 use crate::results::{
     GapResult, Guaranteed, HotSpot, LedgerRow, PartResult, ProbePoint, ProbeResult,
-    RequirementResult, Results, Round, Verdict, WindingResult,
+    RequirementResult, Results, RippleCurrent, RipplePart, RippleResult, Round, Verdict,
+    WindingResult,
 };
 use crate::solve::Solution;
 
@@ -44,6 +45,7 @@ pub(crate) fn results() -> Results {
         coenergy: Guaranteed { value: 1.135e-3, low: 1.1345e-3, high: 1.1355e-3 },
         energy: 1.135e-3,
         is_linear: true,
+        estimated_error: None,
         windings: vec![WindingResult {
             name: "main".to_string(),
             turns: 42.0,
@@ -70,6 +72,10 @@ pub(crate) fn results() -> Results {
             tolerance: 0.03,
             within_tolerance: true,
             blame: "the post gap carries most of the difference".to_string(),
+        }),
+        ripple: Some(RippleResult {
+            currents: vec![RippleCurrent { winding: "main".to_string(), trough: 1.5, peak: 2.1 }],
+            parts: vec![RipplePart { name: "post".to_string(), swing: 0.12, peak: 0.44 }],
         }),
         requirements: requirements(),
         notes: vec![
@@ -130,7 +136,9 @@ fn requirements() -> Vec<RequirementResult> {
         least: Some(650e-6),
         most: None,
         inductance: 700.6e-6,
+        ends: Some([700.3e-6, 700.95e-6]),
         met: true,
+        is_certain: true,
     }]
 }
 

@@ -2,6 +2,8 @@
 
 mod fill;
 
+pub(super) use fill::require_entries;
+
 use super::StageTimes;
 use crate::results::Results;
 use schemars::JsonSchema;
@@ -44,6 +46,9 @@ struct ResultFile {
     inductance_factor: Option<BoundedQuantity>,
     /// Slope of the flux linkage at the bias.
     incremental_inductance: Option<Quantity>,
+    /// Relative error of the best flux linkage and inductance of a saturating core: an estimate, not a guarantee;
+    /// null where the inductance carries the interval.
+    estimated_error: Option<f64>,
     coenergy: BoundedQuantity,
     energy: Quantity,
     windings: Vec<WindingEntry>,
@@ -52,6 +57,8 @@ struct ResultFile {
     gap_factors: GapFactors,
     hot_spots: Vec<HotSpotEntry>,
     parts: Vec<PartEntry>,
+    /// What the ripple does, all windings in phase; null without one.
+    ripple: Option<RippleEntry>,
     probes: Vec<ProbeEntry>,
     /// The verdict on the estimate.
     estimate: Option<EstimateEntry>,
@@ -214,7 +221,7 @@ struct EstimateEntry {
 
 #[derive(Serialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-struct RequireEntry {
+pub(super) struct RequireEntry {
     winding: String,
     /// [A]
     current: f64,
@@ -223,9 +230,41 @@ struct RequireEntry {
     least: Option<f64>,
     /// [H]
     most: Option<f64>,
-    /// [H]
+    /// Best value [H].
     inductance: f64,
+    /// Guaranteed ends [H]; null where nothing is guaranteed.
+    low: Option<f64>,
+    high: Option<f64>,
     met: bool,
+    /// True when the guaranteed ends decide, false when only the best value does.
+    certain: bool,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RippleEntry {
+    windings: Vec<RippleCurrentEntry>,
+    parts: Vec<RipplePartEntry>,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RippleCurrentEntry {
+    name: String,
+    /// current − ripple/2 [A]
+    trough: f64,
+    /// current + ripple/2 [A]
+    peak: f64,
+}
+
+#[derive(Serialize, JsonSchema)]
+#[serde(deny_unknown_fields)]
+struct RipplePartEntry {
+    name: String,
+    /// Peak-to-peak change of the flux density that 5 % of the volume exceed [T].
+    swing: f64,
+    /// Flux density at the peak current that 5 % of the volume exceed [T].
+    peak: f64,
 }
 
 #[derive(Serialize, JsonSchema)]

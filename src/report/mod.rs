@@ -14,6 +14,7 @@ pub(crate) mod fixture;
 pub mod json;
 mod labels;
 mod numbers;
+pub mod saturate;
 pub mod section;
 mod svg;
 pub mod terminal;

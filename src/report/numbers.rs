@@ -80,21 +80,9 @@ pub(super) struct IntervalText {
 /// Prints value and ends in one unit, the ends rounded outwards: the printed interval contains the computed one.
 pub(super) fn interval(quantity: &Guaranteed, unit: &str) -> IntervalText {
     let (low, high, unit) = ends(quantity.low, quantity.high, unit);
-    let value = in_scale(quantity, &low, &high, &unit, 0);
-    IntervalText { value, low, high }
-}
-
-/// The value alone in the unit of its interval, with the digits that a relative `error` leaves.
-pub(super) fn best_value(quantity: &Guaranteed, unit: &str, error: f64) -> String {
-    let (low, high, unit) = ends(quantity.low, quantity.high, unit);
-    let n_digits = (-error.log10()).ceil().clamp(1.0, N_DECIMALS_MAX as f64) as usize;
-    in_scale(quantity, &low, &high, &unit, n_digits)
-}
-
-/// The value in the unit and with the decimals of the ends `low` and `high`, and with `n_digits` digits at least.
-fn in_scale(quantity: &Guaranteed, low: &str, high: &str, unit: &str, n_digits: usize) -> String {
-    // The unit's power of ten, read back from the end that `ends` scaled; rounding it makes it exact.
-    let scale = [(quantity.high, high), (quantity.low, low)]
+    let n_decimals = low.split_once('.').map_or(0, |(_, behind)| behind.len());
+    // The unit's power of ten, read back from the end that `ends` scaled: 1e-9 of relative slack is ample for a power.
+    let scale = [(quantity.high, &high), (quantity.low, &low)]
         .into_iter()
         .filter_map(|(value, text)| {
             text.parse::<f64>().ok().filter(|t| *t != 0.0 && value != 0.0).map(|t| t / value)
@@ -102,10 +90,11 @@ fn in_scale(quantity: &Guaranteed, low: &str, high: &str, unit: &str, n_digits: 
         .map(|ratio| 10f64.powi(ratio.log10().round() as i32))
         .next()
         .unwrap_or(1.0);
-    let scaled = scale * quantity.value;
-    let n_decimals = low.split_once('.').map_or(0, |(_, behind)| behind.len());
-    let wanted = if n_digits == 0 { 0 } else { decimals_for(scaled, n_digits) };
-    format!("{} {unit}", signed(scaled, n_decimals.max(wanted)))
+    IntervalText {
+        value: format!("{} {unit}", signed(scale * quantity.value, n_decimals)),
+        low,
+        high,
+    }
 }
 
 /// `text` broken at spaces into lines of at most `width` columns; a word that is longer stands alone.
@@ -150,13 +139,6 @@ mod tests {
             interval(&Guaranteed { value: 1.0, low: 0.999_999_94, high: 1.000_000_06 }, "H");
         let [low, high] = [tight.low, tight.high].map(|t| t.parse::<f64>().unwrap());
         assert!(low <= 0.999_999_94 && 1.000_000_06 <= high, "{low} {high}");
-    }
-
-    #[test]
-    fn a_best_value_has_the_digits_of_its_own_error() {
-        let wide = Guaranteed { value: 692.6431e-6, low: 686.2e-6, high: 698.8e-6 };
-        assert_eq!(best_value(&wide, "H", 8e-5), "692.64 µH");
-        assert_eq!(best_value(&wide, "H", 2e-3), "693 µH");
     }
 
     #[test]

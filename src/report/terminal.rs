@@ -3,15 +3,17 @@
 mod answer;
 mod tables;
 
+pub(super) use answer::requirement_line;
+
 use super::numbers::{clip, grouped, percent, signed, wrap};
 use super::{StageTimes, shortfall};
 use crate::results::Results;
 use comfy_table::{CellAlignment, Table, presets};
 
 /// Columns of the screen.
-const WIDTH: usize = 80;
+pub(super) const WIDTH: usize = 80;
 /// Longest name of a region, a part or a winding that is printed in full.
-const NAME_WIDTH: usize = 24;
+pub(super) const NAME_WIDTH: usize = 24;
 
 /// How the screen is to look.
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
@@ -47,7 +49,8 @@ pub fn solve_screen(results: &Results, look: &Look) -> String {
     tables::gaps(&mut text, results, look);
     tables::hot_spots(&mut text, results, look);
     tables::parts(&mut text, results, look);
-    notes(&mut text, results, look);
+    tables::ripple(&mut text, results, look);
+    notes(&mut text, &results.notes, look);
     if let Some(times) = look.times {
         timings(&mut text, results, times, look);
     }
@@ -64,26 +67,26 @@ pub fn progress_line(round: usize, n_unknowns: usize, low: f64, high: f64) -> St
     )
 }
 
-const BOLD: &str = "1";
+pub(super) const BOLD: &str = "1";
 const GOOD: &str = "32";
-const WARN: &str = "33";
+pub(super) const WARN: &str = "33";
 
-fn paint(text: &str, code: &str, colour: bool) -> String {
+pub(super) fn paint(text: &str, code: &str, colour: bool) -> String {
     if colour { format!("\u{1b}[{code}m{text}\u{1b}[0m") } else { text.to_string() }
 }
 
-fn push(text: &mut String, line: &str) {
+pub(super) fn push(text: &mut String, line: &str) {
     text.push_str(line.trim_end());
     text.push('\n');
 }
 
-fn heading(text: &mut String, line: &str, look: &Look) {
+pub(super) fn heading(text: &mut String, line: &str, look: &Look) {
     text.push('\n');
     push(text, &paint(line, BOLD, look.colour));
 }
 
 /// A table without lines: first column left, the others right, indented by two.
-fn push_table(text: &mut String, header: &[&str], rows: &[Vec<String>]) {
+pub(super) fn push_table(text: &mut String, header: &[&str], rows: &[Vec<String>]) {
     let mut table = Table::new();
     table.load_style(presets::NOTHING);
     table.set_header(header.iter().map(|h| h.to_string()));
@@ -99,12 +102,13 @@ fn push_table(text: &mut String, header: &[&str], rows: &[Vec<String>]) {
     }
 }
 
-fn notes(text: &mut String, results: &Results, look: &Look) {
-    if results.notes.is_empty() {
+/// The notes, one indented paragraph each.
+pub(super) fn notes(text: &mut String, notes: &[String], look: &Look) {
+    if notes.is_empty() {
         return;
     }
     heading(text, "Notes", look);
-    for note in &results.notes {
+    for note in notes {
         for (i, line) in wrap(note, WIDTH - 4).iter().enumerate() {
             push(text, &format!("  {} {line}", if i == 0 { "·" } else { " " }));
         }

@@ -7,7 +7,7 @@ use super::{
 use crate::adapt::Outcome;
 use crate::fem::element::Frame;
 use crate::geometry::{Outline, RegionKind};
-use crate::model::{Model, Point};
+use crate::model::{Form, Model, PotWall};
 use crate::results::ProbeResult;
 use crate::units::{Joule, Weber};
 use std::f64::consts::TAU;
@@ -52,7 +52,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         true => value,
         false => carrier.and_then(|w| {
             let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
-            linkage::tangent(outcome, &unit, &unit)
+            linkage::tangent(outcome, &outcome.elements, &unit, &unit)
         }),
     };
     Results {
@@ -68,6 +68,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         coenergy,
         energy: if is_linear { coenergy.value } else { energy },
         is_linear,
+        estimated_error: (!is_linear).then(|| outcome.bound.relative_width()),
         windings,
         inductance_based: value
             .and_then(|l| gaps::common_factor(outline, &gaps, &ledger, turns * turns / l)),
@@ -77,6 +78,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         parts: parts::results(model, &sampler),
         probes: probes(model, &sampler),
         verdict,
+        ripple: None,
         requirements: Vec::new(),
         notes,
     }
@@ -131,13 +133,9 @@ fn rounds(model: &Model, outcome: &Outcome, carrier: Option<usize>) -> Vec<Round
 }
 
 fn probes(model: &Model, sampler: &Sampler) -> Vec<ProbeResult> {
-    let along =
-        |a: Point, b: Point, s: f64| Point { r: a.r + s * (b.r - a.r), z: a.z + s * (b.z - a.z) };
     (model.probes.iter())
         .map(|probe| {
-            let step = 1.0 / (probe.n_points.max(2) - 1) as f64;
-            let at = |k: usize| along(probe.from, probe.to, k as f64 * step);
-            let points = (0..probe.n_points).filter_map(|k| sampler.probe(at(k))).collect();
+            let points = probe.points().filter_map(|at| sampler.probe(at)).collect();
             ProbeResult { name: probe.name.clone(), points }
         })
         .collect()
@@ -146,16 +144,30 @@ fn probes(model: &Model, sampler: &Sampler) -> Vec<ProbeResult> {
 /// Usable but doubtful: fields past the last point of a table, legs that are not round.
 fn notes(model: &Model, sampler: &Sampler) -> Vec<String> {
     let mut notes = parts::beyond_tables(model, sampler);
-    if let Some(core) = &model.core {
-        if let crate::model::Form::Pot { wall: crate::model::PotWall::OuterLegsArea(_), .. } =
-            core.form
-        {
-            notes.push(
+    if let Some(at) = sampler.outcome.unresolved {
+        notes.push(format!(
+            "the interval cannot close further: near r = {:.6} mm, z = {:.6} mm the field is too sharp for any mesh; \
+             parts that touch only in a point do that: let them share an edge or leave a gap",
+            1e3 * at.r,
+            1e3 * at.z
+        ));
+    }
+    if !sampler.outcome.coefficients.is_linear() {
+        notes.push(
+            "guaranteed are the ends of the coenergy and, for a single current, those of the flux linkage and the \
+             apparent inductance, which follow from its convexity; their best values carry an estimated error, and \
+             the incremental inductance is a best value only"
+                .to_string(),
+        );
+    }
+    if let Some(core) = &model.core
+        && let Form::Pot { wall: PotWall::OuterLegsArea(_), .. } = core.form
+    {
+        notes.push(
                 "the outer legs are not round: they are replaced by a round wall of equal section, a model error of \
                  per cents that no interval covers"
                     .to_string(),
             );
-        }
     }
     notes
 }
@@ -168,11 +180,10 @@ pub fn flux_linkage(model: &Model, sampler: &Sampler, w: usize) -> Weber {
     for (t, region) in mesh.regions.iter().enumerate() {
         if let RegionKind::Winding { winding, section } =
             sampler.outline.regions[region.0 as usize].kind
+            && winding == w
         {
-            if winding == w {
-                psi[section] += solution.integral(mesh, t);
-                area[section] += 0.5 * Frame::new(mesh, t).det_abs;
-            }
+            psi[section] += solution.integral(mesh, t);
+            area[section] += 0.5 * Frame::new(mesh, t).det_abs;
         }
     }
     (model.windings[w].sections.iter().enumerate())

@@ -17,7 +17,7 @@ use std::f64::consts::TAU;
 /// −dW'/dl at fixed currents for gap `gap` growing [N]: positive pulls the gap shut.
 pub fn gap_force(model: &Model, sampler: &Sampler, gap: usize) -> Newton {
     let velocity = match model.gaps[gap].across {
-        Across::Spacer => spacer_velocity(sampler),
+        Across::Spacer => spacer_velocity(model, sampler),
         Across::Post | Across::Wall => ground_velocity(model, sampler, gap),
     };
     let mesh = &sampler.outcome.mesh;
@@ -68,18 +68,37 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
 }
 
 /// Halves moved rigidly apart: ±½ on the core above and below z = 0, 0 elsewhere.
-fn spacer_velocity(sampler: &Sampler) -> Vec<f64> {
+///
+/// Corners of a winding that lie on the face of a leg stay: only the normal motion of a face matters, so they may slide
+/// along it, and the winding keeps its height.
+fn spacer_velocity(model: &Model, sampler: &Sampler) -> Vec<f64> {
     let mesh = &sampler.outcome.mesh;
     let mut velocity = vec![0.0; mesh.points.len()];
-    for (t, corners) in mesh.triangles.iter().enumerate() {
-        let kind = sampler.outline.regions[mesh.regions[t].0 as usize].kind;
+    for_kinds(sampler, |kind, v| {
         if matches!(kind, RegionKind::Leg(_) | RegionKind::Joint(_)) {
-            for &v in corners {
-                velocity[v as usize] = 0.5 * mesh.points[v as usize].z.signum();
-            }
+            velocity[v] = 0.5 * mesh.points[v].z.signum();
+        }
+    });
+    let top = model.core.as_ref().map_or(0.0, |core| core.dimensions(&model.gaps).window_top);
+    for_kinds(sampler, |kind, v| {
+        let p = mesh.points[v];
+        let is_plate = top * (1.0 - 1e-9) <= p.z.abs();
+        if matches!(kind, RegionKind::Winding { .. }) && must_stay(model, kind, usize::MAX, p) && !is_plate {
+            velocity[v] = 0.0;
+        }
+    });
+    velocity
+}
+
+/// Calls `visit` with the kind of region and the vertex for every corner of every inside triangle.
+fn for_kinds(sampler: &Sampler, mut visit: impl FnMut(&RegionKind, usize)) {
+    let mesh = &sampler.outcome.mesh;
+    for (t, corners) in mesh.triangles.iter().enumerate() {
+        if mesh.charts[t] == Chart::Inside {
+            let kind = &sampler.outline.regions[mesh.regions[t].0 as usize].kind;
+            corners.iter().for_each(|&v| visit(kind, v as usize));
         }
     }
-    velocity
 }
 
 /// Faces of a ground gap move apart by ±½; the motion dies out linearly over `reach` along the leg and sideways.

@@ -10,29 +10,41 @@ use crate::units::{Meter, Tesla};
 use std::collections::BTreeMap;
 use std::f64::consts::TAU;
 
-/// Cells of one disc radius that are looked at closely; the hottest ones by their own mean.
-const N_CANDIDATES: usize = 60;
-/// Rings and points a ring of the disc's averaging rule (equal areas, midpoints).
-const N_RINGS: usize = 4;
-const N_ON_RING: usize = 16;
+/// Rings and points a ring of the disc's averaging rule (equal areas, midpoints) while it climbs.
+const RULE_CLIMBING: [usize; 2] = [4, 16];
+/// The same for the value that is told: near a corner B grows without bound, and one point of n is worth 1/n.
+const RULE_TOLD: [usize; 2] = [12, 32];
 /// Moves of one climb before it is called done; a climb is a few radii long.
 const N_MOVES_MAX: usize = 40;
+/// Climbs before the search ends with fewer spots than wanted; most starts lead to a place already found.
+const N_CLIMBS_MAX: usize = 24;
 /// A climb ends when steps of this share of the radius no longer help.
 const FINEST_STEP: f64 = 0.06;
 
-/// The `count` hottest discs, at least two radii apart; each is a local maximum of the disc's mean.
+/// The `count` hottest discs, hottest first, at least two radii apart.
+///
+/// Starts in the hottest cells and climbs to local maxima of the disc's mean, so that the answer does not hang on the mesh;
+/// a start beside a spot already found, or one that leads to it, tells nothing new. There may be fewer maxima than wanted.
 pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let (radius, count) = (model.hot_spots.averaging, model.hot_spots.count);
-    let discs = candidates(sampler, radius)
-        .into_iter()
-        .map(|(t, at)| Disc::new(sampler, t, at, radius))
-        .collect();
-    // A few more starts than wanted: two may climb to the same place.
-    let climbed = apart(discs, count + 4, radius)
-        .into_iter()
-        .map(|disc| climb(sampler, disc, radius))
-        .collect();
-    (apart(climbed, count, radius).into_iter())
+    let search = Search { sampler, radius, offsets: offsets(radius, RULE_CLIMBING) };
+    let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
+    let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
+    for (triangle, at) in candidates(sampler, radius) {
+        if count <= found.len() || tried.len() == N_CLIMBS_MAX {
+            break;
+        }
+        if search.is_apart(&tried, at) {
+            let disc = search.climb(search.disc(triangle, at));
+            if found.iter().all(|other| search.are_apart(other.at, disc.at)) {
+                found.push(told.disc(disc.triangle, disc.at));
+                tried.push(disc.at);
+            }
+            tried.push(at);
+        }
+    }
+    found.sort_by(|a, b| b.mean.total_cmp(&a.mean));
+    (found.into_iter())
         .map(|disc| HotSpot {
             part: region(sampler, disc.triangle).name.clone(),
             r: disc.at.r,
@@ -50,46 +62,82 @@ struct Disc {
     mean: Tesla,
 }
 
-impl Disc {
-    fn new(sampler: &Sampler, triangle: usize, at: Point, radius: Meter) -> Disc {
-        Disc { triangle, at, mean: disc_mean(sampler, triangle, at, radius) }
-    }
+struct Search<'a> {
+    sampler: &'a Sampler<'a>,
+    radius: Meter,
+    /// Points of the averaging rule about the centre.
+    offsets: Vec<[Meter; 2]>,
 }
 
-/// The first `count` discs, hottest first, that are two radii from each other.
-fn apart(mut discs: Vec<Disc>, count: usize, radius: Meter) -> Vec<Disc> {
-    let by_place = |a: &Disc, b: &Disc| a.at.r.total_cmp(&b.at.r).then(a.at.z.total_cmp(&b.at.z));
-    discs.sort_by(|a, b| b.mean.total_cmp(&a.mean).then(by_place(a, b)));
-    let mut kept: Vec<Disc> = Vec::new();
-    for disc in discs {
-        let is_apart =
-            |other: &Disc| 2.0 * radius <= (other.at.r - disc.at.r).hypot(other.at.z - disc.at.z);
-        if kept.len() < count && kept.iter().all(is_apart) {
-            kept.push(disc);
-        }
-    }
-    kept
+fn offsets(radius: Meter, [n_rings, n_on_ring]: [usize; 2]) -> Vec<[Meter; 2]> {
+    let point = |ring: usize, k: usize| {
+        let distance = radius * ((ring as f64 + 0.5) / n_rings as f64).sqrt();
+        let angle = TAU * (k as f64 + 0.5 * (ring % 2) as f64) / n_on_ring as f64;
+        [distance * angle.cos(), distance * angle.sin()]
+    };
+    (0..n_rings).flat_map(|ring| (0..n_on_ring).map(move |k| point(ring, k))).collect()
 }
 
-/// Moves a disc uphill inside its body by halved steps, so that the answer does not hang on the mesh.
-fn climb(sampler: &Sampler, mut disc: Disc, radius: Meter) -> Disc {
-    let own = body(region(sampler, disc.triangle));
-    let mut step = 0.5 * radius;
-    for _ in 0..N_MOVES_MAX {
-        let moved = |(dr, dz): (f64, f64)| {
-            let at = Point { r: disc.at.r + step * dr, z: disc.at.z + step * dz };
-            let (t, _) = locate(&sampler.outcome.mesh, &sampler.edge_triangles, disc.triangle, at)?;
-            let is_inside = 0.0 <= at.r && body(region(sampler, t)) == own;
-            is_inside.then(|| Disc::new(sampler, t, at, radius))
-        };
-        let best = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)].into_iter().filter_map(moved);
-        match best.max_by(|a, b| a.mean.total_cmp(&b.mean)).filter(|best| disc.mean < best.mean) {
-            Some(best) => disc = best,
-            None if step < FINEST_STEP * radius => break,
-            None => step *= 0.5,
-        }
+impl Search<'_> {
+    fn are_apart(&self, a: Point, b: Point) -> bool {
+        2.0 * self.radius <= (a.r - b.r).hypot(a.z - b.z)
     }
-    disc
+
+    fn is_apart(&self, others: &[Point], at: Point) -> bool {
+        others.iter().all(|&other| self.are_apart(other, at))
+    }
+
+    fn disc(&self, triangle: usize, at: Point) -> Disc {
+        Disc { triangle, at, mean: self.mean(triangle, at) }
+    }
+
+    /// Moves a disc uphill inside its body by halved steps.
+    fn climb(&self, mut disc: Disc) -> Disc {
+        let sampler = self.sampler;
+        let own = body(region(sampler, disc.triangle));
+        let mut step = 0.5 * self.radius;
+        for _ in 0..N_MOVES_MAX {
+            let moved = |(dr, dz): (f64, f64)| {
+                let at = Point { r: (disc.at.r + step * dr).max(0.0), z: disc.at.z + step * dz };
+                let mesh = &sampler.outcome.mesh;
+                let (t, _) = locate(mesh, &sampler.edge_triangles, disc.triangle, at)?;
+                (body(region(sampler, t)) == own).then(|| self.disc(t, at))
+            };
+            let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
+            let best =
+                around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
+            match best.filter(|best| disc.mean < best.mean) {
+                Some(best) => disc = best,
+                None if step < FINEST_STEP * self.radius => break,
+                None => step *= 0.5,
+            }
+        }
+        disc
+    }
+
+    /// Mean |B| over the part of the disc that lies in the same body.
+    fn mean(&self, t: usize, center: Point) -> Tesla {
+        let mesh = &self.sampler.outcome.mesh;
+        let own = body(region(self.sampler, t));
+        let (mut sum, mut n, mut last) = (0.0, 0.0, t);
+        for [dr, dz] in &self.offsets {
+            let at = Point { r: center.r + dr, z: center.z + dz };
+            if at.r < 0.0 {
+                continue;
+            }
+            // Neighbours on the ring are neighbours in the mesh: walk on from the last one.
+            let Some((found, lambda)) = locate(mesh, &self.sampler.edge_triangles, last, at) else {
+                continue;
+            };
+            last = found;
+            if mesh.charts[found] == Chart::Inside && body(region(self.sampler, found)) == own {
+                let [b_r, b_z] = self.sampler.flux_density(found, &lambda);
+                sum += (b_r * b_r + b_z * b_z).sqrt();
+                n += 1.0;
+            }
+        }
+        if n == 0.0 { 0.0 } else { sum / n }
+    }
 }
 
 fn region<'a>(sampler: &'a Sampler, t: usize) -> &'a Region {
@@ -105,7 +153,7 @@ fn body(region: &Region) -> Option<usize> {
     }
 }
 
-/// The hottest centroid of each of the hottest cells.
+/// The hottest centroid of each cell of one radius, hottest cell first.
 fn candidates(sampler: &Sampler, radius: Meter) -> Vec<(usize, Point)> {
     struct Cell {
         weighted: f64,
@@ -133,38 +181,5 @@ fn candidates(sampler: &Sampler, radius: Meter) -> Vec<(usize, Point)> {
     let mut cells: Vec<(f64, usize, Point)> =
         cells.into_values().map(|c| (c.weighted / c.area, c.hottest.1, c.hottest.2)).collect();
     cells.sort_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
-    cells.truncate(N_CANDIDATES);
     cells.into_iter().map(|(_, t, at)| (t, at)).collect()
-}
-
-/// Mean |B| over the part of the disc that lies in the same body.
-fn disc_mean(sampler: &Sampler, t: usize, center: Point, radius: Meter) -> Tesla {
-    let own = body(region(sampler, t));
-    let (mut sum, mut n) = (0.0, 0.0);
-    for ring in 0..N_RINGS {
-        let distance = radius * ((ring as f64 + 0.5) / N_RINGS as f64).sqrt();
-        for k in 0..N_ON_RING {
-            let angle = TAU * (k as f64 + 0.5 * (ring % 2) as f64) / N_ON_RING as f64;
-            let at = Point {
-                r: center.r + distance * angle.cos(),
-                z: center.z + distance * angle.sin(),
-            };
-            if at.r < 0.0 {
-                continue;
-            }
-            let Some((found, lambda)) =
-                locate(&sampler.outcome.mesh, &sampler.edge_triangles, t, at)
-            else {
-                continue;
-            };
-            if sampler.outcome.mesh.charts[found] == Chart::Inside
-                && body(region(sampler, found)) == own
-            {
-                let [b_r, b_z] = sampler.flux_density(found, &lambda);
-                sum += b_r.hypot(b_z);
-                n += 1.0;
-            }
-        }
-    }
-    if n == 0.0 { 0.0 } else { sum / n }
 }

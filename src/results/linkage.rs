@@ -4,12 +4,12 @@ use super::Guaranteed;
 use super::collect::{flux_linkage, single_carrier};
 use super::sample::Sampler;
 use crate::adapt::Outcome;
-use crate::fem::{Coefficients, assemble};
+use crate::fem::{Coefficients, Element, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
 use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
-use crate::sparse::{Stop, conjugate_gradients};
+use crate::sparse::{Multilevel, Stop, Swept, Workspace};
 use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
@@ -75,21 +75,21 @@ const TANGENT_DECREASE: f64 = 1e-10;
 
 /// dλ_w/dI_w at the bias from the tangent problem A_t y = b, λ' = 2π b_w·y (eq. 14) [H].
 ///
+/// - `elements`: of the tangent at the bias
 /// - `unit`: load of 1 A in winding w alone
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
-pub fn tangent(outcome: &Outcome, unit: &[f64], rate: &[f64]) -> Option<Henry> {
-    let matrix = assemble::stiffness(
-        &outcome.mesh,
-        &outcome.space,
-        &Fans::new(&outcome.mesh),
-        &outcome.elements,
-    );
-    let mut work = outcome.hierarchy.workspace();
+pub fn tangent(
+    outcome: &Outcome,
+    elements: &[Element],
+    unit: &[f64],
+    rate: &[f64],
+) -> Option<Henry> {
+    let fans = Fans::new(&outcome.mesh);
+    let matrix = Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements));
+    let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
-    let mut precondition =
-        |r: &[f64], z: &mut [f64]| outcome.hierarchy.precondition(&matrix, &mut work, r, z);
-    conjugate_gradients(&matrix, rate, &mut y, &stop, 0.0, &mut precondition).ok()?;
+    Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0).ok()?;
     Some(TAU * dot(unit, &y))
 }
 

@@ -6,11 +6,15 @@ mod gaps;
 pub mod hand;
 mod hot_spots;
 mod ledger;
-mod linkage;
-mod parts;
+pub mod linkage;
+pub mod parts;
+mod requirements;
+mod ripple;
 pub mod sample;
 
 pub use collect::{collect, single_carrier};
+pub use requirements::{check_requirements, scaled_density};
+pub use ripple::ripple;
 
 use crate::units::{Ampere, CubicMeter, Henry, Joule, Meter, Newton, PerHenry, Tesla, Weber};
 
@@ -136,8 +140,38 @@ pub struct RequirementResult {
     pub incremental: bool,
     pub least: Option<Henry>,
     pub most: Option<Henry>,
+    /// Best value.
     pub inductance: Henry,
+    /// Guaranteed ends of an apparent inductance; `None` where nothing is guaranteed.
+    pub ends: Option<[Henry; 2]>,
     pub met: bool,
+    /// True when the guaranteed ends decide; false when only the best value does.
+    pub is_certain: bool,
+}
+
+/// What the ripple does to one part.
+#[derive(Debug, Clone, PartialEq)]
+pub struct RipplePart {
+    pub name: String,
+    /// |B(peak) − B(trough)| that 5 % of the volume exceed: the flux-density swing, peak to peak.
+    pub swing: Tesla,
+    /// |B| at the peak current that 5 % of the volume exceed.
+    pub peak: Tesla,
+}
+
+/// The currents between which a winding swings.
+#[derive(Debug, Clone, PartialEq)]
+pub struct RippleCurrent {
+    pub winding: String,
+    pub trough: Ampere,
+    pub peak: Ampere,
+}
+
+/// Bias and ripple together, all windings in phase.
+#[derive(Debug, Clone, PartialEq)]
+pub struct RippleResult {
+    pub currents: Vec<RippleCurrent>,
+    pub parts: Vec<RipplePart>,
 }
 
 /// Everything that `solve` answers.
@@ -158,6 +192,9 @@ pub struct Results {
     pub energy: Joule,
     /// True when every law is constant: then the inductance carries the interval.
     pub is_linear: bool,
+    /// Estimated relative error of the best flux linkage and inductance of a saturating core, not a guarantee; `None`
+    /// with constant laws, where the inductance carries the interval.
+    pub estimated_error: Option<f64>,
     pub windings: Vec<WindingResult>,
     pub ledger: Vec<LedgerRow>,
     /// F_L; `None` without gaps or with several currents.
@@ -167,6 +204,8 @@ pub struct Results {
     pub parts: Vec<PartResult>,
     pub probes: Vec<ProbeResult>,
     pub verdict: Option<Verdict>,
+    /// `None` without a ripple.
+    pub ripple: Option<RippleResult>,
     pub requirements: Vec<RequirementResult>,
     pub notes: Vec<String>,
 }

@@ -3,8 +3,10 @@
 use super::PartResult;
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
+use crate::fem::element::Frame;
 use crate::geometry::RegionKind;
 use crate::model::Model;
+use crate::solve::Solution;
 use crate::units::{CubicMeter, Tesla};
 use std::f64::consts::TAU;
 
@@ -24,7 +26,7 @@ pub fn results(model: &Model, sampler: &Sampler) -> Vec<PartResult> {
         .filter(|(_, region)| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_)))
         .map(|(k, region)| {
             let triangles: Vec<usize> = triangles_of(sampler, k);
-            let samples = samples(sampler, &triangles);
+            let samples = samples(sampler, &sampler.outcome.solution, &triangles);
             let exceeded = exceeded(samples.clone());
             let knee = region.material.and_then(|id| model.materials[id.0 as usize].law.knee());
             PartResult {
@@ -38,16 +40,32 @@ pub fn results(model: &Model, sampler: &Sampler) -> Vec<PartResult> {
         .collect()
 }
 
+/// Name and exceeded flux densities of every leg, plate and part for any field on the sampler's mesh.
+pub fn exceedances(sampler: &Sampler, solution: &Solution) -> Vec<(String, [Tesla; 3])> {
+    (sampler.outline.regions.iter().enumerate())
+        .filter(|(_, region)| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_)))
+        .map(|(k, region)| {
+            let samples = samples(sampler, solution, &triangles_of(sampler, k));
+            (region.name.clone(), exceeded(samples))
+        })
+        .collect()
+}
+
 fn triangles_of(sampler: &Sampler, region: usize) -> Vec<usize> {
     let regions = &sampler.outcome.mesh.regions;
     (0..regions.len()).filter(|&t| regions[t].0 as usize == region).collect()
 }
 
 /// (|B|, volume) at three points a triangle; the volumes add up exactly (the rule is exact for r).
-fn samples(sampler: &Sampler, triangles: &[usize]) -> Vec<(Tesla, CubicMeter)> {
+fn samples(
+    sampler: &Sampler,
+    solution: &Solution,
+    triangles: &[usize],
+) -> Vec<(Tesla, CubicMeter)> {
+    let mesh = &sampler.outcome.mesh;
     let mut samples = Vec::with_capacity(3 * triangles.len());
     for &t in triangles {
-        let (frame, gradients) = sampler.local(t);
+        let (frame, gradients) = (Frame::new(mesh, t), solution.gradients(mesh, t));
         for lambda in &SAMPLES {
             let [b_r, b_z] = crate::fem::evaluate::flux_density(&frame, &gradients, lambda);
             samples.push((b_r.hypot(b_z), TAU * frame.position(lambda).r * frame.det_abs / 6.0));
@@ -82,7 +100,7 @@ pub fn beyond_tables(model: &Model, sampler: &Sampler) -> Vec<String> {
             continue;
         }
         let triangles = triangles_of(sampler, k);
-        let samples = samples(sampler, &triangles);
+        let samples = samples(sampler, &sampler.outcome.solution, &triangles);
         let total: CubicMeter = samples.iter().map(|s| s.1).sum();
         let beyond: CubicMeter = samples.iter().filter(|s| b_last < s.0).map(|s| s.1).sum();
         let most = samples.iter().fold(0.0, |m: f64, s| m.max(s.0));

@@ -7,7 +7,9 @@ use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space, assemble, spa
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
 use crate::sparse::cg::dot;
-use crate::sparse::{CgError, Hierarchy, Interpolation, Matrix, Stop, conjugate_gradients};
+use crate::sparse::{
+    CgError, Convergence, Hierarchy, Interpolation, Matrix, Multilevel, Stop, Swept,
+};
 use rayon::prelude::*;
 
 /// Newton steps before giving up; the issue of hard cases is ≤ 25, the rest is reserve.
@@ -16,6 +18,11 @@ const N_NEWTON_MAX: usize = 60;
 const N_HALVINGS_MAX: usize = 40;
 /// CG iterations before giving up; 20–40 are usual.
 const N_CG_MAX: usize = 2000;
+/// CG iterations above which the coarser levels are taken for stale (of another current) and rebuilt: good ones need
+/// 20–36 for 1e-10 from zero.
+const N_CG_STALE: usize = 25;
+/// F rounds to about this share of itself: a smaller predicted decrease cannot be told from noise.
+const ROUNDING: f64 = 1e-15;
 /// Sufficient decrease of F, as a share of the predicted one (Armijo).
 const ARMIJO: f64 = 1e-4;
 
@@ -65,19 +72,31 @@ pub fn solve(
     let mut x = system.space.restrict(&solution.vertex, &solution.edge);
     let effort = if system.coefficients.is_linear() {
         let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
-        set_level(system, hierarchy, &matrix, &interpolation)?;
+        let matrix = Swept::new(matrix);
+        set_level(system, hierarchy, matrix.matrix(), &interpolation)?;
         let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
-        let mut work = hierarchy.workspace();
-        let mut precondition =
-            |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, &mut work, r, z);
-        let convergence =
-            conjugate_gradients(&matrix, &load, &mut x, &stop, 0.0, &mut precondition)?;
+        let convergence = iterate(hierarchy, &matrix, &load, &mut x, &stop, 0.0)?;
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
     } else {
         newton(system, elements, hierarchy, &interpolation, &load, &mut x, decrease)?
     };
     (solution.vertex, solution.edge) = system.space.expand(system.mesh, &x);
     Ok(effort)
+}
+
+/// Conjugate gradients with the hierarchy's own workspace.
+fn iterate(
+    hierarchy: &mut Hierarchy,
+    matrix: &Swept,
+    b: &[f64],
+    x: &mut [f64],
+    stop: &Stop,
+    scale: f64,
+) -> Result<Convergence, CgError> {
+    let mut work = std::mem::take(&mut hierarchy.work);
+    let result = Multilevel::new(matrix, hierarchy, &mut work).solve(b, x, stop, scale);
+    hierarchy.work = work;
+    result
 }
 
 fn set_level(
@@ -101,23 +120,24 @@ fn newton(
     x: &mut Vec<f64>,
     decrease: f64,
 ) -> Result<Effort, SolveError> {
+    let decrease = decrease.max(ROUNDING);
     let mut effort = Effort::default();
     let problem = Problem { system, load, saturating: saturating_triangles(system) };
     let mut state = State::new(&problem, elements, x);
     loop {
         state.store_tangents(&problem, elements);
         let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
-        set_level(system, hierarchy, &matrix, interpolation)?;
+        let matrix = Swept::new(matrix);
+        set_level(system, hierarchy, matrix.matrix(), interpolation)?;
         let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
         let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
-        let mut work = hierarchy.workspace();
-        let mut precondition =
-            |r: &[f64], z: &mut [f64]| hierarchy.precondition(&matrix, &mut work, r, z);
-        let convergence =
-            conjugate_gradients(&matrix, &residual, &mut step, &stop, scale, &mut precondition)?;
+        let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
+        if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
+            return Err(SolveError::CoarseNotPositive);
+        }
         effort.n_cg_iterations += convergence.n_iterations;
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);

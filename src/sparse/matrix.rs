@@ -1,4 +1,4 @@
-//! The one matrix type (sprs CSR with 32-bit columns) and the kernels that run over its slices.
+//! The one matrix type (sprs CSR with 32-bit columns) and the sweeps that run over its slices.
 
 use rayon::prelude::*;
 use sprs::CsMatI;
@@ -11,51 +11,165 @@ const N_ROWS_PARALLEL: usize = 40_000;
 /// Rows a thread takes at a time.
 const N_ROWS_CHUNK: usize = 4096;
 
-/// y = A x.
-pub fn multiply(a: &Matrix, x: &[f64], y: &mut [f64]) {
-    let view = Rows::of(a);
-    if view.n_rows() < N_ROWS_PARALLEL || rayon::current_num_threads() == 1 {
-        for (i, y) in y.iter_mut().enumerate() {
-            *y = view.dot(i, x);
-        }
-    } else {
-        y.par_chunks_mut(N_ROWS_CHUNK).enumerate().for_each(|(chunk, y)| {
-            for (k, y) in y.iter_mut().enumerate() {
-                *y = view.dot(chunk * N_ROWS_CHUNK + k, x);
-            }
-        });
+/// A matrix with the places of its diagonal, ready for products and Gauss–Seidel sweeps.
+#[derive(Debug, Clone)]
+pub struct Swept {
+    matrix: Matrix,
+    /// Position of each row's diagonal in the value array.
+    diagonal: Vec<usize>,
+    inverse_diagonal: Vec<f64>,
+}
+
+impl Swept {
+    /// Finds the diagonal. Panics where a row has none: assembly always makes one.
+    pub fn new(matrix: Matrix) -> Swept {
+        let start = matrix.indptr().into_raw_storage();
+        let columns = matrix.indices();
+        let diagonal: Vec<usize> = (start.windows(2).enumerate())
+            .map(|(i, ends)| {
+                let row = &columns[ends[0]..ends[1]];
+                let place = row.partition_point(|&j| (j as usize) < i);
+                assert!(row.get(place) == Some(&(i as u32)), "row {i} has no diagonal");
+                ends[0] + place
+            })
+            .collect();
+        let inverse_diagonal = diagonal.iter().map(|&k| 1.0 / matrix.data()[k]).collect();
+        Swept { matrix, diagonal, inverse_diagonal }
     }
-}
 
-/// Borrowed slices of a matrix: the hot loops index these, not the matrix.
-#[derive(Debug, Clone, Copy)]
-pub struct Rows<'a> {
-    start: &'a [usize],
-    columns: &'a [u32],
-    values: &'a [f64],
-}
-
-impl<'a> Rows<'a> {
-    /// Slices of `a`.
-    pub fn of(a: &'a Matrix) -> Rows<'a> {
-        Rows { start: a.indptr().into_raw_storage(), columns: a.indices(), values: a.data() }
+    /// The matrix itself.
+    pub fn matrix(&self) -> &Matrix {
+        &self.matrix
     }
 
     /// Number of rows.
     pub fn n_rows(&self) -> usize {
-        self.start.len() - 1
+        self.diagonal.len()
     }
 
-    /// Columns and values of row i.
-    #[inline]
-    pub fn row(&self, i: usize) -> (&'a [u32], &'a [f64]) {
-        let range = self.start[i]..self.start[i + 1];
-        (&self.columns[range.clone()], &self.values[range])
+    /// y = A x.
+    pub fn multiply(&self, x: &[f64], y: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        self.for_rows(y, |i, y| *y = self.dot(start[i], start[i + 1], x));
     }
 
+    /// y += L x, L the strictly lower part.
+    pub fn add_lower(&self, x: &[f64], y: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        self.for_rows(y, |i, y| *y += self.dot(start[i], self.diagonal[i], x));
+    }
+
+    /// Calls `row` for each entry of y; large matrices share the rows between threads.
+    fn for_rows(&self, y: &mut [f64], row: impl Fn(usize, &mut f64) + Sync) {
+        if y.len() < N_ROWS_PARALLEL || rayon::current_num_threads() == 1 {
+            y.iter_mut().enumerate().for_each(|(i, y)| row(i, y));
+        } else {
+            y.par_chunks_mut(N_ROWS_CHUNK).enumerate().for_each(|(chunk, y)| {
+                y.iter_mut().enumerate().for_each(|(k, y)| row(chunk * N_ROWS_CHUNK + k, y));
+            });
+        }
+    }
+
+    /// Σ a·x over the entries `from..to`.
     #[inline]
-    fn dot(&self, i: usize, x: &[f64]) -> f64 {
-        let (columns, values) = self.row(i);
-        columns.iter().zip(values).map(|(&j, v)| v * x[j as usize]).sum()
+    fn dot(&self, from: usize, to: usize, x: &[f64]) -> f64 {
+        let (columns, values) = (&self.matrix.indices()[from..to], &self.matrix.data()[from..to]);
+        let mut sum = 0.0;
+        for (&j, v) in columns.iter().zip(values) {
+            sum += v * x[j as usize];
+        }
+        sum
+    }
+
+    /// Gauss–Seidel from zero, first row to last: (D + L) x = b.
+    pub fn forward_from_zero(&self, b: &[f64], x: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        for i in 0..self.n_rows() {
+            x[i] = (b[i] - self.dot(start[i], self.diagonal[i], x)) * self.inverse_diagonal[i];
+        }
+    }
+
+    /// Residual of the leading rows after [`Swept::forward_from_zero`]: −(strictly upper part)·x.
+    pub fn residual_after_forward(&self, x: &[f64], residual: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        for (i, residual) in residual.iter_mut().enumerate() {
+            *residual = -self.dot(self.diagonal[i] + 1, start[i + 1], x);
+        }
+    }
+
+    /// Gauss–Seidel from x, last row to first: (D + U) x_new = b − L x_old. Leaves the right-hand side in `rest`.
+    ///
+    /// Afterwards A·x_new = rest + L·x_new, half of a product.
+    pub fn backward(&self, b: &[f64], x: &mut [f64], rest: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        for i in (0..self.n_rows()).rev() {
+            let place = self.diagonal[i];
+            rest[i] = b[i] - self.dot(start[i], place, x);
+            x[i] = (rest[i] - self.dot(place + 1, start[i + 1], x)) * self.inverse_diagonal[i];
+        }
+    }
+}
+
+/// Leading n × n block.
+pub fn leading_block(a: &Matrix, n: usize) -> Matrix {
+    let from = a.indptr().into_raw_storage();
+    let mut start = Vec::with_capacity(n + 1);
+    start.push(0usize);
+    // A vertex block has about a quarter of the entries of its rows.
+    let (mut columns, mut values) = (Vec::with_capacity(8 * n), Vec::with_capacity(8 * n));
+    for i in 0..n {
+        let row = &a.indices()[from[i]..from[i + 1]];
+        let end = from[i] + row.partition_point(|&j| (j as usize) < n);
+        columns.extend_from_slice(&a.indices()[from[i]..end]);
+        values.extend_from_slice(&a.data()[from[i]..end]);
+        start.push(columns.len());
+    }
+    Matrix::new((n, n), start, columns, values)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The second difference on n points, plus a little.
+    fn sample(n: usize) -> Swept {
+        let mut triplets = sprs::TriMatI::<f64, u32>::new((n, n));
+        for i in 0..n {
+            triplets.add_triplet(i, i, 2.5 + 0.1 * i as f64);
+            if 0 < i {
+                triplets.add_triplet(i, i - 1, -1.0);
+                triplets.add_triplet(i - 1, i, -1.0);
+            }
+        }
+        Swept::new(triplets.to_csr())
+    }
+
+    #[test]
+    fn half_a_product_after_a_backward_sweep_is_the_whole_product() {
+        let a = sample(9);
+        let b: Vec<f64> = (0..9).map(|i| (1.3 * i as f64).sin()).collect();
+        let (mut x, mut y, mut residual) = (vec![0.0; 9], vec![0.0; 9], vec![0.0; 9]);
+        a.forward_from_zero(&b, &mut x);
+        a.residual_after_forward(&x, &mut residual);
+        a.multiply(&x, &mut y);
+        for i in 0..9 {
+            assert!((b[i] - y[i] - residual[i]).abs() < 1e-15);
+        }
+        x[3] += 0.2;
+        let mut product = vec![0.0; 9];
+        a.backward(&b, &mut x, &mut product);
+        a.add_lower(&x, &mut product);
+        a.multiply(&x, &mut y);
+        for i in 0..9 {
+            assert!((product[i] - y[i]).abs() < 1e-15);
+        }
+    }
+
+    #[test]
+    fn leading_block_keeps_the_corner() {
+        let block = leading_block(sample(9).matrix(), 4);
+        assert_eq!(block.shape(), (4, 4));
+        assert_eq!(block.nnz(), 10);
+        assert_eq!(block.get(3, 3), sample(9).matrix().get(3, 3));
     }
 }

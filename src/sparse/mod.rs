@@ -1,9 +1,10 @@
 //! Sparse algebra on sprs matrices: products, conjugate gradients, the multilevel preconditioner. No physics.
 
 pub mod cg;
+mod dissection;
 pub mod matrix;
 pub mod multilevel;
 
-pub use cg::{CgError, Convergence, Stop, conjugate_gradients};
-pub use matrix::Matrix;
-pub use multilevel::{Hierarchy, Interpolation};
+pub use cg::{CgError, Convergence, Operator, Stop, conjugate_gradients};
+pub use matrix::{Matrix, Swept};
+pub use multilevel::{Hierarchy, Interpolation, Multilevel, Workspace};

@@ -4,11 +4,12 @@
 //! older ones. Why it works: DEVELOPERS.md, "Solver". Source of the idea: H. Yserentant, Numer. Math. 49 (1986) 379
 //! (hierarchical splitting); J. Bramble, J. Pasciak, J. Xu, Math. Comp. 55 (1990) 1 (smoothing on every level).
 
-use super::matrix::{Matrix, Rows};
+use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
+use super::dissection::nested_dissection;
+use super::matrix::{Matrix, Swept, leading_block};
 use nalgebra::DMatrix;
 use nalgebra_sparse::factorization::CscCholesky;
 use nalgebra_sparse::{CooMatrix, CscMatrix};
-use sprs::linalg::reverse_cuthill_mckee;
 
 /// How an unknown that a finer level added follows from older unknowns: Σ weight·parent (weight 0: no parent).
 #[derive(Debug, Clone, Copy, PartialEq, Default)]
@@ -22,19 +23,23 @@ pub struct Interpolation {
 pub struct Hierarchy {
     coarse: Option<Coarse>,
     /// Leading blocks, level 1 upwards; level 0 is `coarse`.
-    levels: Vec<Matrix>,
+    levels: Vec<Swept>,
     /// Number of unknowns on each level, 0 upwards.
     sizes: Vec<usize>,
     /// For every unknown of the finest level; those of level 0 are not read.
     interpolation: Vec<Interpolation>,
+    /// Kept between solves; a solve takes it and puts it back.
+    pub work: Workspace,
 }
 
-/// Vectors of one V-cycle, reused from call to call: solution and right-hand side per level.
+/// Vectors of one V-cycle, reused from call to call: solution, right-hand side and scratch per level.
 #[derive(Debug, Default)]
 pub struct Workspace {
-    levels: Vec<[Vec<f64>; 2]>,
+    levels: Vec<[Vec<f64>; 3]>,
     /// Residual before restriction, correction after prolongation.
     transfer: Vec<f64>,
+    /// Vectors of the conjugate gradients around it.
+    pub vectors: Vectors,
 }
 
 #[derive(Debug)]
@@ -70,108 +75,147 @@ impl Hierarchy {
                 return false;
             }
         } else {
-            self.levels.push(leading_block(matrix, size));
+            self.levels.push(Swept::new(leading_block(matrix, size)));
         }
         self.sizes.push(size);
         true
     }
 
-    /// Room for [`Hierarchy::precondition`] with the present levels.
-    pub fn workspace(&self) -> Workspace {
-        let levels = self.sizes.iter().map(|&n| [vec![0.0; n], vec![0.0; n]]).collect();
-        Workspace { levels, transfer: Vec::new() }
+    /// Rebuilds every coarser level from the finest one, `matrix` being what [`Hierarchy::set_level`] last saw:
+    /// Pᵀ A P with the interpolation P, level by level.
+    ///
+    /// The levels of earlier rounds are as good as long as the coefficients stay what they were; after a change of the
+    /// tangent they are not (75 instead of 25 iterations were seen). Returns false when the coarsest level is not
+    /// positive definite.
+    pub fn renew(&mut self, matrix: &Matrix) -> bool {
+        let Some(&finest) = self.sizes.last() else { return true };
+        let mut block = leading_block(matrix, finest);
+        for level in (1..self.sizes.len()).rev() {
+            let coarser = self.projected(&block, self.sizes[level - 1]);
+            self.levels[level - 1] = Swept::new(block);
+            block = coarser;
+        }
+        self.coarse = Coarse::new(&block, self.sizes[0]);
+        self.coarse.is_some()
     }
 
-    /// z ≈ A⁻¹ r for the whole matrix whose leading block is the finest level.
-    pub fn precondition(&self, matrix: &Matrix, work: &mut Workspace, r: &[f64], z: &mut [f64]) {
-        let rows = Rows::of(matrix);
-        let Some(finest) = self.sizes.len().checked_sub(1) else { return z.copy_from_slice(r) };
-        forward_sweep(rows, r, z);
-        residual_after_forward(rows, z, &mut work.levels[finest][1]);
-        self.v_cycle(work);
-        for (z, e) in z.iter_mut().zip(&work.levels[finest][0]) {
-            *z += e;
+    /// Pᵀ A P for the first `n_coarse` unknowns; parents may be of the same level, so the rows of P are built in order.
+    fn projected(&self, a: &Matrix, n_coarse: usize) -> Matrix {
+        let n = a.rows();
+        let mut rows: Vec<Vec<(u32, f64)>> = (0..n_coarse as u32).map(|i| vec![(i, 1.0)]).collect();
+        for Interpolation { parents, weights } in &self.interpolation[n_coarse..n] {
+            let mut row: Vec<(u32, f64)> = Vec::with_capacity(2);
+            for k in (0..2).filter(|&k| weights[k] != 0.0) {
+                for &(j, v) in &rows[parents[k] as usize] {
+                    match row.iter_mut().find(|entry| entry.0 == j) {
+                        Some(entry) => entry.1 += weights[k] * v,
+                        None => row.push((j, weights[k] * v)),
+                    }
+                }
+            }
+            row.sort_unstable_by_key(|entry| entry.0);
+            rows.push(row);
         }
-        backward_sweep(rows, r, z);
+        let mut start = vec![0];
+        let (mut columns, mut values) = (Vec::with_capacity(2 * n), Vec::with_capacity(2 * n));
+        for row in &rows {
+            columns.extend(row.iter().map(|entry| entry.0));
+            values.extend(row.iter().map(|entry| entry.1));
+            start.push(columns.len());
+        }
+        let prolongation = Matrix::new((n, n_coarse), start, columns, values);
+        let transposed = prolongation.transpose_view().to_csr();
+        &transposed * &(a * &prolongation)
+    }
+
+    /// Room for one V-cycle with the present levels.
+    fn fit(&self, work: &mut Workspace) {
+        work.levels.resize_with(self.sizes.len(), Default::default);
+        for (vectors, &n) in work.levels.iter_mut().zip(&self.sizes) {
+            vectors.iter_mut().for_each(|v| v.resize(n, 0.0));
+        }
     }
 
     /// One V-cycle for the finest level's right-hand side.
     fn v_cycle(&self, work: &mut Workspace) {
-        let Workspace { levels, transfer } = work;
+        let Workspace { levels, transfer, .. } = work;
         for level in (1..self.sizes.len()).rev() {
             let (coarser, finer) = levels.split_at_mut(level);
-            let [x, b] = &mut finer[0];
-            let rows = Rows::of(&self.levels[level - 1]);
-            forward_sweep(rows, b, x);
+            let [x, b, _] = &mut finer[0];
+            let matrix = &self.levels[level - 1];
+            matrix.forward_from_zero(b, x);
             transfer.resize(x.len(), 0.0);
-            residual_after_forward(rows, x, transfer);
+            matrix.residual_after_forward(x, transfer);
             restrict(&self.interpolation, self.sizes[level - 1], transfer);
             coarser[level - 1][1].copy_from_slice(&transfer[..self.sizes[level - 1]]);
         }
         if let Some(coarse) = &self.coarse {
-            let [x, b] = &mut levels[0];
+            let [x, b, _] = &mut levels[0];
             coarse.solve(b, x);
         }
         for level in 1..self.sizes.len() {
             let (coarser, finer) = levels.split_at_mut(level);
-            let [x, b] = &mut finer[0];
+            let [x, b, rest] = &mut finer[0];
             transfer.clear();
             transfer.extend_from_slice(&coarser[level - 1][0]);
             prolong(&self.interpolation, x.len(), transfer);
             for (x, e) in x.iter_mut().zip(transfer.iter()) {
                 *x += e;
             }
-            backward_sweep(Rows::of(&self.levels[level - 1]), b, x);
+            self.levels[level - 1].backward(b, x, rest);
         }
     }
 }
 
-/// Gauss–Seidel from zero, first row to last.
-fn forward_sweep(rows: Rows, b: &[f64], x: &mut [f64]) {
-    for i in 0..rows.n_rows() {
-        let (columns, values) = rows.row(i);
-        let mut sum = b[i];
-        for (&j, v) in columns.iter().zip(values) {
-            let j = j as usize;
-            if j < i {
-                sum -= v * x[j];
-            } else {
-                // Columns are sorted: the first one not below i is the diagonal.
-                x[i] = sum / v;
-                break;
-            }
-        }
+/// A matrix whose leading block is the finest level of a hierarchy: what conjugate gradients work on.
+pub struct Multilevel<'a> {
+    matrix: &'a Swept,
+    hierarchy: &'a Hierarchy,
+    work: &'a mut Workspace,
+}
+
+impl<'a> Multilevel<'a> {
+    /// Fits the workspace to the hierarchy.
+    pub fn new(
+        matrix: &'a Swept,
+        hierarchy: &'a Hierarchy,
+        work: &'a mut Workspace,
+    ) -> Multilevel<'a> {
+        hierarchy.fit(work);
+        Multilevel { matrix, hierarchy, work }
+    }
+
+    /// Solves A x = b from the start value in `x`; `scale` as in [`conjugate_gradients`].
+    pub fn solve(
+        &mut self,
+        b: &[f64],
+        x: &mut [f64],
+        stop: &Stop,
+        scale: f64,
+    ) -> Result<Convergence, CgError> {
+        let mut vectors = std::mem::take(&mut self.work.vectors);
+        let result = conjugate_gradients(self, b, x, stop, scale, &mut vectors);
+        self.work.vectors = vectors;
+        result
     }
 }
 
-/// Residual of the leading rows after a forward sweep from zero: −(strict upper part)·x.
-fn residual_after_forward(rows: Rows, x: &[f64], residual: &mut [f64]) {
-    for (i, residual) in residual.iter_mut().enumerate() {
-        let (columns, values) = rows.row(i);
-        let mut sum = 0.0;
-        for (&j, v) in columns.iter().zip(values).rev() {
-            if j as usize <= i {
-                break;
-            }
-            sum -= v * x[j as usize];
-        }
-        *residual = sum;
+impl Operator for Multilevel<'_> {
+    fn multiply(&mut self, x: &[f64], y: &mut [f64]) {
+        self.matrix.multiply(x, y);
     }
-}
 
-/// Gauss–Seidel from x, last row to first.
-fn backward_sweep(rows: Rows, b: &[f64], x: &mut [f64]) {
-    for i in (0..rows.n_rows()).rev() {
-        let (columns, values) = rows.row(i);
-        let (mut sum, mut diagonal) = (b[i], 1.0);
-        for (&j, v) in columns.iter().zip(values) {
-            if j as usize == i {
-                diagonal = *v;
-            } else {
-                sum -= v * x[j as usize];
+    fn precondition(&mut self, r: &[f64], z: &mut [f64], az: &mut [f64]) {
+        self.matrix.forward_from_zero(r, z);
+        if let Some(finest) = self.hierarchy.sizes.len().checked_sub(1) {
+            self.matrix.residual_after_forward(z, &mut self.work.levels[finest][1]);
+            self.hierarchy.v_cycle(self.work);
+            for (z, e) in z.iter_mut().zip(&self.work.levels[finest][0]) {
+                *z += e;
             }
         }
-        x[i] = sum / diagonal;
+        self.matrix.backward(r, z, az);
+        self.matrix.add_lower(z, az);
     }
 }
 
@@ -198,37 +242,19 @@ fn prolong(interpolation: &[Interpolation], n: usize, v: &mut Vec<f64>) {
     }
 }
 
-/// Leading n × n block.
-fn leading_block(a: &Matrix, n: usize) -> Matrix {
-    let rows = Rows::of(a);
-    let (mut start, mut columns, mut values) = (vec![0usize], Vec::new(), Vec::new());
-    start.reserve(n);
-    for i in 0..n {
-        let (cols, vals) = rows.row(i);
-        let keep = cols.partition_point(|&j| (j as usize) < n);
-        columns.extend_from_slice(&cols[..keep]);
-        values.extend_from_slice(&vals[..keep]);
-        start.push(columns.len());
-    }
-    Matrix::new((n, n), start, columns, values)
-}
-
 impl Coarse {
-    /// Factorises the leading block in reverse Cuthill–McKee order (the library's Cholesky keeps the given order).
+    /// Factorises the leading block by nested dissection (the library's Cholesky keeps the given order).
     fn new(matrix: &Matrix, size: usize) -> Option<Coarse> {
         let block = leading_block(matrix, size);
-        let order: Vec<usize> =
-            reverse_cuthill_mckee(block.view()).perm.vec().iter().map(|&i| i as usize).collect();
+        let order = nested_dissection(&block);
         let mut position = vec![0; size];
         for (new, &old) in order.iter().enumerate() {
             position[old] = new;
         }
         let mut triplets = CooMatrix::new(size, size);
-        let rows = Rows::of(&block);
-        for i in 0..size {
-            let (columns, values) = rows.row(i);
-            for (&j, &v) in columns.iter().zip(values) {
-                triplets.push(position[i], position[j as usize], v);
+        for (i, row) in block.outer_iterator().enumerate() {
+            for (j, &v) in row.iter() {
+                triplets.push(position[i], position[j], v);
             }
         }
         let factor = CscCholesky::factor(&CscMatrix::from(&triplets)).ok()?;
@@ -241,5 +267,52 @@ impl Coarse {
         for (new, &old) in self.order.iter().enumerate() {
             x[old] = permuted[(new, 0)];
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Stiffness of a string of n unknowns between fixed ends, by hats on a path of equal steps.
+    fn string(n: usize, order: &[usize]) -> Matrix {
+        let mut dense = vec![vec![0.0; n]; n];
+        for k in 0..n {
+            dense[order[k]][order[k]] += 2.0 * (n + 1) as f64;
+            if k + 1 < n {
+                dense[order[k]][order[k + 1]] -= (n + 1) as f64;
+                dense[order[k + 1]][order[k]] -= (n + 1) as f64;
+            }
+        }
+        let (mut start, mut columns, mut values) = (vec![0], vec![], vec![]);
+        for row in &dense {
+            for (j, v) in row.iter().enumerate().filter(|(_, v)| **v != 0.0) {
+                columns.push(j as u32);
+                values.push(*v);
+            }
+            start.push(columns.len());
+        }
+        Matrix::new((n, n), start, columns, values)
+    }
+
+    #[test]
+    fn a_projected_string_is_the_string_of_half_the_unknowns() {
+        // Three coarse unknowns in order, then the four midpoints: path 3 0 4 1 5 2 6.
+        let half = |a: u32, b: u32| Interpolation { parents: [a, b], weights: [0.5, 0.5] };
+        let end = |a: u32| Interpolation { parents: [a, 0], weights: [0.5, 0.0] };
+        let none = Interpolation::default();
+        let interpolation = vec![none, none, none, end(0), half(0, 1), half(1, 2), end(2)];
+        let mut hierarchy = Hierarchy::default();
+        assert!(hierarchy.set_level(&string(3, &[0, 1, 2]), 3, &interpolation));
+        let fine = string(7, &[3, 0, 4, 1, 5, 2, 6]);
+        assert!(hierarchy.set_level(&fine, 7, &interpolation));
+        let projected = hierarchy.projected(&fine, 3);
+        let wanted = string(3, &[0, 1, 2]);
+        for (i, row) in wanted.outer_iterator().enumerate() {
+            for (j, v) in row.iter() {
+                assert!((projected.get(i, j).unwrap() - v).abs() < 1e-12);
+            }
+        }
+        assert!(hierarchy.renew(&fine));
     }
 }

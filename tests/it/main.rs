@@ -1,9 +1,19 @@
 //! Integration tests, one binary: text in, text out.
-#![allow(clippy::unwrap_used)]
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod architecture;
+mod cases;
 mod cli;
+mod forces;
+mod guarantee;
+mod hot_spots;
+mod joint;
+mod ledger;
 mod messages;
 mod mutations;
+mod points;
+mod rates;
+mod saturation;
 mod sheets;
 mod tidy;
+mod vtk_reader;

@@ -30,7 +30,8 @@ pub fn all() -> Vec<(String, String)> {
     sheets
 }
 
-fn sheet(name: &str, text: &str) -> Sheet {
+/// Reads a sheet that has no mistakes.
+pub fn sheet(name: &str, text: &str) -> Sheet {
     let read_file = |path: &str| fs::read_to_string(meshes().join(path)).map_err(|e| e.to_string());
     read(text, name, &read_file).unwrap_or_else(|diagnostics| {
         let messages: String = diagnostics.iter().map(|d| render(d, text, false)).collect();

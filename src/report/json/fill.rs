@@ -3,10 +3,10 @@
 use super::{
     BoundedQuantity, EstimateEntry, Exceeded, FluxLinkage, GapEntry, GapFactors, HotSpotEntry,
     LedgerEntry, PartEntry, ProbeEntry, ProbePointEntry, Quantity, RequireEntry, ResultFile,
-    RoundEntry, TimingEntry, WindingEntry,
+    RippleCurrentEntry, RippleEntry, RipplePartEntry, RoundEntry, TimingEntry, WindingEntry,
 };
 use crate::report::{StageTimes, shortfall};
-use crate::results::{Guaranteed, LedgerRow, PartResult, Results};
+use crate::results::{Guaranteed, LedgerRow, PartResult, RequirementResult, Results, RippleResult};
 
 impl BoundedQuantity {
     fn new(quantity: &Guaranteed, unit: &'static str) -> BoundedQuantity {
@@ -34,6 +34,7 @@ impl ResultFile {
             incremental_inductance: results
                 .incremental_inductance
                 .map(|value| Quantity { value, unit: "H" }),
+            estimated_error: results.estimated_error,
             coenergy: BoundedQuantity::new(&results.coenergy, "J"),
             energy: Quantity { value: results.energy, unit: "J" },
             windings: windings(results),
@@ -41,9 +42,10 @@ impl ResultFile {
             gap_factors: gap_factors(results),
             hot_spots: hot_spots(results),
             parts: results.parts.iter().map(PartEntry::from_part).collect(),
+            ripple: results.ripple.as_ref().map(RippleEntry::from_ripple),
             probes: probes(results),
             estimate: estimate(results),
-            require: requirements(results),
+            require: require_entries(&results.requirements),
             losses: None,
             notes: shortfall(results).into_iter().chain(results.notes.iter().cloned()).collect(),
             timings: times.map(|t| {
@@ -53,6 +55,22 @@ impl ResultFile {
                     .collect()
             }),
         }
+    }
+}
+
+impl RippleEntry {
+    fn from_ripple(ripple: &RippleResult) -> RippleEntry {
+        let windings = ripple.currents.iter().map(|c| RippleCurrentEntry {
+            name: c.winding.clone(),
+            trough: c.trough,
+            peak: c.peak,
+        });
+        let parts = ripple.parts.iter().map(|p| RipplePartEntry {
+            name: p.name.clone(),
+            swing: p.swing,
+            peak: p.peak,
+        });
+        RippleEntry { windings: windings.collect(), parts: parts.collect() }
     }
 }
 
@@ -144,7 +162,7 @@ fn estimate(results: &Results) -> Option<EstimateEntry> {
     })
 }
 
-fn requirements(results: &Results) -> Vec<RequireEntry> {
+pub(in crate::report) fn require_entries(requirements: &[RequirementResult]) -> Vec<RequireEntry> {
     let entry = |r: &crate::results::RequirementResult| RequireEntry {
         winding: r.winding.clone(),
         current: r.current,
@@ -152,7 +170,10 @@ fn requirements(results: &Results) -> Vec<RequireEntry> {
         least: r.least,
         most: r.most,
         inductance: r.inductance,
+        low: r.ends.map(|e| e[0]),
+        high: r.ends.map(|e| e[1]),
         met: r.met,
+        certain: r.is_certain,
     };
-    results.requirements.iter().map(entry).collect()
+    requirements.iter().map(entry).collect()
 }

@@ -2,9 +2,9 @@
 
 use super::{GOOD, Look, NAME_WIDTH, WARN, WIDTH, paint, push};
 use crate::report::numbers::{
-    best_value, clip, decimals_for, grouped, interval, percent, relative_width, signed, wrap,
+    clip, decimals_for, grouped, interval, percent, relative_width, signed, wrap,
 };
-use crate::results::{Results, Verdict, WindingResult};
+use crate::results::{Guaranteed, Results, Verdict, WindingResult};
 use crate::units::engineering;
 
 /// Width of the left column of the answer.
@@ -31,12 +31,10 @@ pub(super) fn answer(text: &mut String, results: &Results, look: &Look) {
         [("A_L", &results.inductance_factor), ("inductance", &results.inductance)]
     {
         let Some(quantity) = quantity else { continue };
-        let (mut value, mut ends) = bounded(quantity, "H");
-        if !results.is_linear {
-            // The ends of a slope of the coenergy are far wider apart than the error of its best value.
-            value = best_value(quantity, "H", relative_width(&results.coenergy));
-            ends = format!("best value; {ends}");
-        }
+        let (value, ends) = match results.estimated_error {
+            Some(error) => estimated(quantity, error),
+            None => bounded(quantity, "H"),
+        };
         answer_line(text, label, &value, &ends);
     }
     if let (false, Some(slope)) = (results.is_linear, results.incremental_inductance) {
@@ -63,6 +61,23 @@ pub(super) fn answer(text: &mut String, results: &Results, look: &Look) {
         requirement_line(text, requirement, look);
     }
     push(text, &format!("  {}", work(results, look)));
+}
+
+/// Best value of a saturating core's inductance with its estimated error, apart from the guaranteed ends.
+fn estimated(quantity: &Guaranteed, error: f64) -> (String, String) {
+    // One digit beyond the estimated error: 1e-4 leaves 5 of them.
+    let n_digits = (1.0 - error.log10().floor()).clamp(3.0, 7.0) as usize;
+    let ends = interval(quantity, "H");
+    let unit = ends.value.rsplit(' ').next().unwrap_or("H").to_string();
+    (
+        engineering(quantity.value, "H", n_digits),
+        format!(
+            "best value, error about {} (estimated); surely between {} and {}\u{a0}{unit}",
+            percent(error, 1).replace(' ', "\u{a0}"),
+            ends.low,
+            ends.high
+        ),
+    )
 }
 
 /// "2 852 unknowns, 7 rounds, 0.06 s".
@@ -103,12 +118,10 @@ fn verdict_lines(text: &mut String, results: &Results, verdict: &Verdict, look: 
     }
 }
 
-/// Relative width that the inductance is known to: its interval, or the coenergy's where only that is bounded tightly.
+/// Relative width that the inductance is known to: its interval, or the estimated error of a saturating core's.
 fn certainty(results: &Results) -> f64 {
-    match &results.inductance {
-        Some(inductance) if results.is_linear => relative_width(inductance),
-        _ => relative_width(&results.coenergy),
-    }
+    let width = results.inductance.as_ref().unwrap_or(&results.coenergy);
+    results.estimated_error.unwrap_or_else(|| relative_width(width))
 }
 
 /// "0.9 % low": no digit that the interval's width leaves open, two at most.
@@ -124,7 +137,7 @@ fn deviation(deviation: f64, width: f64) -> String {
     format!("{text} % {}", if deviation < 0.0 { "low" } else { "high" })
 }
 
-fn requirement_line(
+pub(in crate::report) fn requirement_line(
     text: &mut String,
     requirement: &crate::results::RequirementResult,
     look: &Look,
@@ -140,10 +153,11 @@ fn requirement_line(
             .collect();
     let (verdict, code) = if requirement.met { ("kept", GOOD) } else { ("broken", WARN) };
     let rest = format!(
-        "{kind}, {} at {}: wanted {}, {verdict}",
+        "{kind}, {} at {}: wanted {}, {verdict}{}",
         clip(&requirement.winding, NAME_WIDTH),
         engineering(requirement.current, "A", 3),
-        limits.join(" and ")
+        limits.join(" and "),
+        if requirement.is_certain { " surely" } else { " by the best value" }
     );
     answer_line(text, "requirement", &engineering(requirement.inductance, "H", 4), &rest);
     if look.colour

@@ -2,7 +2,7 @@
 
 use super::{Look, NAME_WIDTH, WIDTH, heading, push, push_table};
 use crate::report::numbers::{clip, decimals_for, percent, signed, wrap};
-use crate::results::Results;
+use crate::results::{Results, RipplePart};
 use crate::units::engineering;
 
 pub(super) fn ledger(text: &mut String, results: &Results, look: &Look) {
@@ -142,4 +142,29 @@ pub(super) fn parts(text: &mut String, results: &Results, look: &Look) {
         .collect();
     let header = ["", "1 %", "5 %", "50 %", "room to the knee"];
     push_table(text, &header[..4 + usize::from(has_knee)], &rows);
+}
+
+pub(super) fn ripple(text: &mut String, results: &Results, look: &Look) {
+    let Some(ripple) = &results.ripple else { return };
+    heading(text, "Ripple: swing of the flux density, and its peak, in 5 % of each part", look);
+    for current in &ripple.currents {
+        push(
+            text,
+            &format!(
+                "  {} swings between {} and {}",
+                clip(&current.winding, NAME_WIDTH),
+                engineering(current.trough, "A", 3),
+                engineering(current.peak, "A", 3)
+            ),
+        );
+    }
+    let row = |part: &RipplePart| {
+        vec![
+            clip(&part.name, NAME_WIDTH),
+            engineering(part.swing, "T", 3),
+            engineering(part.peak, "T", 3),
+        ]
+    };
+    let rows: Vec<Vec<String>> = ripple.parts.iter().map(row).collect();
+    push_table(text, &["", "swing", "peak"], &rows);
 }

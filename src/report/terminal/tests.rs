@@ -14,7 +14,7 @@ fn the_screen_answers_first() {
           your figure   700.0 µH        0.1 % low, inside your ±3 %
                         the post gap carries most of the difference
           requirement   700.6 µH        apparent, main at 2.50 A: wanted at least
-                                        650.0 µH, kept
+                                        650.0 µH, kept surely
           2 852 unknowns, 3 rounds, 0.06 s
 
         Where the reluctance sits, in 1/µH
@@ -45,6 +45,11 @@ fn the_screen_answers_first() {
         Flux density exceeded by a share of each part's volume
                    1 %     5 %    50 %  room to the knee
           post  410 mT  380 mT  360 mT              21 %
+
+        Ripple: swing of the flux density, and its peak, in 5 % of each part
+          main swings between 1.50 A and 2.10 A
+                 swing    peak
+          post  120 mT  440 mT
 
         Notes
           · the corner at r = 5.75 mm, z = 5.5 mm is sharp: the flux density there is an

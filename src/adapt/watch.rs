@@ -1,0 +1,90 @@
+//! Places where the field itself is wanted, not only the energy: probes, and the hottest spots of the cores.
+//!
+//! The rounds refine where the energy's error sits. A probe on the axis or far outside, and the corner of a permeable core,
+//! hold next to none of it, so they ask for their own triangles.
+
+use super::Outcome;
+use crate::fem::Reluctivity;
+use crate::fem::evaluate::{find, flux_density, locate, to_chart};
+use crate::fem::element::Frame;
+use crate::fem::moments::linear_energy;
+use crate::mesh::Chart;
+use crate::mesh::fans::edge_triangles;
+use crate::model::{Model, Point};
+use crate::units::{MU0, Meter};
+use std::f64::consts::TAU;
+
+/// Share of a triangle's own energy that the interval may have in a probe's triangle: about (δB/B)², so 0.3 % of B.
+const PROBE_SHARE: f64 = 1e-5;
+/// Core triangles that a round cuts because they are the hottest and wider than the averaging disc.
+const N_HOT: usize = 8;
+/// Relative permeability above which a region counts as core.
+const CORE_PERMEABILITY: f64 = 2.0;
+
+/// What to watch; nothing by default.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Watch {
+    /// Probe points [m].
+    pub probes: Vec<Point>,
+    /// Radius of the hot spots' averaging disc [m]; 0 for none.
+    pub spot_radius: Meter,
+}
+
+impl Watch {
+    /// All probe points of a model and its averaging disc.
+    pub fn of(model: &Model) -> Watch {
+        let points = model.probes.iter().flat_map(|probe| probe.points());
+        Watch { probes: points.collect(), spot_radius: if model.hot_spots.count == 0 { 0.0 } else { model.hot_spots.averaging } }
+    }
+}
+
+/// The hottest core triangles that are still wider than the averaging disc.
+pub fn hot_triangles(outcome: &Outcome) -> Vec<u32> {
+    let (mesh, radius) = (&outcome.mesh, outcome.watch.spot_radius);
+    if radius <= 0.0 {
+        return Vec::new();
+    }
+    let is_core = |t: usize| match &outcome.coefficients.reluctivity[mesh.regions[t].0 as usize] {
+        Reluctivity::Constant(nu) => nu * MU0 * CORE_PERMEABILITY < 1.0,
+        Reluctivity::Saturating(_) => true,
+    };
+    let mut hot: Vec<(f64, u32)> = (0..mesh.triangles.len())
+        .filter(|&t| mesh.charts[t] == Chart::Inside && is_core(t))
+        .filter_map(|t| {
+            let frame = Frame::new(mesh, t);
+            // Twice the area against the square of the radius: wider than the disc.
+            (radius * radius < frame.det_abs).then(|| {
+                let gradients = outcome.solution.gradients(mesh, t);
+                let b = flux_density(&frame, &gradients, &[1.0 / 3.0; 3]);
+                (b[0] * b[0] + b[1] * b[1], t as u32)
+            })
+        })
+        .collect();
+    hot.sort_by(|a, b| b.0.total_cmp(&a.0).then(a.1.cmp(&b.1)));
+    hot.into_iter().take(N_HOT).map(|(_, t)| t).collect()
+}
+
+/// Triangles of probes whose own error is still too large.
+pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
+    let mesh = &outcome.mesh;
+    if outcome.watch.probes.is_empty() {
+        return Vec::new();
+    }
+    let pairs = edge_triangles(mesh);
+    let mut marked = Vec::new();
+    let mut last: Option<usize> = None;
+    for &at in &outcome.watch.probes {
+        let (chart, position) = to_chart(mesh, at);
+        // Points of a line are neighbours: walk on from the last one.
+        let near = last.filter(|&t| mesh.charts[t] == chart).and_then(|t| locate(mesh, &pairs, t, position));
+        let Some((t, _)) = near.or_else(|| find(mesh, &pairs, chart, position)) else { continue };
+        last = Some(t);
+        let energy = TAU * linear_energy(&outcome.elements[t].k, &outcome.solution.gradients(mesh, t));
+        if PROBE_SHARE * energy < outcome.bound.shares[t] {
+            marked.push(t as u32);
+        }
+    }
+    marked.sort_unstable();
+    marked.dedup();
+    marked
+}

@@ -1,0 +1,62 @@
+//! The command `saturate`: inductance against current, from the sheet to files and screen.
+
+use super::options::SaturateOptions;
+use super::{End, Stop, files, screen, sheet};
+use gapwright::adapt::AdaptError;
+use gapwright::mesh::MeshError;
+use gapwright::report::saturate::{saturate_csv, saturate_json, saturate_screen, saturate_svg};
+use gapwright::report::terminal::Look;
+use gapwright::study::StudyError;
+use gapwright::study::saturate::{self as study, Saturation, Wish};
+use std::time::Instant;
+
+/// Runs `saturate`.
+pub fn saturate(options: &SaturateOptions) -> Result<End, Stop> {
+    let start = Instant::now();
+    let common = &options.common;
+    let (sheet, outline) = sheet::read(common)?;
+    let wish = Wish { to: options.to, n_points: usize::from(options.points) };
+    let mut progress = screen::Progress::new(common.quiet || common.json);
+    let found = study::saturate(&sheet.model, &outline, &wish, &mut |done, wanted| {
+        progress.point(done, wanted);
+    });
+    drop(progress);
+    let found = found.map_err(stop)?;
+    let seconds = start.elapsed().as_secs_f64();
+
+    let out = files::directory(&common.sheet, common.out.as_deref());
+    if !common.json || common.out.is_some() {
+        let finished = [
+            ("saturate.csv", saturate_csv(&found).into_bytes()),
+            ("saturate.json", saturate_json(&found).into_bytes()),
+            ("saturate.svg", saturate_svg(&found).into_bytes()),
+        ];
+        files::write_all(&out, &finished)?;
+    }
+    if common.json {
+        screen::print(&saturate_json(&found))?;
+    } else if !common.quiet {
+        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: None };
+        screen::print(&saturate_screen(&found, &look))?;
+        screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
+    }
+    Ok(end_of(&found))
+}
+
+fn stop(error: StudyError) -> Stop {
+    let end = match error {
+        StudyError::NoCurrent | StudyError::Adapt(AdaptError::Mesh(MeshError::TooFine { .. })) => {
+            End::InputWrong
+        }
+        _ => End::NotReached,
+    };
+    Stop::new(end, format!("no table: {error}"))
+}
+
+fn end_of(found: &Saturation) -> End {
+    match (found.reached, found.requirements.iter().all(|r| r.met)) {
+        (false, _) => End::NotReached,
+        (true, false) => End::NotMet,
+        (true, true) => End::Done,
+    }
+}
