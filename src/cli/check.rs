@@ -38,14 +38,13 @@ fn understood(model: &Model) -> Understood {
             Understood { effective, notes: vec![reason.to_string()], ..Understood::default() }
         }
         Ok(sum) => {
-            let iron = sum.rows.iter().filter(|row| matches!(row.kind, RegionKind::Leg(_)));
-            let closed: f64 = iron.map(|row| row.plain).sum();
             let gaps = sum.rows.iter().filter(|row| matches!(row.kind, RegionKind::Gap { .. }));
             Understood {
                 effective,
-                ungapped_inductance_factor: Some(1.0 / closed),
+                ungapped_inductance_factor: Some(sum.closed_inductance_factor()),
                 gaps: gaps.map(|row| (row.region.clone(), row.plain)).collect(),
                 hand_inductance_factor: Some(1.0 / sum.total),
+                gap_correction: Some(sum.correction),
                 notes: sum
                     .left_out
                     .iter()

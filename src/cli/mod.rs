@@ -11,6 +11,7 @@ mod sheet;
 mod solve;
 
 use clap::Parser;
+use clap::error::ErrorKind;
 use options::{Command, Options};
 use std::process::ExitCode;
 
@@ -56,7 +57,10 @@ pub fn run() -> ExitCode {
         ));
         std::process::exit(FAULT_INSIDE);
     }));
-    let arguments = options::Arguments::parse();
+    let arguments = match options::Arguments::try_parse() {
+        Ok(arguments) => arguments,
+        Err(reply) => return answered(&reply),
+    };
     let end = match dispatch(&arguments.command) {
         Ok(end) => end,
         Err(stop) => {
@@ -64,6 +68,19 @@ pub fn run() -> ExitCode {
             stop.end
         }
     };
+    ExitCode::from(end as u8)
+}
+
+/// Prints what the parser has to say: help and version on stdout, mistakes like all other mistakes of the user.
+fn answered(reply: &clap::Error) -> ExitCode {
+    // Help without a command is asked for by mistake: clap then writes to stderr, and nothing needs to be named wrong.
+    if !reply.use_stderr() || reply.kind() == ErrorKind::DisplayHelpOnMissingArgumentOrSubcommand {
+        let _ = reply.print();
+    } else {
+        let text = reply.render().to_string();
+        screen::complain(&format!("gapwright: {}", text.strip_prefix("error: ").unwrap_or(&text)));
+    }
+    let end = if reply.use_stderr() { End::InputWrong } else { End::Done };
     ExitCode::from(end as u8)
 }
 

@@ -6,21 +6,28 @@ use std::path::PathBuf;
 
 /// Inductance of gapped round cores and coils, from the solved field, with a guaranteed interval.
 #[derive(Debug, Parser)]
-#[command(version, about, after_help = EXIT_CODES, max_term_width = 80)]
+#[command(version, after_help = EXIT_CODES, max_term_width = 80)]
 pub struct Arguments {
     #[command(subcommand)]
     pub command: Command,
 }
 
-const EXIT_CODES: &str = "Exit codes: 0 done; 1 an estimate or a requirement is not met; 2 the input is wrong; \
-3 the interval was not reached (results are written and say so); 4 a file could not be written.";
+const EXIT_CODES: &str = "\
+Example: gapwright solve choke.toml --interval 0.01%
+
+Exit codes:
+  0  done
+  1  done, but the estimate or a requirement is not met
+  2  the sheet or the arguments are wrong
+  3  the interval was not reached; the results are written and say so
+  4  a file could not be written";
 
 /// What to do with the sheet.
 #[derive(Debug, Subcommand)]
 pub enum Command {
-    /// Read the sheet, say what was understood, draw the section
+    /// Read the sheet, say what was understood and draw the section; no field
     Check(Options),
-    /// Solve the field: A_L, inductance, ledger, gap factors, hot spots, pictures
+    /// Solve the field: A_L and inductance with their interval, gaps, hot spots, pictures
     Solve(Options),
     /// Inductance against current: table, knee, currents at which the inductance has fallen
     Saturate(SaturateOptions),
@@ -52,7 +59,7 @@ impl Command {
 /// Options of every command.
 #[derive(Debug, Clone, Args)]
 pub struct Options {
-    /// The sheet: a TOML file with core, gaps and windings
+    /// The sheet: a TOML file that describes core, gaps and windings
     pub sheet: PathBuf,
     /// Where to write the files [default: the sheet's name with .out, beside it]
     #[arg(long, value_name = "DIR")]
@@ -60,22 +67,22 @@ pub struct Options {
     /// Print the result as JSON and nothing else; files only with --out
     #[arg(long)]
     pub json: bool,
-    /// Wanted width of the interval, instead of the sheet's
+    /// Widest interval that will do, such as 0.01%, instead of the sheet's
     #[arg(long, value_name = "WIDTH", value_parser = interval)]
     pub interval: Option<f64>,
-    /// Threads to compute with [default: one a core]
+    /// Threads to compute with [default: one per processor]
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=1024))]
     pub threads: Option<u16>,
-    /// Print nothing but mistakes; files are written
+    /// Print mistakes only; the files are written all the same
     #[arg(long)]
     pub quiet: bool,
-    /// Add the rounds and the stage times
+    /// Add the rounds and the time of every stage
     #[arg(long)]
     pub timings: bool,
-    /// Another B-H table for a material, for this run
+    /// Another B-H table for a material of the sheet; may be repeated
     #[arg(long, value_name = "NAME=FILE.csv", value_parser = material)]
     pub material: Vec<(String, PathBuf)>,
-    /// Draw the full section in field.svg
+    /// Draw both halves of the section in field.svg
     #[arg(long)]
     pub mirror: bool,
 }

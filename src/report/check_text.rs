@@ -1,7 +1,9 @@
 //! What `check` says: the sheet's dimensions, turns and materials read back, and the hand sum's figures.
 
 use super::numbers::{clip, millimeters, percent, wrap};
-use crate::model::{Across, Law, Model, Winding};
+use crate::model::{
+    Across, Claim, Estimate, GapCorrection, InductanceKind, Law, Model, Requirement, Winding,
+};
 use crate::results::hand::Effective;
 use crate::units::{Henry, PerHenry};
 use crate::units::{engineering, number};
@@ -18,6 +20,8 @@ pub struct Understood {
     pub gaps: Vec<(String, PerHenry)>,
     /// A_L of the whole hand sum with its gap correction [H].
     pub hand_inductance_factor: Option<Henry>,
+    /// The correction that its gaps have.
+    pub gap_correction: Option<GapCorrection>,
     /// Remarks that do not stop a run.
     pub notes: Vec<String>,
 }
@@ -33,9 +37,8 @@ pub fn check_screen(model: &Model, understood: &Understood) -> String {
     for line in wrap(&model.title, WIDTH) {
         text.push_str(&format!("{line}\n"));
     }
-    text.push_str(
-        "  Read and found in order. Lengths in mm, r from the axis, z from the middle.\n",
-    );
+    let origin = if model.core.is_some() { ", z from the core's middle" } else { "" };
+    text.push_str(&format!("  No mistakes found. Lengths in mm, r from the axis{origin}.\n"));
     materials(&mut text, model);
     core(&mut text, model);
     gaps(&mut text, model, understood);
@@ -163,7 +166,7 @@ fn gaps(text: &mut String, model: &Model, understood: &Understood) {
         line(text, &gap.name, &format!("{} {across}{center}", millimeters(gap.length)));
     }
     for (name, reluctance) in &understood.gaps {
-        let plain = format!("{} 1/µH", number(1e-6 * reluctance, 4));
+        let plain = format!("{} /µH", number(1e-6 * reluctance, 4));
         line(text, &format!("l/(µ0 A) of {}", clip(name, 11)), &plain);
     }
 }
@@ -231,13 +234,37 @@ fn hand_sum(text: &mut String, understood: &Understood) {
         line(text, "A_L without any gap", &engineering(factor, "H", 4));
     }
     if let Some(factor) = understood.hand_inductance_factor {
-        line(text, "A_L of the hand sum", &engineering(factor, "H", 4));
+        let correction = understood.gap_correction.filter(|_| !understood.gaps.is_empty());
+        let correction = correction
+            .map_or(String::new(), |c| format!(", gap correction: {}", correction_name(c)));
+        line(text, "A_L of the hand sum", &format!("{}{correction}", engineering(factor, "H", 4)));
+    }
+}
+
+/// What the sheet calls a correction.
+fn correction_name(correction: GapCorrection) -> String {
+    match correction {
+        GapCorrection::None => "none".to_string(),
+        GapCorrection::OneGapLength => "one gap length".to_string(),
+        GapCorrection::Log => "log".to_string(),
+        GapCorrection::Corner => "corner".to_string(),
+        GapCorrection::Roters => "roters".to_string(),
+        GapCorrection::Factor(factor) => format!("factor {factor}"),
     }
 }
 
 fn wishes(text: &mut String, model: &Model) {
     text.push_str("\nAsked for\n");
-    line(text, "interval", &format!("{} wide at most", percent(model.accuracy.interval, 3)));
+    let is_linear = model.materials.iter().all(|m| matches!(m.law, Law::Constant { .. }));
+    let quantity = if is_linear { "inductance" } else { "coenergy" };
+    let width = percent(model.accuracy.interval, 3);
+    line(text, "interval", &format!("{width} of the {quantity} at most"));
+    if let Some(estimate) = &model.estimate {
+        line(text, "figure to be judged", &claim(estimate));
+    }
+    for requirement in &model.requirements {
+        line(text, "requirement", &promise(model, requirement));
+    }
     for probe in &model.probes {
         let at = |p: crate::model::Point| format!("r {}, z {}", millimeters(p.r), millimeters(p.z));
         let place = if probe.n_points == 1 {
@@ -249,88 +276,31 @@ fn wishes(text: &mut String, model: &Model) {
     }
 }
 
-#[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::report::fixture;
-    use expect_test::expect;
-
-    fn understood() -> Understood {
-        Understood {
-            effective: Some(Effective {
-                area_min: 80e-6,
-                area: 92e-6,
-                length: 37e-3,
-                volume: 3.4e-6,
-                c1: 400.0,
-                c2: 4.4e6,
-            }),
-            ungapped_inductance_factor: Some(6.2e-6),
-            gaps: vec![("post gap".to_string(), 2.947e6)],
-            hand_inductance_factor: Some(380e-9),
-            notes: vec![],
-        }
-    }
-
-    #[test]
-    fn the_sheet_is_read_back() {
-        expect![[r#"
-            Buoy charger choke
-              Read and found in order. Lengths in mm, r from the axis, z from the middle.
-
-            Materials
-              soft_ferrite            relative permeability 2000, constant
-
-            Core
-              post                    Ø 11.5, hole Ø 5.4
-              wall                    Ø 21.2 to Ø 25.5
-              end plates              Ø 25.5, 2.55 thick
-              window                  height 11
-              whole                   height 16.1
-
-            Gaps
-              post gap                0.3 ground out of the post
-              l/(µ0 A) of post gap    2.947 1/µH
-
-            Windings
-              main                    42 turns at 1.80 A
-                                      r 6.6 to 10.2, z −4.9 to 4.9
-
-            By hand
-              A_e                     92.00 mm²
-              l_e                     37.00 mm
-              V_e                     3400.0 mm³
-              C1                      0.4000 /mm
-              C2                      4.4000e-3 /mm³
-              A_L without any gap     6.200 µH
-              A_L of the hand sum     380.0 nH
-
-            Asked for
-              interval                0.1 % wide at most
-        "#]]
-        .assert_eq(&check_screen(&fixture::model(), &understood()));
-    }
-
-    #[test]
-    fn a_coil_without_a_core_has_no_hand_sum() {
-        let mut model = fixture::model();
-        model.core = None;
-        model.gaps.clear();
-        model.materials.clear();
-        let text = check_screen(&model, &Understood::default());
-        assert!(
-            !text.contains("By hand") && !text.contains("Core") && text.contains("42 turns"),
-            "{text}"
-        );
-    }
-
-    #[test]
-    fn long_names_leave_the_columns_in_place() {
-        let mut model = fixture::model();
-        model.windings[0].name =
-            "a winding with a very long name indeed, longer than a column".to_string();
-        for line in check_screen(&model, &understood()).lines() {
-            assert!(line.chars().count() <= 80, "{line}");
-        }
-    }
+/// "inductance 700.0 µH, ±3 %".
+fn claim(estimate: &Estimate) -> String {
+    let figure = match estimate.claim {
+        Claim::Inductance(value) => format!("inductance {}", engineering(value, "H", 4)),
+        Claim::InductanceFactor(value) => format!("A_L {}", engineering(value, "H", 4)),
+        Claim::HandSum => "the hand sum".to_string(),
+    };
+    format!("{figure}, ±{}", percent(estimate.tolerance, 3))
 }
+
+/// "main at 2.50 A: apparent inductance at least 650.0 µH".
+fn promise(model: &Model, requirement: &Requirement) -> String {
+    let winding = model.windings.get(requirement.winding).map_or("", |w| w.name.as_str());
+    let kind = match requirement.kind {
+        InductanceKind::Apparent => "apparent",
+        InductanceKind::Incremental => "incremental",
+    };
+    let limit = |word: &str, value: Option<Henry>| {
+        value.map(|v| format!("{word} {}", engineering(v, "H", 4).replace(' ', "\u{a0}")))
+    };
+    let limits = [limit("at least", requirement.least), limit("at most", requirement.most)];
+    let limits: Vec<String> = limits.into_iter().flatten().collect();
+    let current = engineering(requirement.current, "A", 3);
+    format!("{winding} at {current}: {kind} inductance {}", limits.join(" and "))
+}
+
+#[cfg(test)]
+mod tests;

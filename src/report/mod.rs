@@ -7,6 +7,7 @@ pub mod check_text;
 mod colour;
 mod contour;
 pub mod csv;
+mod dots;
 pub mod field_map;
 #[cfg(test)]
 pub(crate) mod fixture;

@@ -46,11 +46,15 @@ pub fn section_svg(model: &Model, outline: &Outline) -> String {
     let mut canvas = Canvas::new();
     shapes(&mut canvas, outline, &view);
     let axis_end = view.bottom() + 10.0;
+    let axis = [[LEFT, TOP - 14.0], [LEFT, axis_end]];
+    // A white ground keeps the dashes readable where a shape begins on the axis.
+    canvas.line(axis[0], axis[1], "stroke=\"#ffffff\" stroke-width=\"3\"");
     let dashes = format!("stroke=\"{FAINT_INK}\" stroke-dasharray=\"12 3 2 3\"");
-    canvas.line([LEFT, TOP - 12.0], [LEFT, axis_end], &dashes);
+    canvas.line(axis[0], axis[1], &dashes);
     let bottom = diameters(&mut canvas, model, outline, &view);
     heights(&mut canvas, model, outline, &view);
-    let [right, label_bottom] = names::names(&mut canvas, model, outline, &view);
+    let [right, label_bottom] =
+        names::names(&mut canvas, model, outline, &view, &extension_lines(model, outline, &view));
     let title = clip(&model.title, 60);
     canvas.text([14.0, 24.0], 15.0, Anchor::Start, "font-weight=\"bold\"", &title);
     let caption = "Half section, axis of rotation on the left; lengths in mm";
@@ -122,12 +126,12 @@ fn radii(model: &Model, view: &View) -> Vec<f64> {
 /// Draws the diameters below the section, one row each; returns the lowest edge used [px].
 fn diameters(canvas: &mut Canvas, model: &Model, outline: &Outline, view: &View) -> f64 {
     let base = view.bottom();
+    for [from, to] in extension_lines(model, outline, view) {
+        canvas.line(from, to, &thin());
+    }
     for (row, radius) in radii(model, view).into_iter().enumerate() {
         let y = base + 24.0 + ROW * row as f64;
         let x = LEFT + view.scale * radius;
-        let from =
-            TOP + view.scale * (view.z_top - lowest(outline, radius).unwrap_or(view.z_bottom));
-        canvas.line([x, from + 3.0], [x, y + 4.0], &thin());
         canvas.line([LEFT, y], [x, y], &thin());
         arrow(canvas, [x, y], [1.0, 0.0]);
         let text = format!("Ø {}", millimeters(2.0 * radius));
@@ -139,6 +143,17 @@ fn diameters(canvas: &mut Canvas, model: &Model, outline: &Outline, view: &View)
         }
     }
     base + 24.0 + ROW * radii(model, view).len() as f64
+}
+
+/// The upright lines from the section down to the rows of diameters.
+fn extension_lines(model: &Model, outline: &Outline, view: &View) -> Vec<[[f64; 2]; 2]> {
+    let line = |(row, radius): (usize, f64)| {
+        let x = LEFT + view.scale * radius;
+        let from =
+            TOP + view.scale * (view.z_top - lowest(outline, radius).unwrap_or(view.z_bottom));
+        [[x, from + 3.0], [x, view.bottom() + 28.0 + ROW * row as f64]]
+    };
+    radii(model, view).into_iter().enumerate().map(line).collect()
 }
 
 /// Lowest point of the shapes at about that radius [m].

@@ -1,6 +1,6 @@
 //! Shapes and text → SVG text. Knows pixels, not millimetres or physics.
 
-use std::fmt::Write;
+use super::dots::{DOTS, Dot, dots, push_dots, push_hundredths};
 
 /// Ink of outlines and text.
 pub(super) const INK: &str = "#22303c";
@@ -85,24 +85,39 @@ impl Canvas {
 
     /// Closed polygons as one path with the given presentation attributes.
     pub fn polygons(&mut self, polygons: &[Vec<[f64; 2]>], style: &str) {
+        self.loops(&polygons.iter().map(|p| dots(p)).collect::<Vec<_>>(), style);
+    }
+
+    /// Closed polygons of dots as one path.
+    pub fn loops(&mut self, loops: &[Vec<Dot>], style: &str) {
         let mut path = String::new();
-        for polygon in polygons {
-            push_points(&mut path, polygon);
+        for points in loops {
+            push_dots(&mut path, points);
             path.push('Z');
         }
-        if !path.is_empty() {
-            self.raw(&format!("<path d=\"{path}\" {style}/>"));
-        }
+        self.path(&path, style);
     }
 
     /// Open lines as one path.
     pub fn polylines(&mut self, lines: &[Vec<[f64; 2]>], style: &str) {
+        self.strokes(&lines.iter().map(|l| dots(l)).collect::<Vec<_>>(), style);
+    }
+
+    /// Open lines of dots as one path.
+    pub fn strokes(&mut self, lines: &[Vec<Dot>], style: &str) {
         let mut path = String::new();
-        for line in lines {
-            push_points(&mut path, line);
+        for points in lines {
+            push_dots(&mut path, points);
         }
+        self.path(&path, &format!("fill=\"none\" {style}"));
+    }
+
+    /// One path element; none for an empty path.
+    fn path(&mut self, path: &str, style: &str) {
         if !path.is_empty() {
-            self.raw(&format!("<path d=\"{path}\" fill=\"none\" {style}/>"));
+            for piece in ["<path d=\"", path, "\" ", style, "/>\n"] {
+                self.body.push_str(piece);
+            }
         }
     }
 
@@ -155,24 +170,11 @@ impl Canvas {
     }
 }
 
-/// Appends "M x y L x y …"; equal neighbours (after rounding) are dropped.
-fn push_points(path: &mut String, points: &[[f64; 2]]) {
-    let mut last = String::new();
-    for point in points {
-        let text = format!("{} {}", short(point[0]), short(point[1]));
-        if text != last {
-            // Writing into a String cannot fail.
-            let _ = write!(path, "{}{text}", if last.is_empty() { 'M' } else { 'L' });
-            last = text;
-        }
-    }
-}
-
-/// A coordinate with two decimals at most: finer than any screen, and short.
+/// A coordinate with two decimals at most.
 fn short(value: f64) -> String {
-    let mut text = format!("{value:.2}");
-    text.truncate(text.trim_end_matches('0').trim_end_matches('.').len());
-    if text == "-0" { "0".to_string() } else { text }
+    let mut text = String::new();
+    push_hundredths(&mut text, (DOTS * value).round() as i32);
+    text
 }
 
 /// Text for an XML element or attribute; characters that XML 1.0 forbids become spaces.
@@ -246,9 +248,8 @@ pub(super) mod tests {
     }
 
     #[test]
-    fn paths_are_short_and_drop_repeated_points() {
-        let mut path = String::new();
-        push_points(&mut path, &[[0.0, -0.001], [0.001, 0.0], [1.5, 2.25]]);
-        assert_eq!(path, "M0 0L1.5 2.25");
+    fn hundredths_print_as_the_shortest_decimal_fraction() {
+        let texts = [0.0, 7.0, -0.05, 120.4, -3.25, 0.004].map(short);
+        assert_eq!(texts, ["0", "7", "-0.05", "120.4", "-3.25", "0"]);
     }
 }

@@ -69,6 +69,28 @@ fn json_is_the_only_thing_on_stdout_and_no_file_appears() {
 }
 
 #[test]
+fn no_arguments_show_the_help_and_end_with_2() {
+    let output = Command::new(env!("CARGO_BIN_EXE_gapwright")).output().unwrap();
+    check_code(&output, 2);
+    let text = String::from_utf8_lossy(&output.stderr).into_owned();
+    assert!(text.contains("Usage:") && text.contains("Exit codes:"), "{text}");
+    let asked = Command::new(env!("CARGO_BIN_EXE_gapwright")).arg("--help").output().unwrap();
+    check_code(&asked, 0);
+    assert!(String::from_utf8_lossy(&asked.stdout).contains("Usage:"));
+}
+
+#[test]
+fn a_wrong_argument_is_named_like_any_other_mistake() {
+    let (_directory, sheet) = bench(CHOKE);
+    for wrong in [["solve", "--intervall"], ["solve", "--interval=wide"], ["slove", "--json"]] {
+        let output = run(&wrong, &sheet);
+        check_code(&output, 2);
+        let text = String::from_utf8_lossy(&output.stderr).into_owned();
+        assert!(text.starts_with("gapwright: ") && !text.contains("error:"), "{text}");
+    }
+}
+
+#[test]
 fn quiet_prints_nothing_and_writes_the_files() {
     let (directory, sheet) = bench(CHOKE);
     let output = run(&["solve", "--quiet"], &sheet);

@@ -43,24 +43,6 @@ fn the_legend_names_the_unit_and_the_step_of_the_flux_lines() {
 }
 
 #[test]
-fn bands_of_a_triangle_cover_it_exactly() {
-    let triangle = [([0.0, 0.0], 0.2), ([10.0, 0.0], 3.7), ([0.0, 10.0], 1.4)];
-    let area = |piece: &[([f64; 2], f64)]| -> f64 {
-        let cross = |i: usize| {
-            let (p, q) = (piece[i].0, piece[(i + 1) % piece.len()].0);
-            p[0] * q[1] - p[1] * q[0]
-        };
-        0.5 * (0..piece.len()).map(cross).sum::<f64>()
-    };
-    let whole: f64 = (0..4)
-        .map(|band| {
-            area(&keep(&keep(&triangle, f64::from(band), 1.0), f64::from(band) + 1.0, -1.0))
-        })
-        .sum();
-    assert!((whole - 50.0).abs() < 1e-12, "{whole}");
-}
-
-#[test]
 fn plain_numbers_are_never_below_the_value() {
     for value in [1.0, 1.01, 0.19, 0.31, 8.1, 9.99, 3e-6] {
         let plain = plain_above(value);

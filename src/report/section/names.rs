@@ -67,8 +67,9 @@ pub(super) fn names(
     model: &Model,
     outline: &Outline,
     view: &View,
+    dimension_lines: &[[[f64; 2]; 2]],
 ) -> [f64; 2] {
-    let layout = arrange(model, outline, view);
+    let layout = arrange(model, outline, view, dimension_lines);
     for (name, rect) in &layout.inside {
         write_lines(canvas, rect, &name.lines, Anchor::Middle);
     }
@@ -86,22 +87,29 @@ pub(super) fn names(
 ///
 /// A shape that loses its last free spot to leaders joins the column, which moves the leaders; every pass but the last
 /// moves at least one name, so there are at most as many passes as names, plus one.
-fn arrange(model: &Model, outline: &Outline, view: &View) -> Layout {
+fn arrange(
+    model: &Model,
+    outline: &Outline,
+    view: &View,
+    dimension_lines: &[[[f64; 2]; 2]],
+) -> Layout {
     let named = outline.regions.iter().filter_map(|region| {
         let lines = label(model, region);
         largest(region, view).filter(|_| !lines.is_empty()).map(|polygon| Name { lines, polygon })
     });
     let (mut candidates, mut column_names): (Vec<Name>, Vec<Name>) =
-        named.partition(|name| spot(name, &[], &[]).is_some());
+        named.partition(|name| spot(name, dimension_lines, &[]).is_some());
     loop {
         let wish = |n: &Name| Wish { anchor: right_end(&n.polygon), lines: n.lines.clone() };
         let wishes: Vec<Wish> = column_names.iter().map(wish).collect();
         let boxes = column(&wishes, view.right() + 46.0, [TOP, view.bottom()], TEXT);
         let leaders: Vec<_> =
             wishes.iter().zip(&boxes).map(|(w, rect)| leader(w, rect, view)).collect();
+        let mut lines = dimension_lines.to_vec();
+        lines.extend(leaders.iter().flat_map(|[a, b, c]| [[*a, *b], [*b, *c]]));
         let (mut used, mut inside, mut homeless) = (vec![], vec![], vec![]);
         for name in candidates {
-            match spot(&name, &leaders, &used) {
+            match spot(&name, &lines, &used) {
                 Some(rect) => {
                     used.push(rect);
                     inside.push((name, rect));
@@ -125,26 +133,32 @@ fn leader(wish: &Wish, rect: &Rect, view: &View) -> [[f64; 2]; 3] {
     [wish.anchor, [view.right() + 26.0, end[1]], [end[0] - 4.0, end[1]]]
 }
 
-/// Heights that are tried for a name inside its shape, from the middle outwards, in parts of the shape's height.
+/// Places that are tried for a name inside its shape, from the middle outwards, in parts of the shape's size.
 const LIFTS: [f64; 9] = [0.0, -0.08, 0.08, -0.16, 0.16, -0.24, 0.24, -0.32, 0.32];
 
-/// A free place for a name inside its own shape, clear of leaders and of other names.
-fn spot(name: &Name, leaders: &[[[f64; 2]; 3]], used: &[Rect]) -> Option<Rect> {
+/// A free place for a name inside its own shape, clear of lines and of other names.
+fn spot(name: &Name, lines: &[[[f64; 2]; 2]], used: &[Rect]) -> Option<Rect> {
     let middle = middle_of(&name.polygon);
     let [width, height] = size_of(&name.lines, TEXT);
-    let ordinates = name.polygon.iter().map(|p| p[1]);
-    let (top, bottom) =
-        ordinates.fold((f64::MAX, f64::MIN), |(low, high), v| (low.min(v), high.max(v)));
-    let boxes = LIFTS.iter().map(|lift| Rect {
-        x: middle[0] - 0.5 * width,
-        y: middle[1] + lift * (bottom - top) - 0.5 * height,
-        width,
-        height,
-    });
-    let is_clear =
-        |rect: &Rect| leaders.iter().all(|l| l.windows(2).all(|w| !rect.is_crossed(w[0], w[1])));
-    boxes.into_iter().find(|rect| {
-        fits(&name.polygon, rect) && is_clear(rect) && used.iter().all(|u| !u.overlaps(rect))
+    let extent = |axis: usize| {
+        let values = name.polygon.iter().map(|p| p[axis]);
+        let (low, high) =
+            values.fold((f64::MAX, f64::MIN), |(low, high), v| (low.min(v), high.max(v)));
+        high - low
+    };
+    let (wide, high) = (extent(0), extent(1));
+    let mut boxes = LIFTS.iter().flat_map(|shift| LIFTS.iter().map(move |lift| [shift, lift])).map(
+        |[shift, lift]| Rect {
+            x: middle[0] + shift * wide - 0.5 * width,
+            y: middle[1] + lift * high - 0.5 * height,
+            width,
+            height,
+        },
+    );
+    boxes.find(|rect| {
+        fits(&name.polygon, rect)
+            && lines.iter().all(|[a, b]| !rect.is_crossed(*a, *b))
+            && used.iter().all(|u| !u.overlaps(rect))
     })
 }
 

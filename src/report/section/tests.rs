@@ -22,6 +22,23 @@ fn every_shape_is_named_and_every_dimension_is_there() {
 }
 
 #[test]
+fn no_name_is_crossed_by_the_lines_of_a_diameter() {
+    // Without the hole the middle of the plates comes to lie on the line of the post.
+    let (model, mut outline) = (fixture::model(), fixture::outline());
+    for region in &mut outline.regions {
+        for p in region.polygons.iter_mut().flatten().filter(|p| (p.r - 2.7e-3).abs() < 1e-9) {
+            p.r = 0.0;
+        }
+    }
+    let lines = extension_lines(&model, &outline, &view(&outline));
+    assert!(2 < lines.len());
+    for (rect, text) in text_boxes(&section_svg(&model, &outline)) {
+        let is_crossed = lines.iter().any(|[a, b]| rect.is_crossed(*a, *b));
+        assert!(!is_crossed || text.starts_with('Ø'), "a line crosses {text}");
+    }
+}
+
+#[test]
 fn many_thin_shapes_with_long_names_do_not_overlap() {
     let mut outline = fixture::outline();
     for i in 0..40 {

@@ -11,7 +11,7 @@ fn the_screen_answers_first() {
         Buoy charger choke
           A_L           397.17 nH       surely between 396.99 and 397.37
           inductance    700.6 µH        surely between 700.3 and 701.0
-          your figure   700.0 µH        0.088 % low, inside your ±3 %
+          your figure   700.0 µH        0.1 % low, inside your ±3 %
                         the post gap carries most of the difference
           requirement   700.6 µH        apparent, main at 2.50 A: wanted at least
                                         650.0 µH, kept surely
@@ -26,18 +26,21 @@ fn the_screen_answers_first() {
           post gap              72.4 %  1.823  2.160          18 % high
           main and its window   18.7 %  0.471      –
           outside                2.2 %  0.055      –
-          = all together       100.0 %  2.518  2.331          7.4 % low
+          sum = 1/A_L          100.0 %  2.518  2.331          7.4 % low
+          A gap's hand value also stands for the flux that bulges round it; the field
+          counts that under window, windings and outside: compare the sums.
 
-        Fringing and pull of the gaps
-             own factor  l/(µ0 A), 1/µH   force  by B²A/2µ0
-          1       1.143           2.947  4.21 N      4.62 N
-          In the spreadsheet: N²/(R_core + R_gap/1.203) gives this inductance.
+        Gaps: fringing factor and pull
+             factor  l/(µ0 A), 1/µH    pull  by B²A/2µ0
+          1   1.143           2.947  4.21 N      4.62 N
+          For a spreadsheet, one factor for all gaps: N²/(R_core + R_gap/1.203) gives
+          this inductance, with R_gap = l/(µ0 A) and R_core from the column "field".
 
-        Highest flux density
-                       averaged
-          post           512 mT   r 5.60 mm   z 5.60 mm
-          post           511 mT   r 5.60 mm  z −5.60 mm
-          lower plate    344 mT  r 10.50 mm  z −5.70 mm
+        Highest flux densities, each averaged over a small disc
+                          |B|
+          post         512 mT   r 5.60 mm   z 5.60 mm
+          post         511 mT   r 5.60 mm  z −5.60 mm
+          lower plate  344 mT  r 10.50 mm  z −5.70 mm
 
         Flux density exceeded by a share of each part's volume
                    1 %     5 %    50 %  room to the knee

@@ -58,6 +58,13 @@ impl HandSum {
     pub fn reluctance(&self, kind: RegionKind) -> Option<PerHenry> {
         self.rows.iter().find(|row| row.kind == kind).map(|row| row.reluctance)
     }
+
+    /// A_L [H] of the core closed and without any gap or joint: 1/Σ over posts, walls and plates.
+    pub fn closed_inductance_factor(&self) -> Henry {
+        let is_iron = |row: &&HandRow| matches!(row.kind, RegionKind::Leg(_));
+        let closed: PerHenry = self.rows.iter().filter(is_iron).map(|row| row.plain).sum();
+        1.0 / closed
+    }
 }
 
 /// Why there is no hand sum: a note beside the results, not a failure.
