@@ -5,8 +5,8 @@
 
 use super::Outcome;
 use crate::fem::Reluctivity;
-use crate::fem::evaluate::{find, flux_density, locate, to_chart};
 use crate::fem::element::Frame;
+use crate::fem::evaluate::{find, flux_density, locate, to_chart};
 use crate::fem::moments::linear_energy;
 use crate::mesh::Chart;
 use crate::mesh::fans::edge_triangles;
@@ -34,7 +34,10 @@ impl Watch {
     /// All probe points of a model and its averaging disc.
     pub fn of(model: &Model) -> Watch {
         let points = model.probes.iter().flat_map(|probe| probe.points());
-        Watch { probes: points.collect(), spot_radius: if model.hot_spots.count == 0 { 0.0 } else { model.hot_spots.averaging } }
+        Watch {
+            probes: points.collect(),
+            spot_radius: if model.hot_spots.count == 0 { 0.0 } else { model.hot_spots.averaging },
+        }
     }
 }
 
@@ -76,10 +79,13 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
     for &at in &outcome.watch.probes {
         let (chart, position) = to_chart(mesh, at);
         // Points of a line are neighbours: walk on from the last one.
-        let near = last.filter(|&t| mesh.charts[t] == chart).and_then(|t| locate(mesh, &pairs, t, position));
+        let near = last
+            .filter(|&t| mesh.charts[t] == chart)
+            .and_then(|t| locate(mesh, &pairs, t, position));
         let Some((t, _)) = near.or_else(|| find(mesh, &pairs, chart, position)) else { continue };
         last = Some(t);
-        let energy = TAU * linear_energy(&outcome.elements[t].k, &outcome.solution.gradients(mesh, t));
+        let energy =
+            TAU * linear_energy(&outcome.elements[t].k, &outcome.solution.gradients(mesh, t));
         if PROBE_SHARE * energy < outcome.bound.shares[t] {
             marked.push(t as u32);
         }

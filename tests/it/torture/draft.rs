@@ -137,6 +137,8 @@ impl Draft {
             text.push_str("]\n");
         }
         writeln!(text, "\n[accuracy]\ninterval = {:?}", copy.interval).unwrap();
+        // The hot spots' disc grows along, for the rounds refine to its size.
+        writeln!(text, "\n[hot_spots]\naveraging = {:?}", 0.2 * copy.factor).unwrap();
         text
     }
 
