@@ -10,8 +10,6 @@ use std::cell::RefCell;
 
 /// Relative error of the energy, ‖x − x*‖²_A/‖x*‖²_A, that counts as solved.
 pub const ENERGY_ERROR: f64 = 1e-10;
-/// The most iterations that may be needed for it: the design's aim at every size, contrast and gap.
-pub const N_ITERATIONS_AIM: usize = 40;
 
 /// The last round's system, ready to be solved again from zero.
 pub struct LastSystem<'a> {
