@@ -10,7 +10,7 @@ use crate::geometry::{Outline, Region};
 use crate::mesh::bisect::{Carried, bisect};
 use crate::mesh::fans::Fans;
 use crate::mesh::{Mesh, MeshError, first_mesh};
-use crate::model::{Point, Accuracy, Law, Model};
+use crate::model::{Accuracy, Law, Model, Point};
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::sparse::Hierarchy;
 use crate::units::{Joule, MU0};

@@ -42,7 +42,8 @@ fn spanning_tree(field: &Field, fans: &Fans) -> (Vec<u32>, Vec<u8>) {
     let mut parent = vec![u8::MAX; n];
     let mut queues: Vec<VecDeque<u32>> = vec![VecDeque::new(); N_CLASSES];
     for (t, edges) in mesh.triangle_edges.iter().enumerate() {
-        if let Some(k) = (0..3).find(|&k| fans.edge_triangles[edges[k] as usize][1] == NO_TRIANGLE) {
+        if let Some(k) = (0..3).find(|&k| fans.edge_triangles[edges[k] as usize][1] == NO_TRIANGLE)
+        {
             parent[t] = k as u8;
             queues[class_of(t as u32)].push_back(t as u32);
         }

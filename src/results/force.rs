@@ -83,7 +83,10 @@ fn spacer_velocity(model: &Model, sampler: &Sampler) -> Vec<f64> {
     for_kinds(sampler, |kind, v| {
         let p = mesh.points[v];
         let is_plate = top * (1.0 - 1e-9) <= p.z.abs();
-        if matches!(kind, RegionKind::Winding { .. }) && must_stay(model, kind, usize::MAX, p) && !is_plate {
+        if matches!(kind, RegionKind::Winding { .. })
+            && must_stay(model, kind, usize::MAX, p)
+            && !is_plate
+        {
             velocity[v] = 0.0;
         }
     });

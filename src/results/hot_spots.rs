@@ -96,7 +96,8 @@ impl Search<'_> {
                 (body(region(sampler, t)) == own).then(|| self.disc(t, at))
             };
             let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
-            let best = around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
+            let best =
+                around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
             match best.filter(|best| disc.mean < best.mean) {
                 Some(best) => disc = best,
                 None if step < FINEST_STEP * self.radius => break,

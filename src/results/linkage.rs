@@ -66,8 +66,7 @@ pub fn unit_density(model: &Model, outline: &Outline, w: usize) -> Vec<AmperePer
 /// The load vector b of given current densities on the outcome's mesh; for 1 A in a winding its λ is 2π b·x.
 pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
     // `load` reads the densities only.
-    let coefficients =
-        Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
+    let coefficients = Coefficients { reluctivity: Vec::new(), current_density: density.to_vec() };
     assemble::load(&outcome.mesh, &outcome.space, &coefficients)
 }
 

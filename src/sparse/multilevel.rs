@@ -129,13 +129,23 @@ pub struct Multilevel<'a> {
 
 impl<'a> Multilevel<'a> {
     /// Fits the workspace to the hierarchy.
-    pub fn new(matrix: &'a Swept, hierarchy: &'a Hierarchy, work: &'a mut Workspace) -> Multilevel<'a> {
+    pub fn new(
+        matrix: &'a Swept,
+        hierarchy: &'a Hierarchy,
+        work: &'a mut Workspace,
+    ) -> Multilevel<'a> {
         hierarchy.fit(work);
         Multilevel { matrix, hierarchy, work }
     }
 
     /// Solves A x = b from the start value in `x`; `scale` as in [`conjugate_gradients`].
-    pub fn solve(&mut self, b: &[f64], x: &mut [f64], stop: &Stop, scale: f64) -> Result<Convergence, CgError> {
+    pub fn solve(
+        &mut self,
+        b: &[f64],
+        x: &mut [f64],
+        stop: &Stop,
+        scale: f64,
+    ) -> Result<Convergence, CgError> {
         let mut vectors = std::mem::take(&mut self.work.vectors);
         let result = conjugate_gradients(self, b, x, stop, scale, &mut vectors);
         self.work.vectors = vectors;

@@ -2,8 +2,8 @@
 #![allow(clippy::unwrap_used, clippy::print_stdout)]
 
 mod architecture;
-mod cli;
 mod cases;
+mod cli;
 mod forces;
 mod guarantee;
 mod hot_spots;
