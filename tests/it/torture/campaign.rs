@@ -106,7 +106,7 @@ fn peak_megabytes() -> f64 {
 #[test]
 fn random_sections_are_solved_and_held_or_refused_by_name() {
     // Copies and the tighter run cost ten times the section itself: one in some gets them.
-    let (n, copied_every) = if is_slow() { (2000, 4) } else { (200, 10) };
+    let (n, copied_every) = if is_slow() { (2000, 4) } else { (200, 20) };
     let start = Instant::now();
     let fates: Vec<Fate> =
         (0..n).into_par_iter().map(|seed| fate(seed, seed % copied_every == 0)).collect();

@@ -2,6 +2,9 @@
 
 use std::fmt::Write;
 
+/// Keys of a core form and their lengths.
+pub type Lengths = Vec<(&'static str, f64)>;
+
 /// A law as the sheet states it.
 #[derive(Debug, Clone, Copy)]
 pub enum Law {
@@ -23,7 +26,7 @@ pub struct Draft {
     pub unit: &'static str,
     pub laws: Vec<Law>,
     /// Material, form, dimensions by key.
-    pub core: Option<(usize, &'static str, Vec<(&'static str, f64)>)>,
+    pub core: Option<(usize, &'static str, Lengths)>,
     /// Across, length, center.
     pub gaps: Vec<(&'static str, f64, f64)>,
     pub coils: Vec<Coil>,
