@@ -47,6 +47,14 @@ struct Coarse {
     factor: CscCholesky<f64>,
     /// new position → old
     order: Vec<usize>,
+    /// Power of two that the matrix was multiplied by: a problem scaled by any power of two has the same factor, bit by bit,
+    /// though square roots of odd powers round.
+    scale: f64,
+}
+
+/// 2^e with 2^e ≤ |x| < 2^(e+1).
+fn power_of_two_below(x: f64) -> f64 {
+    f64::from_bits(x.to_bits() & 0x7FF0_0000_0000_0000)
 }
 
 impl Hierarchy {
@@ -257,21 +265,22 @@ impl Coarse {
         for (new, &old) in order.iter().enumerate() {
             position[old] = new;
         }
+        let scale = power_of_two_below(block.data().first().copied().unwrap_or(1.0)).recip();
         let mut triplets = CooMatrix::new(size, size);
         for (i, row) in block.outer_iterator().enumerate() {
             for (j, &v) in row.iter() {
-                triplets.push(position[i], position[j], v);
+                triplets.push(position[i], position[j], scale * v);
             }
         }
         let factor = CscCholesky::factor(&CscMatrix::from(&triplets)).ok()?;
-        Some(Coarse { factor, order })
+        Some(Coarse { factor, order, scale })
     }
 
     fn solve(&self, b: &[f64], x: &mut [f64]) {
         let mut permuted = DMatrix::from_iterator(b.len(), 1, self.order.iter().map(|&old| b[old]));
         self.factor.solve_mut(&mut permuted);
         for (new, &old) in self.order.iter().enumerate() {
-            x[old] = permuted[(new, 0)];
+            x[old] = self.scale * permuted[(new, 0)];
         }
     }
 }
