@@ -2,7 +2,7 @@
 
 use super::HotSpot;
 use super::sample::Sampler;
-use crate::fem::evaluate::locate;
+use crate::fem::evaluate::{flux_density, locate};
 use crate::geometry::{Region, RegionKind};
 use crate::mesh::Chart;
 use crate::model::{Model, Point};
@@ -16,8 +16,8 @@ const RULE_CLIMBING: [usize; 2] = [4, 16];
 const RULE_TOLD: [usize; 2] = [12, 32];
 /// Moves of one climb before it is called done; a climb is a few radii long.
 const N_MOVES_MAX: usize = 40;
-/// Climbs before the search ends with fewer spots than wanted; most starts lead to a place already found.
-const N_CLIMBS_MAX: usize = 24;
+/// Starts and ends of climbs before the search ends with fewer spots than wanted; most lead to a place already found.
+const N_TRIED_MAX: usize = 30;
 /// A climb ends when steps of this share of the radius no longer help.
 const FINEST_STEP: f64 = 0.06;
 
@@ -31,7 +31,7 @@ pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
     let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
     for (triangle, at) in candidates(sampler, radius) {
-        if count <= found.len() || tried.len() == N_CLIMBS_MAX {
+        if count <= found.len() || N_TRIED_MAX <= tried.len() {
             break;
         }
         if search.is_apart(&tried, at) {
@@ -96,20 +96,25 @@ impl Search<'_> {
         let sampler = self.sampler;
         let own = body(region(sampler, disc.triangle));
         let mut step = 0.5 * self.radius;
+        let mut back = (0.0, 0.0);
         for _ in 0..N_MOVES_MAX {
             let moved = |(dr, dz): (f64, f64)| {
+                // Where it came from is lower.
+                if (dr, dz) == back {
+                    return None;
+                }
                 let at = Point { r: (disc.at.r + step * dr).max(0.0), z: disc.at.z + step * dz };
                 let mesh = &sampler.outcome.mesh;
                 let (t, _) = locate(mesh, &sampler.edge_triangles, disc.triangle, at)?;
-                (body(region(sampler, t)) == own).then(|| self.disc(t, at))
+                (body(region(sampler, t)) == own).then(|| (self.disc(t, at), (-dr, -dz)))
             };
             let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
             let best =
-                around.into_iter().filter_map(moved).max_by(|a, b| a.mean.total_cmp(&b.mean));
-            match best.filter(|best| disc.mean < best.mean) {
-                Some(best) => disc = best,
+                around.into_iter().filter_map(moved).max_by(|a, b| a.0.mean.total_cmp(&b.0.mean));
+            match best.filter(|best| disc.mean < best.0.mean) {
+                Some(best) => (disc, back) = best,
                 None if step < FINEST_STEP * self.radius => break,
-                None => step *= 0.5,
+                None => (step, back) = (0.5 * step, (0.0, 0.0)),
             }
         }
         disc
@@ -120,6 +125,7 @@ impl Search<'_> {
         let mesh = &self.sampler.outcome.mesh;
         let own = body(region(self.sampler, t));
         let (mut sum, mut n, mut last) = (0.0, 0.0, t);
+        let (mut local_of, mut local) = (t, self.sampler.local(t));
         for [dr, dz] in &self.offsets {
             let at = Point { r: center.r + dr, z: center.z + dz };
             if at.r < 0.0 {
@@ -131,7 +137,10 @@ impl Search<'_> {
             };
             last = found;
             if mesh.charts[found] == Chart::Inside && body(region(self.sampler, found)) == own {
-                let [b_r, b_z] = self.sampler.flux_density(found, &lambda);
+                if found != local_of {
+                    (local_of, local) = (found, self.sampler.local(found));
+                }
+                let [b_r, b_z] = flux_density(&local.0, &local.1, &lambda);
                 sum += (b_r * b_r + b_z * b_z).sqrt();
                 n += 1.0;
             }
