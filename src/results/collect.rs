@@ -31,7 +31,9 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
     let hand = hand::hand_sum(model);
     let ledger = ledger::rows(outline, &work, value.map(|l| turns * turns / l), hand.as_ref().ok());
     let gaps = gaps::results(model, &sampler, carrier, &linkage);
+    let parts = parts::results(model, &sampler);
     let mut notes = notes(model, &sampler);
+    notes.extend(parts::constant_law_note(model, &sampler, &parts));
     let verdict = match (&model.estimate, value) {
         (Some(estimate), Some(l)) => hand::verdict(estimate, hand.as_ref().ok(), l, turns, &ledger),
         _ => None,
@@ -75,7 +77,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         ledger,
         gaps,
         hot_spots: hot_spots::find(model, &sampler),
-        parts: parts::results(model, &sampler),
+        parts,
         probes: probes(model, &sampler),
         verdict,
         ripple: None,

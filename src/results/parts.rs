@@ -88,6 +88,29 @@ fn exceeded(mut samples: Vec<(Tesla, CubicMeter)>) -> [Tesla; 3] {
     })
 }
 
+/// Flux density above which a constant permeability deserves a word [T]: power ferrites saturate at 0.3 to 0.5 T (common
+/// practice, no source).
+const CONSTANT_LAW_DOUBTFUL: Tesla = 0.3;
+
+/// A note when a permeable part of constant permeability carries more than a ferrite could.
+pub fn constant_law_note(model: &Model, sampler: &Sampler, parts: &[PartResult]) -> Option<String> {
+    let is_constant = |name: &str| {
+        let region = sampler.outline.regions.iter().find(|region| region.name == name)?;
+        let material = &model.materials[region.material?.0 as usize];
+        (material.law.is_constant() && 1.0 < material.law.initial_permeability())
+            .then_some(&material.name)
+    };
+    let hottest = parts.iter().max_by(|a, b| a.exceeded[0].total_cmp(&b.exceeded[0]))?;
+    let material =
+        is_constant(&hottest.name).filter(|_| CONSTANT_LAW_DOUBTFUL < hottest.exceeded[0])?;
+    Some(format!(
+        "`{material}` has a constant permeability, so nothing saturates here, though 1 % of {} carries more than {:.0} mT; \
+         give it a B–H table (`bh`) to see what a real core does",
+        hottest.name,
+        1e3 * hottest.exceeded[0]
+    ))
+}
+
 /// A note for every region whose field passes the last point of its table.
 pub fn beyond_tables(model: &Model, sampler: &Sampler) -> Vec<String> {
     let mut notes = Vec::new();
