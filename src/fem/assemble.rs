@@ -15,7 +15,8 @@ const N_ROWS_CHUNK: usize = 8192;
 
 /// Assembles ∫ ∇φ_i·K∇φ_j over all unknowns; each row is summed in the order of its triangles, so threads do not matter.
 pub fn stiffness(mesh: &Mesh, space: &Space, fans: &Fans, elements: &[Element]) -> Matrix {
-    let rows = Rows { mesh, space, fans, elements, owner: owners(space) };
+    let dofs = (0..mesh.triangles.len()).map(|t| space.dofs(mesh, t)).collect();
+    let rows = Rows { mesh, space, fans, elements, dofs, owner: owners(space) };
     let n = space.n_dofs;
     let chunk = |c: usize| rows.gather(c * N_ROWS_CHUNK..((c + 1) * N_ROWS_CHUNK).min(n));
     let chunks: Vec<Chunk> = (0..n.div_ceil(N_ROWS_CHUNK)).into_par_iter().map(chunk).collect();
@@ -45,6 +46,8 @@ struct Rows<'a> {
     space: &'a Space,
     fans: &'a Fans,
     elements: &'a [Element],
+    /// Unknowns of every triangle, in one place: a row asks for those of all its triangles.
+    dofs: Vec<[u32; 6]>,
     owner: Vec<u32>,
 }
 
@@ -53,21 +56,17 @@ impl Rows<'_> {
         let mut chunk = Chunk::default();
         // Position of a column in the row at hand.
         let mut slot = vec![NONE; self.space.n_dofs];
-        let mut uses: Vec<(usize, [u32; 6])> = Vec::with_capacity(16);
         let mut parts: Vec<(usize, usize)> = Vec::with_capacity(16);
         for i in rows {
             self.triangles_of(i, &mut parts);
-            uses.clear();
             let start = chunk.columns.len();
             for &(t, _) in &parts {
-                let dofs = self.space.dofs(self.mesh, t);
-                for &j in dofs.iter().filter(|&&j| j != NONE) {
+                for &j in self.dofs[t].iter().filter(|&&j| j != NONE) {
                     if slot[j as usize] == NONE {
                         slot[j as usize] = 0;
                         chunk.columns.push(j);
                     }
                 }
-                uses.push((t, dofs));
             }
             chunk.columns[start..].sort_unstable();
             for (k, &j) in chunk.columns[start..].iter().enumerate() {
@@ -75,11 +74,11 @@ impl Rows<'_> {
             }
             chunk.values.resize(chunk.columns.len(), 0.0);
             let values = &mut chunk.values[start..];
-            for (&(_, k), (t, dofs)) in parts.iter().zip(&uses) {
-                for (l, &j) in dofs.iter().enumerate() {
+            for &(t, k) in &parts {
+                for (l, &j) in self.dofs[t].iter().enumerate() {
                     if j != NONE {
                         values[slot[j as usize] as usize] +=
-                            self.elements[*t].stiffness[packed(k, l)];
+                            self.elements[t].stiffness[packed(k, l)];
                     }
                 }
             }
