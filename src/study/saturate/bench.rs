@@ -166,7 +166,7 @@ impl<'a> Bench<'a> {
     /// dλ/dI along the scale at the outcome's field [H].
     fn slope(&self) -> Result<Henry, StudyError> {
         tangent(&self.outcome, &self.outcome.elements, &self.load_alone, &self.load_along)
-            .ok_or(StudyError::Tangent { current: self.current })
+            .map_err(|source| StudyError::Tangent { current: self.current, source })
     }
 
     /// dλ/dI at `current`, for finding roots; the field is kept as a start value.
