@@ -30,11 +30,13 @@ pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let search = Search { sampler, radius, offsets: offsets(radius, RULE_CLIMBING) };
     let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
     let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
+    let mut n_climbs = 0;
     for (triangle, at) in candidates(sampler, radius) {
-        if count <= found.len() || tried.len() == N_CLIMBS_MAX {
+        if count <= found.len() || n_climbs == N_CLIMBS_MAX {
             break;
         }
         if search.is_apart(&tried, at) {
+            n_climbs += 1;
             let disc = search.climb(search.disc(triangle, at));
             if found.iter().all(|other| search.are_apart(other.at, disc.at)) {
                 found.push(told.disc(disc.triangle, disc.at));
