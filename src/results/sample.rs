@@ -2,9 +2,9 @@
 
 use crate::adapt::Outcome;
 use crate::fem::Reluctivity;
-use crate::fem::element::{Frame, Pair, blend, contract};
+use crate::fem::element::{Frame, Pair, blend};
 use crate::fem::evaluate;
-use crate::fem::moments::rule_of;
+use crate::fem::moments::{flux_density, linear_energy, rule_of};
 use crate::fem::quadrature::Rules;
 use crate::geometry::Outline;
 use crate::mesh::fans::edge_triangles;
@@ -70,8 +70,7 @@ impl<'a> Sampler<'a> {
         let (frame, gradients) = self.local(t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU
-                    * crate::fem::moments::linear_energy(&self.outcome.elements[t].k, &gradients);
+                let energy = TAU * linear_energy(&self.outcome.elements[t].k, &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {
@@ -80,10 +79,11 @@ impl<'a> Sampler<'a> {
                 for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
                     let r = frame.position(lambda).r;
                     let u = blend(lambda, &gradients);
-                    let b = (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / r;
+                    let b = flux_density(&frame, r, u);
+                    let at = law.at(b);
                     let volume = TAU * weight * r * frame.det_abs;
-                    work += volume * law.reluctivity(b).0 * b * b;
-                    energy += volume * law.energy_density(b);
+                    work += volume * at.reluctivity * b * b;
+                    energy += volume * at.energy;
                 }
                 (work, energy)
             }
