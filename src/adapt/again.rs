@@ -16,21 +16,9 @@ pub struct Again {
     pub effort: Effort,
 }
 
-/// Solves on the outcome's mesh with all currents multiplied by `factor`, from the field `start`.
+/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
 ///
 /// - `width`: the algebraic error stays below its usual share of this relative width
-pub fn at_factor(
-    outcome: &mut Outcome,
-    factor: f64,
-    start: &Solution,
-    width: f64,
-) -> Result<Again, SolveError> {
-    let density: Vec<f64> =
-        outcome.coefficients.current_density.iter().map(|j| j * factor).collect();
-    at_density(outcome, &density, start, width)
-}
-
-/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
 ///
 /// The outcome itself stays as it is, but for the preconditioner's finest level.
 pub fn at_density(
@@ -91,7 +79,7 @@ pub fn work_rate_ends(outcome: &mut Outcome) -> Result<[Joule; 2], SolveError> {
 /// [`work_rate_ends`] of another field on the outcome's mesh.
 ///
 /// W'(s) is convex, so (W'(1) − W'(1−δ))/δ ≤ dW'/ds ≤ (W'(1+δ) − W'(1))/δ, each W' taken at its safe end; δ = √η for the
-/// relative width η of W' makes both terms of the error equal (design: the best width is about 2√η).
+/// relative width η of W' makes both terms of the error equal: the best width is about 2√η.
 pub fn rate_ends_at(
     outcome: &mut Outcome,
     density: &[AmperePerSquareMeter],

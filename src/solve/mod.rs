@@ -2,7 +2,7 @@
 
 mod newton;
 
-pub use newton::{Effort, SolveError, System, solve, update_tangent};
+pub use newton::{Effort, SolveError, System, solve};
 
 use crate::fem::element::{Frame, Pair, vertex_gradients};
 use crate::mesh::Mesh;
