@@ -90,7 +90,7 @@ fn intervals_of_the_rod_hold_the_reference_and_are_tight() {
 
 #[test]
 fn the_gapped_pot_needs_few_unknowns() {
-    // Design 4.8 reached 2 852 and 7 921; the rest is room for another first mesh.
+    // 2 852 and 7 921 were reached once; the rest is room for another first mesh.
     for (width, most) in [(1e-3, 3_500), (1e-4, 9_000)] {
         let n = Run::new(R1.model(width)).outcome.rounds.last().unwrap().n_unknowns;
         assert!(n <= most, "{n} unknowns at {width}, at most {most} wanted");
