@@ -3,7 +3,6 @@
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
 use crate::fem::{Element, Rules};
-use crate::mesh::fans::Fans;
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::units::{AmperePerSquareMeter, Joule};
 
@@ -42,12 +41,11 @@ fn solve_and_bound(
     width: f64,
 ) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();
-    let Outcome { mesh, space, coefficients, hierarchy, .. } = outcome;
-    let fans = Fans::new(mesh);
-    let system = System { mesh, space, fans: &fans, coefficients, rules: &rules };
+    let Outcome { mesh, fans, space, coefficients, hierarchy, .. } = outcome;
+    let system = System { mesh, space, fans, coefficients, rules: &rules };
     let effort = solve::solve(&system, elements, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
     let field = Field { mesh, coefficients, rules: &rules, elements, solution };
-    Ok((effort, bound::bound(&field, &fans)))
+    Ok((effort, bound::bound(&field, fans)))
 }
 
 /// Puts a field at the current densities `density` into the outcome's place, on the same mesh.

@@ -102,7 +102,7 @@ impl Search<'_> {
             let moved = |(dr, dz): (f64, f64)| {
                 let at = Point { r: (disc.at.r + step * dr).max(0.0), z: disc.at.z + step * dz };
                 let mesh = &sampler.outcome.mesh;
-                let (t, _) = locate(mesh, &sampler.edge_triangles, disc.triangle, at)?;
+                let (t, _) = locate(mesh, &sampler.outcome.fans.edge_triangles, disc.triangle, at)?;
                 (body(region(sampler, t)) == own).then(|| self.disc(t, at))
             };
             let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
@@ -120,6 +120,7 @@ impl Search<'_> {
     /// Mean |B| over the part of the disc that lies in the same body.
     fn mean(&self, t: usize, center: Point) -> Tesla {
         let mesh = &self.sampler.outcome.mesh;
+        let edge_triangles = &self.sampler.outcome.fans.edge_triangles;
         let own = body(region(self.sampler, t));
         let (mut sum, mut n, mut last) = (0.0, 0.0, t);
         for [dr, dz] in &self.offsets {
@@ -128,7 +129,7 @@ impl Search<'_> {
                 continue;
             }
             // Neighbours on the ring are neighbours in the mesh: walk on from the last one.
-            let Some((found, lambda)) = locate(mesh, &self.sampler.edge_triangles, last, at) else {
+            let Some((found, lambda)) = locate(mesh, edge_triangles, last, at) else {
                 continue;
             };
             last = found;

@@ -7,7 +7,6 @@ use crate::adapt::Outcome;
 use crate::fem::element::Frame;
 use crate::fem::{Coefficients, Element, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
-use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
 use crate::sparse::{CgError, Multilevel, Stop, Swept, Workspace};
@@ -106,8 +105,8 @@ pub fn tangent(
     unit: &[f64],
     rate: &[f64],
 ) -> Result<Henry, CgError> {
-    let fans = Fans::new(&outcome.mesh);
-    let matrix = Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements));
+    let matrix =
+        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.fans, elements));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };

@@ -53,8 +53,7 @@ impl<'a> Bench<'a> {
         let mut coefficients = adapt::coefficients(model, &outline.regions);
         coefficients.current_density = along.iter().map(|j| j * to).collect();
         let mesh = first_mesh(outline).map_err(adapt::AdaptError::Mesh)?;
-        let start =
-            Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
+        let start = Solution::zero(&mesh);
         let rules = Rules::working();
         let outcome =
             adapt::rounds(mesh, coefficients, start, &rules, &model.accuracy, &mut |_| {})?;
