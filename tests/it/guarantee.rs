@@ -188,8 +188,7 @@ fn loosely_solved(run: &Run, decrease: f64) -> Solution {
 }
 
 fn zero(run: &Run) -> Solution {
-    let mesh = &run.outcome.mesh;
-    Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] }
+    Solution::zero(&run.outcome.mesh)
 }
 
 /// The field with every unknown changed by up to `size` of its own value and of the largest one.
@@ -257,10 +256,7 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
             let mut elements: Vec<Element> = Vec::new();
             let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
             update_constant(&mesh, &coefficients, &rules, &all, &mut elements);
-            let mut solution = Solution {
-                vertex: vec![0.0; mesh.points.len()],
-                edge: vec![0.0; mesh.edges.len()],
-            };
+            let mut solution = Solution::zero(&mesh);
             let fans = Fans::new(&mesh);
             let system = System {
                 mesh: &mesh,
