@@ -16,8 +16,10 @@ const RULE_CLIMBING: [usize; 2] = [4, 16];
 const RULE_TOLD: [usize; 2] = [12, 32];
 /// Moves of one climb before it is called done; a climb is a few radii long.
 const N_MOVES_MAX: usize = 40;
-/// Climbs before the search ends with fewer spots than wanted; most starts lead to a place already found.
-const N_CLIMBS_MAX: usize = 24;
+/// Climbs before the search ends with fewer spots than wanted, at the least and for each wanted one; most starts lead to a
+/// place already found.
+const N_CLIMBS_MIN: usize = 24;
+const N_CLIMBS_A_SPOT: usize = 4;
 /// A climb ends when steps of this share of the radius no longer help.
 const FINEST_STEP: f64 = 0.06;
 
@@ -30,9 +32,10 @@ pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let search = Search { sampler, radius, offsets: offsets(radius, RULE_CLIMBING) };
     let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
     let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
+    let n_climbs_max = N_CLIMBS_MIN.max(N_CLIMBS_A_SPOT * count);
     let mut n_climbs = 0;
     for (triangle, at) in candidates(sampler, radius) {
-        if count <= found.len() || n_climbs == N_CLIMBS_MAX {
+        if count <= found.len() || n_climbs == n_climbs_max {
             break;
         }
         if search.is_apart(&tried, at) {
