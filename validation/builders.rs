@@ -15,11 +15,7 @@ const MM: f64 = 1e-3;
 pub fn bare(permeability: f64) -> Model {
     Model {
         title: String::new(),
-        materials: vec![Material {
-            name: "core".to_owned(),
-            law: Law::Constant { permeability },
-            loss: None,
-        }],
+        materials: vec![Material { name: "core".to_owned(), law: Law::Constant { permeability } }],
         core: None,
         gaps: Vec::new(),
         windings: Vec::new(),

@@ -29,7 +29,7 @@ pub struct Post {
 
 /// A material list with the core's law.
 fn with_walls(law: Law, epsilon: f64, parts: Vec<Part>, coil: &Coil, current: f64) -> Model {
-    let material = |name: &str, law| Material { name: name.to_owned(), law, loss: None };
+    let material = |name: &str, law| Material { name: name.to_owned(), law };
     let constant = |permeability| Law::Constant { permeability };
     let materials = vec![
         material("core", law),

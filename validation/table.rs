@@ -35,7 +35,7 @@ pub struct Row {
     pub used: f64,
 }
 
-/// Largest interval over true error that passes. The equilibrated flux costs about 2 asymptotically (design 4.4).
+/// Largest interval over true error that passes. The equilibrated flux costs about 2 asymptotically.
 pub const EFFICIENCY_MAX: f64 = 3.5;
 
 /// Where a reference comes from and how its number is scaled into the row's unit.

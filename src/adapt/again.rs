@@ -3,7 +3,6 @@
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
 use crate::fem::{Element, Rules};
-use crate::mesh::fans::Fans;
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::units::{AmperePerSquareMeter, Joule};
 
@@ -16,21 +15,9 @@ pub struct Again {
     pub effort: Effort,
 }
 
-/// Solves on the outcome's mesh with all currents multiplied by `factor`, from the field `start`.
+/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
 ///
 /// - `width`: the algebraic error stays below its usual share of this relative width
-pub fn at_factor(
-    outcome: &mut Outcome,
-    factor: f64,
-    start: &Solution,
-    width: f64,
-) -> Result<Again, SolveError> {
-    let density: Vec<f64> =
-        outcome.coefficients.current_density.iter().map(|j| j * factor).collect();
-    at_density(outcome, &density, start, width)
-}
-
-/// Solves on the outcome's mesh with the current densities `density` [A/m²], one a region, from the field `start`.
 ///
 /// The outcome itself stays as it is, but for the preconditioner's finest level.
 pub fn at_density(
@@ -54,12 +41,11 @@ fn solve_and_bound(
     width: f64,
 ) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();
-    let Outcome { mesh, space, coefficients, hierarchy, .. } = outcome;
-    let fans = Fans::new(mesh);
-    let system = System { mesh, space, fans: &fans, coefficients, rules: &rules };
+    let Outcome { mesh, fans, space, coefficients, hierarchy, .. } = outcome;
+    let system = System { mesh, space, fans, coefficients, rules: &rules };
     let effort = solve::solve(&system, elements, hierarchy, solution, ALGEBRAIC_SHARE * width)?;
     let field = Field { mesh, coefficients, rules: &rules, elements, solution };
-    Ok((effort, bound::bound(&field, &fans)))
+    Ok((effort, bound::bound(&field, fans)))
 }
 
 /// Puts a field at the current densities `density` into the outcome's place, on the same mesh.
@@ -91,7 +77,7 @@ pub fn work_rate_ends(outcome: &mut Outcome) -> Result<[Joule; 2], SolveError> {
 /// [`work_rate_ends`] of another field on the outcome's mesh.
 ///
 /// W'(s) is convex, so (W'(1) − W'(1−δ))/δ ≤ dW'/ds ≤ (W'(1+δ) − W'(1))/δ, each W' taken at its safe end; δ = √η for the
-/// relative width η of W' makes both terms of the error equal (design: the best width is about 2√η).
+/// relative width η of W' makes both terms of the error equal: the best width is about 2√η.
 pub fn rate_ends_at(
     outcome: &mut Outcome,
     density: &[AmperePerSquareMeter],

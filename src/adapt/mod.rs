@@ -18,7 +18,8 @@ use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::sparse::Hierarchy;
 use crate::units::{Joule, MU0};
 
-/// The algebraic error may use this share of the interval (design: 1e-3 · 0.3). A cost setting, not a safety setting.
+/// The algebraic error may use this share of the interval : its square root, 1.7 %, is what it may add to the
+/// error in norm. A cost setting, not a safety setting.
 const ALGEBRAIC_SHARE: f64 = 3e-4;
 /// Dörfler's share of the total that the marked triangles hold.
 const MARKED_SHARE: f64 = 0.7;
@@ -62,6 +63,8 @@ pub enum Event<'a> {
 #[derive(Debug)]
 pub struct Outcome {
     pub mesh: Mesh,
+    /// Adjacency of that mesh.
+    pub fans: Fans,
     pub space: Space,
     pub coefficients: Coefficients,
     pub solution: Solution,
@@ -86,6 +89,7 @@ impl Outcome {
     fn new(mesh: Mesh, coefficients: Coefficients, solution: Solution, watch: Watch) -> Outcome {
         Outcome {
             mesh,
+            fans: Fans::default(),
             space: Space::default(),
             coefficients,
             solution,
@@ -119,8 +123,7 @@ pub fn run(
     let coefficients = coefficients(model, &outline.regions);
     let mesh = first_mesh(outline)?;
     progress(Event::Finished(Stage::FirstMesh));
-    let solution =
-        Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
+    let solution = Solution::zero(&mesh);
     let rules = Rules::working();
     let mut outcome = Outcome::new(mesh, coefficients, solution, Watch::of(model));
     first_round(&mut outcome, &rules, &model.accuracy, progress)?;
@@ -193,14 +196,15 @@ pub fn refine(
         }
         let mut marked = mark::doerfler(&outcome.bound.shares, MARKED_SHARE);
         let worst = marked.first().copied();
-        marked.retain(|&t| mark::is_divisible(&outcome.mesh, t as usize));
+        let is_divisible = |t: &u32| mark::is_divisible(&outcome.mesh, *t as usize);
+        marked.retain(is_divisible);
         marked.truncate(n_marked_max);
         if marked.is_empty() {
             outcome.unresolved = worst.map(|t| outcome.mesh.corners(t as usize)[0]);
             return Ok(());
         }
         marked.extend(watch::hot_triangles(outcome));
-        marked.extend(watch::probe_triangles(outcome));
+        marked.extend(watch::probe_triangles(outcome).into_iter().filter(is_divisible));
         cut(outcome, &marked, rules, accuracy, progress)?;
     }
     outcome.reached = outcome.bound.relative_width() <= accuracy.interval;
@@ -253,16 +257,17 @@ fn round(
     accuracy: &Accuracy,
     progress: &mut dyn FnMut(Event),
 ) -> Result<(), AdaptError> {
-    let Outcome { mesh, space, coefficients, solution, elements, bound, hierarchy, .. } = outcome;
+    let Outcome { mesh, fans, space, coefficients, solution, elements, bound, hierarchy, .. } =
+        outcome;
     *space = Space::new(mesh);
     update_constant(mesh, coefficients, rules, changed, elements);
     let decrease = ALGEBRAIC_SHARE * width.clamp(accuracy.interval, 1.0);
     progress(Event::Finished(Stage::Elements));
-    let fans = Fans::new(mesh);
-    let system = System { mesh, space, fans: &fans, coefficients, rules };
+    *fans = Fans::new(mesh);
+    let system = System { mesh, space, fans, coefficients, rules };
     let effort = solve::solve(&system, elements, hierarchy, solution, decrease)?;
     progress(Event::Finished(Stage::Solve));
-    *bound = bound::bound(&Field { mesh, coefficients, rules, elements, solution }, &fans);
+    *bound = bound::bound(&Field { mesh, coefficients, rules, elements, solution }, fans);
     let round = Round {
         n_unknowns: space.n_dofs,
         n_triangles: mesh.triangles.len(),

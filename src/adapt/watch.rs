@@ -9,7 +9,6 @@ use crate::fem::element::Frame;
 use crate::fem::evaluate::{find, flux_density, locate, to_chart};
 use crate::fem::moments::linear_energy;
 use crate::mesh::Chart;
-use crate::mesh::fans::edge_triangles;
 use crate::model::{Model, Point};
 use crate::units::{MU0, Meter};
 use std::f64::consts::TAU;
@@ -73,7 +72,7 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
     if outcome.watch.probes.is_empty() {
         return Vec::new();
     }
-    let pairs = edge_triangles(mesh);
+    let pairs = &outcome.fans.edge_triangles;
     let mut marked = Vec::new();
     let mut last: Option<usize> = None;
     for &at in &outcome.watch.probes {
@@ -81,8 +80,8 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
         // Points of a line are neighbours: walk on from the last one.
         let near = last
             .filter(|&t| mesh.charts[t] == chart)
-            .and_then(|t| locate(mesh, &pairs, t, position));
-        let Some((t, _)) = near.or_else(|| find(mesh, &pairs, chart, position)) else { continue };
+            .and_then(|t| locate(mesh, pairs, t, position));
+        let Some((t, _)) = near.or_else(|| find(mesh, pairs, chart, position)) else { continue };
         last = Some(t);
         let energy =
             TAU * linear_energy(&outcome.elements[t].k, &outcome.solution.gradients(mesh, t));

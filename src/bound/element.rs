@@ -1,4 +1,4 @@
-//! One triangle of the equilibration: Gram matrix, defects, targets, and its part of the ends.
+//! One triangle of the equilibration: defects, targets, and its part of the ends. Its Gram matrix is in `fem::elements`.
 
 use super::{Field, Flux};
 use crate::fem::element::{Frame, GRADIENT, POSITION, Pair, blend, contract, dot, wedge};

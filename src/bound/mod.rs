@@ -24,7 +24,7 @@ use std::f64::consts::TAU;
 /// higher rule (tested), and sums of 1e6 terms in double precision round to about 1e-12.
 pub const MARGIN: f64 = 1e-9;
 
-/// τ in the lowest-order Raviart–Thomas space of degree 1 with constant divergence: two numbers an edge.
+/// τ in the Raviart–Thomas space of degree 1, its divergence constant on each triangle: two numbers an edge, none inside.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct Flux {
     /// Flux across the edge (mmf along it) on λ_i dλ_j − λ_j dλ_i, from the edge's first end to its second.

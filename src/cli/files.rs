@@ -3,7 +3,6 @@
 //! The disk is not flushed: a power cut may lose a file, a failing program cannot halve one.
 
 use super::{End, Stop};
-use std::ffi::OsString;
 use std::fs;
 use std::io::{self, Write};
 use std::path::{Path, PathBuf};
@@ -34,7 +33,7 @@ pub fn write_all(directory: &Path, files: &[Finished]) -> Result<(), Stop> {
             End::NotWritten,
             format!(
                 "{} could not be written: {}; choose another place with --out",
-                path.display(),
+                shown(&path),
                 plain(&error)
             ),
         )
@@ -96,8 +95,7 @@ pub fn plain(error: &io::Error) -> String {
 
 /// The name that messages use for a path.
 pub fn shown(path: &Path) -> String {
-    let name: OsString = path.as_os_str().to_os_string();
-    name.to_string_lossy().into_owned()
+    path.to_string_lossy().into_owned()
 }
 
 #[cfg(test)]

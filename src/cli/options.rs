@@ -28,9 +28,22 @@ pub enum Command {
     /// Read the sheet, say what was understood and draw the section; no field
     Check(Options),
     /// Solve the field: A_L and inductance with their interval, gaps, hot spots, pictures
-    Solve(Options),
+    Solve(SolveOptions),
     /// Inductance against current: table, knee, currents at which the inductance has fallen
     Saturate(SaturateOptions),
+}
+
+/// Options of `solve`.
+#[derive(Debug, Clone, Args)]
+pub struct SolveOptions {
+    #[command(flatten)]
+    pub common: Options,
+    /// Add the rounds and the time of every stage
+    #[arg(long)]
+    pub timings: bool,
+    /// Draw both halves of the section in field.svg
+    #[arg(long)]
+    pub mirror: bool,
 }
 
 /// Options of `saturate`.
@@ -50,7 +63,8 @@ impl Command {
     /// The options that every command has.
     pub fn options(&self) -> &Options {
         match self {
-            Command::Check(options) | Command::Solve(options) => options,
+            Command::Check(options) => options,
+            Command::Solve(options) => &options.common,
             Command::Saturate(options) => &options.common,
         }
     }
@@ -76,15 +90,9 @@ pub struct Options {
     /// Print mistakes only; the files are written all the same
     #[arg(long)]
     pub quiet: bool,
-    /// Add the rounds and the time of every stage
-    #[arg(long)]
-    pub timings: bool,
     /// Another B-H table for a material of the sheet; may be repeated
     #[arg(long, value_name = "NAME=FILE.csv", value_parser = material)]
     pub material: Vec<(String, PathBuf)>,
-    /// Draw both halves of the section in field.svg
-    #[arg(long)]
-    pub mirror: bool,
 }
 
 /// Highest current that may be asked for [A]; the sheet's currents have a bound of their own.
@@ -134,6 +142,14 @@ mod tests {
     #[test]
     fn the_arguments_are_consistent() {
         Arguments::command().debug_assert();
+    }
+
+    #[test]
+    fn an_option_that_a_command_cannot_use_is_refused() {
+        for option in ["--timings", "--mirror"] {
+            assert!(Arguments::try_parse_from(["gapwright", "solve", "a.toml", option]).is_ok());
+            assert!(Arguments::try_parse_from(["gapwright", "check", "a.toml", option]).is_err());
+        }
     }
 
     #[test]

@@ -36,7 +36,7 @@ fn wants_colour() -> bool {
     std::env::var_os("NO_COLOR").is_none_or(|value| value.is_empty())
 }
 
-/// A line on stderr that shows the latest round; hidden unless stderr is a terminal.
+/// A line on stderr that shows the latest round or point; hidden unless stderr is a terminal.
 pub struct Progress {
     bar: ProgressBar,
     n_rounds: usize,
@@ -61,9 +61,7 @@ impl Progress {
         self.bar.set_message(progress_line(self.n_rounds, n_unknowns, low, high));
         self.bar.tick();
     }
-}
 
-impl Progress {
     /// Shows how far a study has come.
     pub fn point(&mut self, n_done: usize, n_wanted: usize) {
         self.bar.set_message(format!("point {n_done} of {n_wanted}"));

@@ -1,7 +1,7 @@
 //! The command `solve`: the main job, from the sheet to files and screen.
 
 use super::files::Finished;
-use super::options::Options;
+use super::options::{Options, SolveOptions};
 use super::{End, Stop, files, screen, sheet};
 use gapwright::adapt::{self, AdaptError, Event, Outcome, Stage};
 use gapwright::geometry::Outline;
@@ -20,7 +20,8 @@ use gapwright::solve::SolveError;
 use std::time::Instant;
 
 /// Runs `solve`.
-pub fn solve(options: &Options) -> Result<End, Stop> {
+pub fn solve(options: &SolveOptions) -> Result<End, Stop> {
+    let SolveOptions { common: options, timings, mirror } = options;
     let start = Instant::now();
     let mut clock = Clock::start();
     let (sheet, outline) = sheet::read(options)?;
@@ -34,9 +35,9 @@ pub fn solve(options: &Options) -> Result<End, Stop> {
 
     let writes_files = !options.json || options.out.is_some();
     let out = files::directory(&options.sheet, options.out.as_deref());
-    let times = |clock: &Clock| options.timings.then(|| clock.times.clone());
+    let times = |clock: &Clock| timings.then(|| clock.times.clone());
     if writes_files {
-        let mut finished = drawings(&sheet.model, &outline, &outcome, &results, options.mirror)?;
+        let mut finished = drawings(&sheet.model, &outline, &outcome, &results, *mirror)?;
         clock.lap("drawings and tables");
         finished.push(("result.json", result_json(&results, times(&clock).as_ref()).into_bytes()));
         files::write_all(&out, &finished)?;

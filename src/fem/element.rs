@@ -115,8 +115,7 @@ impl Frame {
             |k: &usize| gauge.is_some() && corners[*k] == Point { r: 0.0, z: mesh.cap.center_z };
         let collapse = (0..3).find(at_infinity).or_else(|| (0..3).find(|&k| axis[k]));
 
-        let e1 = [corners[1].r - corners[0].r, corners[1].z - corners[0].z];
-        let e2 = [corners[2].r - corners[0].r, corners[2].z - corners[0].z];
+        let (e1, e2) = sides(&corners);
         let det_abs = wedge(e1, e2).abs();
         assert!(0.0 < det_abs, "degenerate triangle {t}: {corners:?}");
         let metric = [dot(e2, e2) / det_abs, -dot(e1, e2) / det_abs, dot(e1, e1) / det_abs];
@@ -149,11 +148,7 @@ impl Frame {
     #[inline]
     pub fn coefficient(&self, lambda: &[f64; 3], reluctivity: MeterPerHenry) -> (f64, Tensor) {
         match self.gauge {
-            None => {
-                let c = &self.corners;
-                let r = lambda[0] * c[0].r + lambda[1] * c[1].r + lambda[2] * c[2].r;
-                (reluctivity / r, self.metric)
-            }
+            None => (reluctivity / self.position(lambda).r, self.metric),
             Some(gauge) => {
                 let point = self.position(lambda);
                 let (g, y) = gauge.at(point);
@@ -164,9 +159,7 @@ impl Frame {
 
     /// |det J| J⁻¹ M Mᵀ J⁻ᵀ.
     fn folded_metric(&self, m: [Pair; 2]) -> Tensor {
-        let c = &self.corners;
-        let e1 = [c[1].r - c[0].r, c[1].z - c[0].z];
-        let e2 = [c[2].r - c[0].r, c[2].z - c[0].z];
+        let (e1, e2) = sides(&self.corners);
         // Rows of adj J = ±|det J|·J⁻¹; the sign squares away.
         let rows = [[e2[1], -e2[0]], [-e1[1], e1[0]]];
         let p = rows.map(|a| [a[0] * m[0][0] + a[1] * m[1][0], a[0] * m[0][1] + a[1] * m[1][1]]);
@@ -179,12 +172,16 @@ impl Frame {
 
     /// Physical gradient [∂/∂r, ∂/∂z] in the triangle's chart of a function with reference gradient `u`: J⁻ᵀu.
     pub fn chart_gradient(&self, u: Pair) -> Pair {
-        let c = &self.corners;
-        let e1 = [c[1].r - c[0].r, c[1].z - c[0].z];
-        let e2 = [c[2].r - c[0].r, c[2].z - c[0].z];
+        let (e1, e2) = sides(&self.corners);
         let det = wedge(e1, e2);
         [(e2[1] * u[0] - e1[1] * u[1]) / det, (-e2[0] * u[0] + e1[0] * u[1]) / det]
     }
+}
+
+/// The columns of J: the sides from corner 0 to corners 1 and 2 [m].
+#[inline]
+pub fn sides(c: &[Point; 3]) -> (Pair, Pair) {
+    ([c[1].r - c[0].r, c[1].z - c[0].z], [c[2].r - c[0].r, c[2].z - c[0].z])
 }
 
 /// Reference gradients uⁿ of ψ at the three vertices: dψ = Σ λ_n uⁿ.

@@ -4,7 +4,7 @@
 
 use super::element::{Frame, Pair, Tensor, apply, blend, contract};
 use super::quadrature::{Rule, Rules};
-use crate::model::Law;
+use crate::model::{Law, LawPoint};
 
 /// Vertex pairs in storage order.
 pub const PAIRS: [(usize, usize); 6] = [(0, 0), (1, 1), (2, 2), (0, 1), (1, 2), (2, 0)];
@@ -113,31 +113,33 @@ pub struct Saturated {
 
 /// Flux, energy and tangent moments of a triangle with a saturating law, with one inversion of the law a point.
 pub fn saturated(frame: &Frame, rule: &Rule, law: &Law, gradients: &[Pair; 3]) -> Saturated {
-    let (mut flux, mut energy) = ([[0.0; 2]; 3], 0.0);
     let mut tangent = Moments::default();
-    for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
-        let radius = frame.position(lambda).r;
-        let u = blend(lambda, gradients);
-        let at = law.at(flux_density(frame, radius, u));
-        energy += weight * radius * frame.det_abs * at.energy;
-        let su = apply(frame.metric, u);
-        let kappa = weight * at.reluctivity / radius;
-        for m in 0..3 {
-            flux[m][0] += kappa * lambda[m] * su[0];
-            flux[m][1] += kappa * lambda[m] * su[1];
-        }
+    let add = |weight: f64, lambda: &[f64; 3], radius: f64, u: Pair, at: &LawPoint| {
         tangent.add(weight, lambda, tangent_tensor(frame, radius, u, at.reluctivity, at.tangent));
-    }
+    };
+    let (flux, energy) = integrate(frame, rule, law, gradients, add);
     tangent.clear_axis_pairs(frame);
     Saturated { flux, energy, tangent }
 }
 
-/// w_m and ∫ r·w(B)·|det J| alone: what the bound and the identities need.
+/// w_m and ∫ r·w(B)·|det J| alone: what the bound needs.
 pub fn saturating_flux(
     frame: &Frame,
     rule: &Rule,
     law: &Law,
     gradients: &[Pair; 3],
+) -> ([Pair; 3], f64) {
+    integrate(frame, rule, law, gradients, |_, _, _, _, _| {})
+}
+
+/// w_m and ∫ r·w(B)·|det J|; `visit` sees weight, λ, radius, reference gradient and law of every quadrature point.
+#[inline]
+fn integrate(
+    frame: &Frame,
+    rule: &Rule,
+    law: &Law,
+    gradients: &[Pair; 3],
+    mut visit: impl FnMut(f64, &[f64; 3], f64, Pair, &LawPoint),
 ) -> ([Pair; 3], f64) {
     let (mut flux, mut energy) = ([[0.0; 2]; 3], 0.0);
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
@@ -151,6 +153,7 @@ pub fn saturating_flux(
             flux[m][0] += kappa * lambda[m] * su[0];
             flux[m][1] += kappa * lambda[m] * su[1];
         }
+        visit(weight, lambda, radius, u, &at);
     }
     (flux, energy)
 }

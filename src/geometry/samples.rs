@@ -15,7 +15,6 @@ pub fn empty() -> Model {
         materials: vec![Material {
             name: "ferrite".to_string(),
             law: Law::Constant { permeability: 2000.0 },
-            loss: None,
         }],
         core: None,
         gaps: Vec::new(),

@@ -45,7 +45,7 @@ impl<'a> Reader<'a> {
             self.remember(Subject::Material(materials.len()), &fields);
             self.material_name(name);
             let law = self.law(&fields, name.get_ref());
-            materials.push(Material { name: name.get_ref().to_string(), law, loss: None });
+            materials.push(Material { name: name.get_ref().to_string(), law });
         }
         materials
     }

@@ -21,20 +21,11 @@ pub struct Point {
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct MaterialId(pub u16);
 
-/// Steinmetz loss density `k·f^α·B^β` [W/m³], f in Hz, B the peak in T.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Steinmetz {
-    pub coefficient: f64,
-    pub frequency_exponent: f64,
-    pub flux_exponent: f64,
-}
-
 /// A named magnetic material.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Material {
     pub name: String,
     pub law: Law,
-    pub loss: Option<Steinmetz>,
 }
 
 /// How the outer wall of a pot core is stated.

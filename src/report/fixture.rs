@@ -159,7 +159,6 @@ pub(crate) fn model() -> Model {
         materials: vec![Material {
             name: "soft_ferrite".to_string(),
             law: Law::Constant { permeability: 2000.0 },
-            loss: None,
         }],
         core: Some(Core {
             material: MaterialId(0),

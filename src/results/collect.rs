@@ -2,15 +2,13 @@
 
 use super::sample::Sampler;
 use super::{
-    Guaranteed, Results, Round, WindingResult, gaps, hand, hot_spots, ledger, linkage, parts,
+    Guaranteed, ProbeResult, Results, Round, WindingResult, gaps, hand, hot_spots, ledger, linkage,
+    parts,
 };
 use crate::adapt::Outcome;
-use crate::fem::element::Frame;
-use crate::geometry::{Outline, RegionKind};
+use crate::geometry::Outline;
 use crate::model::{Form, Model, PotWall};
-use crate::results::ProbeResult;
-use crate::units::{Joule, Weber};
-use std::f64::consts::TAU;
+use crate::units::{Henry, Joule};
 
 /// Everything that `solve` answers, from the model, its outline and the last round.
 pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
@@ -52,10 +50,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         .collect();
     let incremental_inductance = match is_linear {
         true => value,
-        false => carrier.and_then(|w| {
-            let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
-            linkage::tangent(outcome, &outcome.elements, &unit, &unit)
-        }),
+        false => carrier.and_then(|w| incremental(model, outline, outcome, w, &mut notes)),
     };
     Results {
         title: model.title.clone(),
@@ -86,6 +81,19 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
     }
 }
 
+/// dλ/dI of winding w at the bias; `None` and a note where its linear solve fails.
+fn incremental(
+    model: &Model,
+    outline: &Outline,
+    outcome: &Outcome,
+    w: usize,
+    notes: &mut Vec<String>,
+) -> Option<Henry> {
+    let unit = linkage::load(outcome, &linkage::unit_density(model, outline, w));
+    let found = linkage::tangent(outcome, &outcome.elements, &unit, &unit);
+    found.inspect_err(|why| notes.push(format!("no incremental inductance: {why}"))).ok()
+}
+
 /// Index of the only winding that carries current, if there is just one.
 pub fn single_carrier(model: &Model) -> Option<usize> {
     let mut carrying = (0..model.windings.len()).filter(|&w| model.windings[w].current != 0.0);
@@ -94,7 +102,7 @@ pub fn single_carrier(model: &Model) -> Option<usize> {
 }
 
 /// The middle of the ends is a good best value: the true error sits near half of the interval.
-pub fn guaranteed(low: f64, high: f64) -> Guaranteed {
+fn guaranteed(low: f64, high: f64) -> Guaranteed {
     Guaranteed { value: 0.5 * (low + high), low, high }
 }
 
@@ -166,29 +174,10 @@ fn notes(model: &Model, sampler: &Sampler) -> Vec<String> {
         && let Form::Pot { wall: PotWall::OuterLegsArea(_), .. } = core.form
     {
         notes.push(
-                "the outer legs are not round: they are replaced by a round wall of equal section, a model error of \
-                 per cents that no interval covers"
-                    .to_string(),
-            );
+            "the outer legs are not round: they are replaced by a round wall of equal section, a model error of \
+             per cents that no interval covers"
+                .to_string(),
+        );
     }
     notes
-}
-
-/// 2πN/A_w ∫ ψ dA over all sections of winding w: its flux linkage from ψ_h [Wb].
-pub fn flux_linkage(model: &Model, sampler: &Sampler, w: usize) -> Weber {
-    let (mesh, solution) = (&sampler.outcome.mesh, &sampler.outcome.solution);
-    let n_sections = model.windings[w].sections.len();
-    let (mut psi, mut area) = (vec![0.0; n_sections], vec![0.0; n_sections]);
-    for (t, region) in mesh.regions.iter().enumerate() {
-        if let RegionKind::Winding { winding, section } =
-            sampler.outline.regions[region.0 as usize].kind
-            && winding == w
-        {
-            psi[section] += solution.integral(mesh, t);
-            area[section] += 0.5 * Frame::new(mesh, t).det_abs;
-        }
-    }
-    (model.windings[w].sections.iter().enumerate())
-        .map(|(s, section)| TAU * section.turns * psi[s] / area[s])
-        .sum()
 }

@@ -6,7 +6,7 @@
 
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
-use crate::fem::element::{Pair, blend, contract, dot, wedge};
+use crate::fem::element::{Pair, blend, contract, dot, sides, wedge};
 use crate::fem::moments::{flux_density, rule_of};
 use crate::geometry::{Leg, RegionKind};
 use crate::mesh::Chart;
@@ -34,8 +34,7 @@ pub fn gap_force(model: &Model, sampler: &Sampler, gap: usize) -> Newton {
 /// d(∫Jψ − ∫r·w)/dl of one triangle whose corners move with dz/dl = `speed`, ψ's coefficients held.
 fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
     let (frame, gradients) = sampler.local(t);
-    let c = &frame.corners;
-    let (e1, e2) = ([c[1].r - c[0].r, c[1].z - c[0].z], [c[2].r - c[0].r, c[2].z - c[0].z]);
+    let (e1, e2) = sides(&frame.corners);
     let (d1, d2): (Pair, Pair) = ([0.0, speed[1] - speed[0]], [0.0, speed[2] - speed[0]]);
     // Inside triangles are counter-clockwise: det = |det|.
     let det_rate = wedge(d1, e2) + wedge(e1, d2);
@@ -56,9 +55,9 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
                 Reluctivity::Saturating(law) => {
                     let b = flux_density(&frame, r, u);
                     let square = contract(u, frame.metric, u);
-                    let nu = law.reluctivity(b).0;
-                    r * law.energy_density(b) * det_rate
-                        + 0.5 * nu / r * (stretch - square * det_rate / frame.det_abs)
+                    let at = law.at(b);
+                    r * at.energy * det_rate
+                        + 0.5 * at.reluctivity / r * (stretch - square * det_rate / frame.det_abs)
                 }
             };
     }

@@ -4,7 +4,6 @@ use super::hand::gap_area;
 use super::linkage::Linkage;
 use super::sample::Sampler;
 use super::{GapResult, LedgerRow, force};
-use crate::fem::element::Frame;
 use crate::geometry::{Outline, RegionKind};
 use crate::model::Model;
 use crate::units::{MU0, PerHenry};
@@ -27,7 +26,8 @@ pub fn results(
             let length = model.gaps[gap].length;
             let area = gap_area(model, gap, leg);
             let mmf = mmf_across(sampler, k, area);
-            let flux_density = leg_flux_density(sampler, k, area, length);
+            // Mean B_z in the gap's own cylinder [T].
+            let flux_density = MU0 * mmf / length;
             GapResult {
                 name: name.clone(),
                 gap_based: flux.map(|flux| flux * length / (MU0 * area * mmf.abs())),
@@ -45,17 +45,12 @@ fn mmf_across(sampler: &Sampler, region: usize, area: f64) -> f64 {
     let mut sum = 0.0;
     for (t, id) in mesh.regions.iter().enumerate() {
         if id.0 as usize == region {
-            let (frame, u): (Frame, _) = sampler.local(t);
+            let (frame, u) = sampler.local(t);
             let mean = [0, 1].map(|i| (u[0][i] + u[1][i] + u[2][i]) / 3.0);
             sum += 2.0 * PI * 0.5 * frame.det_abs * frame.chart_gradient(mean)[0];
         }
     }
     sum / (MU0 * area)
-}
-
-/// Mean B_z in the gap's own cylinder [T].
-fn leg_flux_density(sampler: &Sampler, region: usize, area: f64, length: f64) -> f64 {
-    MU0 * mmf_across(sampler, region, area) / length
 }
 
 /// F_L: the one factor that makes N²/(R_core + R_gap,plain/F) equal to L, R_core from the ledger's magnetic regions.

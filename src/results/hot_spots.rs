@@ -16,8 +16,10 @@ const RULE_CLIMBING: [usize; 2] = [4, 16];
 const RULE_TOLD: [usize; 2] = [12, 32];
 /// Moves of one climb before it is called done; a climb is a few radii long.
 const N_MOVES_MAX: usize = 40;
-/// Starts and ends of climbs before the search ends with fewer spots than wanted; most lead to a place already found.
-const N_TRIED_MAX: usize = 30;
+/// Climbs before the search ends with fewer spots than wanted, at the least and for each wanted one; most starts lead to a
+/// place already found.
+const N_CLIMBS_MIN: usize = 16;
+const N_CLIMBS_A_SPOT: usize = 3;
 /// A climb ends when steps of this share of the radius no longer help.
 const FINEST_STEP: f64 = 0.06;
 
@@ -30,11 +32,14 @@ pub fn find(model: &Model, sampler: &Sampler) -> Vec<HotSpot> {
     let search = Search { sampler, radius, offsets: offsets(radius, RULE_CLIMBING) };
     let told = Search { sampler, radius, offsets: offsets(radius, RULE_TOLD) };
     let (mut found, mut tried): (Vec<Disc>, Vec<Point>) = (Vec::new(), Vec::new());
+    let n_climbs_max = N_CLIMBS_MIN.max(N_CLIMBS_A_SPOT * count);
+    let mut n_climbs = 0;
     for (triangle, at) in candidates(sampler, radius) {
-        if count <= found.len() || N_TRIED_MAX <= tried.len() {
+        if count <= found.len() || n_climbs == n_climbs_max {
             break;
         }
         if search.is_apart(&tried, at) {
+            n_climbs += 1;
             let disc = search.climb(search.disc(triangle, at));
             if found.iter().all(|other| search.are_apart(other.at, disc.at)) {
                 found.push(told.disc(disc.triangle, disc.at));
@@ -105,7 +110,7 @@ impl Search<'_> {
                 }
                 let at = Point { r: (disc.at.r + step * dr).max(0.0), z: disc.at.z + step * dz };
                 let mesh = &sampler.outcome.mesh;
-                let (t, _) = locate(mesh, &sampler.edge_triangles, disc.triangle, at)?;
+                let (t, _) = locate(mesh, &sampler.outcome.fans.edge_triangles, disc.triangle, at)?;
                 (body(region(sampler, t)) == own).then(|| (self.disc(t, at), (-dr, -dz)))
             };
             let around = [(1.0, 0.0), (-1.0, 0.0), (0.0, 1.0), (0.0, -1.0)];
@@ -123,6 +128,7 @@ impl Search<'_> {
     /// Mean |B| over the part of the disc that lies in the same body.
     fn mean(&self, t: usize, center: Point) -> Tesla {
         let mesh = &self.sampler.outcome.mesh;
+        let edge_triangles = &self.sampler.outcome.fans.edge_triangles;
         let own = body(region(self.sampler, t));
         let (mut sum, mut n, mut last) = (0.0, 0.0, t);
         let (mut local_of, mut local) = (t, self.sampler.local(t));
@@ -132,7 +138,7 @@ impl Search<'_> {
                 continue;
             }
             // Neighbours on the ring are neighbours in the mesh: walk on from the last one.
-            let Some((found, lambda)) = locate(mesh, &self.sampler.edge_triangles, last, at) else {
+            let Some((found, lambda)) = locate(mesh, edge_triangles, last, at) else {
                 continue;
             };
             last = found;

@@ -1,15 +1,15 @@
 //! Flux linkages and what follows from them: apparent and incremental inductance.
 
 use super::Guaranteed;
-use super::collect::{flux_linkage, single_carrier};
+use super::collect::single_carrier;
 use super::sample::Sampler;
 use crate::adapt::Outcome;
+use crate::fem::element::Frame;
 use crate::fem::{Coefficients, Element, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
-use crate::mesh::fans::Fans;
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
-use crate::sparse::{Multilevel, Stop, Swept, Workspace};
+use crate::sparse::{CgError, Multilevel, Stop, Swept, Workspace};
 use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
@@ -43,6 +43,25 @@ pub fn linkages(model: &Model, sampler: &Sampler) -> Vec<Linkage> {
         .collect()
 }
 
+/// 2πN/A_w ∫ ψ dA over all sections of winding w: its flux linkage from ψ_h [Wb].
+fn flux_linkage(model: &Model, sampler: &Sampler, w: usize) -> Weber {
+    let (mesh, solution) = (&sampler.outcome.mesh, &sampler.outcome.solution);
+    let n_sections = model.windings[w].sections.len();
+    let (mut psi, mut area) = (vec![0.0; n_sections], vec![0.0; n_sections]);
+    for (t, region) in mesh.regions.iter().enumerate() {
+        if let RegionKind::Winding { winding, section } =
+            sampler.outline.regions[region.0 as usize].kind
+            && winding == w
+        {
+            psi[section] += solution.integral(mesh, t);
+            area[section] += 0.5 * Frame::new(mesh, t).det_abs;
+        }
+    }
+    (model.windings[w].sections.iter().enumerate())
+        .map(|(s, section)| TAU * section.turns * psi[s] / area[s])
+        .sum()
+}
+
 /// λ/I with the ends of λ; without guaranteed ends the interval is the value itself.
 pub fn apparent(model: &Model, linkage: &Linkage, w: usize) -> Guaranteed {
     let current = model.windings[w].current;
@@ -72,6 +91,8 @@ pub fn load(outcome: &Outcome, density: &[AmperePerSquareMeter]) -> Vec<f64> {
 
 /// Relative error of the incremental inductance that its linear solve may add; far below any interval.
 const TANGENT_DECREASE: f64 = 1e-10;
+/// CG iterations of that solve before giving up; 20–40 are usual.
+const N_TANGENT_MAX: usize = 2000;
 
 /// dλ_w/dI_w at the bias from the tangent problem A_t y = b, λ' = 2π b_w·y (eq. 14) [H].
 ///
@@ -83,14 +104,14 @@ pub fn tangent(
     elements: &[Element],
     unit: &[f64],
     rate: &[f64],
-) -> Option<Henry> {
-    let fans = Fans::new(&outcome.mesh);
-    let matrix = Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &fans, elements));
+) -> Result<Henry, CgError> {
+    let matrix =
+        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.fans, elements));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
-    let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: 2000 };
-    Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0).ok()?;
-    Some(TAU * dot(unit, &y))
+    let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };
+    Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0)?;
+    Ok(TAU * dot(unit, &y))
 }
 
 fn sorted([a, b]: [f64; 2]) -> [f64; 2] {

@@ -13,7 +13,7 @@ mod ripple;
 pub mod sample;
 
 pub use collect::{collect, single_carrier};
-pub use requirements::{check_requirements, scaled_density};
+pub use requirements::check_requirements;
 pub use ripple::ripple;
 
 use crate::units::{Ampere, CubicMeter, Henry, Joule, Meter, Newton, PerHenry, Tesla, Weber};

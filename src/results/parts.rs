@@ -25,13 +25,14 @@ pub fn results(model: &Model, sampler: &Sampler) -> Vec<PartResult> {
     (sampler.outline.regions.iter().enumerate())
         .filter(|(_, region)| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_)))
         .map(|(k, region)| {
-            let triangles: Vec<usize> = triangles_of(sampler, k);
+            let triangles = triangles_of(sampler, k);
             let samples = samples(sampler, &sampler.outcome.solution, &triangles);
-            let exceeded = exceeded(samples.clone());
+            let volume = samples.iter().map(|s| s.1).sum();
+            let exceeded = exceeded(samples);
             let knee = region.material.and_then(|id| model.materials[id.0 as usize].law.knee());
             PartResult {
                 name: region.name.clone(),
-                volume: samples.iter().map(|s| s.1).sum(),
+                volume,
                 energy: triangles.iter().map(|&t| sampler.work_and_energy(t).1).sum(),
                 exceeded,
                 margin: knee.map(|knee| 1.0 - exceeded[1] / knee),

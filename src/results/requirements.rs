@@ -14,7 +14,7 @@ use std::f64::consts::TAU;
 /// Current density of every region when winding w carries `current` and all other currents scale along.
 ///
 /// A winding without current in the sheet carries its `current` alone: there is nothing to scale.
-pub fn scaled_density(
+fn scaled_density(
     model: &Model,
     outline: &Outline,
     w: usize,
@@ -69,7 +69,7 @@ fn check(
         }
         InductanceKind::Incremental => {
             let rate: Vec<f64> = load(outcome, &density).iter().map(|b| b / current).collect();
-            let slope = tangent(outcome, &again.elements, &unit, &rate).unwrap_or(f64::NAN);
+            let slope = tangent(outcome, &again.elements, &unit, &rate)?;
             // Where nothing saturates both inductances are one number, and its ends are guaranteed.
             let ends = match is_alone && outcome.coefficients.is_linear() {
                 true => Some(apparent_ends(outcome, &density, &again, current)?),

@@ -4,10 +4,11 @@ use super::linkage::unit_density;
 use super::sample::Sampler;
 use super::{RippleCurrent, RipplePart, RippleResult, parts};
 use crate::adapt::Outcome;
-use crate::adapt::again::{at_density, linkage_width};
+use crate::adapt::again::{at_density, linkage_width, scaled};
 use crate::geometry::Outline;
 use crate::model::{Model, Winding};
 use crate::solve::{Solution, SolveError};
+use crate::sparse::cg::dot;
 use crate::units::Ampere;
 
 /// The field at both ends of the ripple, all windings in phase; `None` without a ripple.
@@ -52,20 +53,49 @@ fn current_at(winding: &Winding, share: f64) -> Ampere {
     winding.current + share * winding.ripple * if winding.current < 0.0 { -1.0 } else { 1.0 }
 }
 
+/// The field with every winding at [`current_at`] this share of its ripple.
 fn field_at(
     model: &Model,
     outline: &Outline,
     outcome: &mut Outcome,
     share: f64,
 ) -> Result<Solution, SolveError> {
-    let mut density: Vec<f64> = outline.regions.iter().map(|r| r.current_density).collect();
+    let mut density = vec![0.0; outline.regions.len()];
     for (w, winding) in model.windings.iter().enumerate() {
-        let change = current_at(winding, share) - winding.current;
+        let current = current_at(winding, share);
         for (j, unit) in density.iter_mut().zip(unit_density(model, outline, w)) {
-            *j += change * unit;
+            *j += current * unit;
         }
     }
+    // A ripple of twice the bias ends at 0 A: a start that is not scaled along would be infinitely far from that field.
+    let of_sheet = &outcome.coefficients.current_density;
+    let factor = dot(&density, of_sheet) / dot(of_sheet, of_sheet);
+    let start = scaled(&outcome.solution, factor);
     let width = linkage_width(outcome.bound.relative_width());
-    let start = outcome.solution.clone();
     Ok(at_density(outcome, &density, &start, width)?.solution)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::geometry::{outline, samples};
+    use crate::model::Law;
+
+    #[test]
+    fn a_ripple_of_twice_the_bias_swings_from_no_field_to_the_peak() {
+        for law in [Law::Constant { permeability: 2000.0 }, Law::saturation(2000.0, 0.4).unwrap()] {
+            let mut model = samples::r1();
+            model.materials[0].law = law;
+            model.accuracy.interval = 0.01;
+            model.windings[0].ripple = 2.0 * model.windings[0].current;
+            let outline = outline(&model).unwrap();
+            let mut outcome = crate::adapt::run(&model, &outline, &mut |_| {}).unwrap();
+            let found = ripple(&model, &outline, &mut outcome).unwrap().unwrap();
+            assert_eq!(found.currents[0].trough, 0.0);
+            for part in found.parts {
+                assert!(0.0 < part.peak);
+                assert_eq!(part.swing, part.peak, "{}", part.name);
+            }
+        }
+    }
 }

@@ -2,12 +2,11 @@
 
 use crate::adapt::Outcome;
 use crate::fem::Reluctivity;
-use crate::fem::element::{Frame, Pair, blend, contract};
+use crate::fem::element::{Frame, Pair, blend};
 use crate::fem::evaluate;
-use crate::fem::moments::rule_of;
+use crate::fem::moments::{flux_density, linear_energy, rule_of};
 use crate::fem::quadrature::Rules;
 use crate::geometry::Outline;
-use crate::mesh::fans::edge_triangles;
 use crate::model::Point;
 use crate::results::ProbePoint;
 use crate::units::{AmperePerMeter, Joule, MU0, Tesla};
@@ -31,14 +30,12 @@ pub struct Sampler<'a> {
     pub outcome: &'a Outcome,
     pub outline: &'a Outline,
     pub rules: Rules,
-    pub edge_triangles: Vec<[u32; 2]>,
 }
 
 impl<'a> Sampler<'a> {
     /// Prepares a field for questions.
     pub fn new(outline: &'a Outline, outcome: &'a Outcome) -> Sampler<'a> {
-        let edge_triangles = edge_triangles(&outcome.mesh);
-        Sampler { outcome, outline, rules: Rules::working(), edge_triangles }
+        Sampler { outcome, outline, rules: Rules::working() }
     }
 
     /// Law of triangle t.
@@ -70,8 +67,7 @@ impl<'a> Sampler<'a> {
         let (frame, gradients) = self.local(t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU
-                    * crate::fem::moments::linear_energy(&self.outcome.elements[t].k, &gradients);
+                let energy = TAU * linear_energy(&self.outcome.elements[t].k, &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {
@@ -80,10 +76,11 @@ impl<'a> Sampler<'a> {
                 for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
                     let r = frame.position(lambda).r;
                     let u = blend(lambda, &gradients);
-                    let b = (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / r;
+                    let b = flux_density(&frame, r, u);
+                    let at = law.at(b);
                     let volume = TAU * weight * r * frame.det_abs;
-                    work += volume * law.reluctivity(b).0 * b * b;
-                    energy += volume * law.energy_density(b);
+                    work += volume * at.reluctivity * b * b;
+                    energy += volume * at.energy;
                 }
                 (work, energy)
             }
@@ -94,7 +91,7 @@ impl<'a> Sampler<'a> {
     pub fn probe(&self, at: Point) -> Option<ProbePoint> {
         let mesh = &self.outcome.mesh;
         let (chart, position) = evaluate::to_chart(mesh, at);
-        let (t, lambda) = evaluate::find(mesh, &self.edge_triangles, chart, position)?;
+        let (t, lambda) = evaluate::find(mesh, &self.outcome.fans.edge_triangles, chart, position)?;
         let [b_r, b_z] = self.flux_density(t, &lambda);
         let nu: AmperePerMeter = self.reluctivity_at(t, b_r.hypot(b_z));
         let (vertex, edge) = self.outcome.solution.local(mesh, t);

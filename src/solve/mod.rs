@@ -2,7 +2,7 @@
 
 mod newton;
 
-pub use newton::{Effort, SolveError, System, solve, update_tangent};
+pub use newton::{Effort, SolveError, System, solve};
 
 use crate::fem::element::{Frame, Pair, vertex_gradients};
 use crate::mesh::Mesh;
@@ -17,6 +17,11 @@ pub struct Solution {
 }
 
 impl Solution {
+    /// The field 0.
+    pub fn zero(mesh: &Mesh) -> Solution {
+        Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] }
+    }
+
     /// Values at the corners and bubble coefficients on the edges of triangle t.
     #[inline]
     pub fn local(&self, mesh: &Mesh, t: usize) -> ([f64; 3], [f64; 3]) {

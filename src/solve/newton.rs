@@ -12,7 +12,7 @@ use crate::sparse::{
 };
 use rayon::prelude::*;
 
-/// Newton steps before giving up; the issue of hard cases is ≤ 25, the rest is reserve.
+/// Newton steps before giving up; the hardest laws of `tests/it/saturation` may need 25, the rest is reserve.
 const N_NEWTON_MAX: usize = 60;
 /// Halvings of one step before giving up: 2^-40 is far below any useful step.
 const N_HALVINGS_MAX: usize = 40;
@@ -23,6 +23,8 @@ const N_CG_MAX: usize = 2000;
 const N_CG_STALE: usize = 25;
 /// F rounds to about this share of itself: a smaller predicted decrease cannot be told from noise.
 const ROUNDING: f64 = 1e-15;
+/// Where no step lowers F, a predicted decrease below this share of 2|F| is the rounding of F's sum and means convergence.
+const STALL_ROUNDING: f64 = 1e-12;
 /// Sufficient decrease of F, as a share of the predicted one (Armijo).
 const ARMIJO: f64 = 1e-4;
 
@@ -144,7 +146,7 @@ fn newton(
         let before = state.value;
         let Some(next) = backtrack(&problem, elements, x, &step, predicted, before) else {
             // No step lowers F: at the rounding floor that is convergence, elsewhere a stall.
-            return match predicted <= 1e-12 * scale {
+            return match predicted <= STALL_ROUNDING * scale {
                 true => Ok(effort),
                 false => Err(stalled(&effort, predicted, scale, decrease)),
             };
@@ -271,15 +273,6 @@ fn evaluate_saturating(
         (flux, energy, Element::new(&frame, &tangent))
     };
     triangles.par_iter().with_min_len(128).map(part).collect()
-}
-
-/// Sets the elements of all saturating triangles to the tangent at `solution`.
-pub fn update_tangent(system: &System, elements: &mut [Element], solution: &Solution) {
-    let triangles = saturating_triangles(system);
-    let parts = evaluate_saturating(system, &triangles, solution);
-    for (&t, part) in triangles.iter().zip(&parts) {
-        elements[t as usize] = part.2;
-    }
 }
 
 /// How each vertex unknown follows from its parents: ½, ½; next to the axis ¼ of the off-axis end, since ψ ∝ t².

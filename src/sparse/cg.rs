@@ -94,7 +94,9 @@ pub fn conjugate_gradients(
             x[i] += alpha * p[i];
             r[i] -= alpha * q[i];
         }
-        decrease = alpha * rz / dot(b, x).max(scale);
+        // From a start on the wrong side of zero bᵀx is negative at first: nothing to measure against yet.
+        let size = dot(b, x).max(scale);
+        decrease = if 0.0 < size { alpha * rz / size } else { f64::INFINITY };
         if decrease <= stop.decrease {
             return Ok(Convergence { n_iterations: iteration + 1, decrease });
         }

@@ -4,6 +4,7 @@ pub mod saturate;
 
 use crate::adapt::AdaptError;
 use crate::solve::SolveError;
+use crate::sparse::CgError;
 use crate::units::Ampere;
 
 /// Why a study gave no table.
@@ -17,6 +18,6 @@ pub enum StudyError {
         "no winding carries current in the sheet; give the first one a current, the study scales it"
     )]
     NoCurrent,
-    #[error("the tangent problem at {current:.4} A did not converge")]
-    Tangent { current: Ampere },
+    #[error("the tangent problem at {current:.4} A: {source}")]
+    Tangent { current: Ampere, source: CgError },
 }

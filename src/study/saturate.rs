@@ -1,7 +1,7 @@
 //! Inductance against current: one mesh, points where the curve bends, currents at which the inductance has fallen.
 //!
-//! One adaptive run at the highest current gives the mesh, and the lowest current refines it where that needs more; all
-//! other points are warm-started solves on it, each with its own guaranteed coenergy. All currents scale with that of
+//! One adaptive run at the highest current gives the mesh; a point whose interval is too wide there refines it, and all
+//! rows are solved again. The points are warm-started solves, each with its own guaranteed coenergy. All currents scale with that of
 //! the first winding that carries some.
 
 mod bench;

@@ -244,7 +244,7 @@ mod tests {
     const MM: (i32, f64) = (-3, 1.0);
 
     #[test]
-    fn reads_the_units_of_the_design_page_with_and_without_a_space() {
+    fn reads_every_unit_with_and_without_a_space() {
         assert_eq!(read("0.3 mm", Dimension::Length, MM), Ok(0.3e-3));
         assert_eq!(read("0.3mm", Dimension::Length, MM), Ok(0.3e-3));
         assert_eq!(read(" 12 mil ", Dimension::Length, MM), Ok(0.3048e-3));

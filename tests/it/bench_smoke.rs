@@ -13,7 +13,7 @@ mod stages;
 use cases::{CASES, Goal};
 use iterations::{PERMEABILITIES, THIN_GAP_MM, count, count_pot};
 
-/// The most iterations that may be needed for it: the design's aim at every size, contrast and gap.
+/// The most iterations that may be needed for it: the aim at every size, contrast and gap.
 const N_ITERATIONS_AIM: usize = 40;
 
 #[test]
@@ -65,7 +65,7 @@ fn cg_iterations_stay_below_the_aim_for_any_size_contrast_and_gap() {
                 let what = format!("µr {permeability}, gap {gap_mm} mm: {count:?}");
                 assert!(count.by_energy <= N_ITERATIONS_AIM, "{what}");
                 assert!(count.by_norm <= N_ITERATIONS_AIM, "{what}");
-                // Warm-started rounds need a few iterations only; the design measured 4.
+                // Warm-started rounds need a few iterations only; 4 were measured.
                 assert!(count.warm <= N_ITERATIONS_AIM / 2, "{what}");
             }
         }

@@ -90,7 +90,7 @@ fn intervals_of_the_rod_hold_the_reference_and_are_tight() {
 
 #[test]
 fn the_gapped_pot_needs_few_unknowns() {
-    // Design 4.8 reached 2 852 and 7 921; the rest is room for another first mesh.
+    // 2 852 and 7 921 were reached once; the rest is room for another first mesh.
     for (width, most) in [(1e-3, 3_500), (1e-4, 9_000)] {
         let n = Run::new(R1.model(width)).outcome.rounds.last().unwrap().n_unknowns;
         assert!(n <= most, "{n} unknowns at {width}, at most {most} wanted");
@@ -188,8 +188,7 @@ fn loosely_solved(run: &Run, decrease: f64) -> Solution {
 }
 
 fn zero(run: &Run) -> Solution {
-    let mesh = &run.outcome.mesh;
-    Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] }
+    Solution::zero(&run.outcome.mesh)
 }
 
 /// The field with every unknown changed by up to `size` of its own value and of the largest one.
@@ -257,10 +256,7 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
             let mut elements: Vec<Element> = Vec::new();
             let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
             update_constant(&mesh, &coefficients, &rules, &all, &mut elements);
-            let mut solution = Solution {
-                vertex: vec![0.0; mesh.points.len()],
-                edge: vec![0.0; mesh.edges.len()],
-            };
+            let mut solution = Solution::zero(&mesh);
             let fans = Fans::new(&mesh);
             let system = System {
                 mesh: &mesh,

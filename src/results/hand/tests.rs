@@ -12,11 +12,7 @@ use std::f64::consts::PI;
 fn choke() -> Model {
     Model {
         title: "choke".into(),
-        materials: vec![Material {
-            name: "m".into(),
-            law: Law::Constant { permeability: 2000.0 },
-            loss: None,
-        }],
+        materials: vec![Material { name: "m".into(), law: Law::Constant { permeability: 2000.0 } }],
         core: Some(Core {
             material: MaterialId(0),
             form: Form::Pot {

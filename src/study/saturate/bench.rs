@@ -53,8 +53,7 @@ impl<'a> Bench<'a> {
         let mut coefficients = adapt::coefficients(model, &outline.regions);
         coefficients.current_density = along.iter().map(|j| j * to).collect();
         let mesh = first_mesh(outline).map_err(adapt::AdaptError::Mesh)?;
-        let start =
-            Solution { vertex: vec![0.0; mesh.points.len()], edge: vec![0.0; mesh.edges.len()] };
+        let start = Solution::zero(&mesh);
         let rules = Rules::working();
         let outcome =
             adapt::rounds(mesh, coefficients, start, &rules, &model.accuracy, &mut |_| {})?;
@@ -166,7 +165,7 @@ impl<'a> Bench<'a> {
     /// dλ/dI along the scale at the outcome's field [H].
     fn slope(&self) -> Result<Henry, StudyError> {
         tangent(&self.outcome, &self.outcome.elements, &self.load_alone, &self.load_along)
-            .ok_or(StudyError::Tangent { current: self.current })
+            .map_err(|source| StudyError::Tangent { current: self.current, source })
     }
 
     /// dλ/dI at `current`, for finding roots; the field is kept as a start value.

@@ -6,7 +6,7 @@ use gapwright::model::{BhTable, Interpolation, Law, Model};
 use gapwright::solve::Solution;
 use gapwright::units::MU0;
 
-/// Steps that the issue of hard cases allows.
+/// Newton steps that the hardest laws may need.
 const N_STEPS_MAX: usize = 25;
 
 /// Numbers in 0 … 1 by a linear congruence: the same in every run.

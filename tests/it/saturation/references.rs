@@ -68,7 +68,7 @@ fn solenoid(field: f64) -> Model {
         material: MaterialId(material),
         outline: mm(points),
     };
-    let material = |name: &str, law| Material { name: name.to_string(), law, loss: None };
+    let material = |name: &str, law| Material { name: name.to_string(), law };
     let steel = BhTable::new(STEEL_H.to_vec(), STEEL_B.to_vec(), Interpolation::Linear).unwrap();
     let yoke = [
         (0.0, -30.0),
