@@ -76,7 +76,7 @@ pub struct Options {
     /// Print mistakes only; the files are written all the same
     #[arg(long)]
     pub quiet: bool,
-    /// Add the rounds and the time of every stage
+    /// Add the time of every stage, and the rounds of solve; nothing is timed in check
     #[arg(long)]
     pub timings: bool,
     /// Another B-H table for a material of the sheet; may be repeated

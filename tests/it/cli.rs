@@ -120,6 +120,9 @@ fn stage_times_appear_only_on_request() {
     let output = run(&["solve", "--json", "--timings"], &sheet);
     let value: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
     assert!(3 < value["timings"].as_array().unwrap().len());
+    let screen = run(&["solve", "--timings"], &sheet);
+    let screen = String::from_utf8(screen.stdout).unwrap();
+    assert!(screen.contains("\nRounds\n") && screen.contains("\nStage times\n"), "{screen}");
 }
 
 #[test]
@@ -314,7 +317,13 @@ fn saturate_writes_its_table_plot_and_json_and_shows_them() {
     check_code(&quiet, 0);
     assert!(quiet.stdout.is_empty() && quiet.stderr.is_empty());
 
-    let json = run(&[&SHORT_TABLE[..], &["--json"]].concat(), &sheet);
+    let timed = run(&[&SHORT_TABLE[..], &["--timings"]].concat(), &sheet);
+    assert!(String::from_utf8_lossy(&timed.stdout).contains("\nStage times\n"));
+    let timed = run(&[&SHORT_TABLE[..], &["--timings", "--json"]].concat(), &sheet);
+    assert!(1 < json_of(&timed)["timings"].as_array().unwrap().len());
+
+    let json =
+        run(&[&SHORT_TABLE[..], &["--json", "--out", out.to_str().unwrap()]].concat(), &sheet);
     assert!(json.stdout == std::fs::read(out.join("saturate.json")).unwrap());
     assert_eq!(json_of(&json)["rows"].as_array().unwrap().len(), 5);
 }
