@@ -3,6 +3,7 @@
 //! Every stage below is called with values and returns values; nothing else in the program touches the system.
 
 mod check;
+mod clock;
 mod files;
 mod options;
 mod saturate;

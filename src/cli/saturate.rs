@@ -1,5 +1,6 @@
 //! The command `saturate`: inductance against current, from the sheet to files and screen.
 
+use super::clock::Clock;
 use super::options::SaturateOptions;
 use super::{End, Stop, files, screen, sheet};
 use gapwright::adapt::AdaptError;
@@ -13,8 +14,10 @@ use std::time::Instant;
 /// Runs `saturate`.
 pub fn saturate(options: &SaturateOptions) -> Result<End, Stop> {
     let start = Instant::now();
+    let mut clock = Clock::start();
     let common = &options.common;
     let (sheet, outline) = sheet::read(common)?;
+    clock.lap("sheet and section");
     let wish = Wish { to: options.to, n_points: usize::from(options.points) };
     let mut progress = screen::Progress::new(common.quiet || common.json);
     let found = study::saturate(&sheet.model, &outline, &wish, &mut |done, wanted| {
@@ -22,21 +25,27 @@ pub fn saturate(options: &SaturateOptions) -> Result<End, Stop> {
     });
     drop(progress);
     let found = found.map_err(stop)?;
+    clock.lap("solves of the table");
     let seconds = start.elapsed().as_secs_f64();
 
     let out = files::directory(&common.sheet, common.out.as_deref());
     if !common.json || common.out.is_some() {
-        let finished = [
+        let drawn = [
             ("saturate.csv", saturate_csv(&found).into_bytes()),
-            ("saturate.json", saturate_json(&found).into_bytes()),
             ("saturate.svg", saturate_svg(&found).into_bytes()),
         ];
+        clock.lap("drawings and tables");
+        let json = saturate_json(&found, clock.asked(common).as_ref()).into_bytes();
+        let finished: Vec<_> = drawn.into_iter().chain([("saturate.json", json)]).collect();
         files::write_all(&out, &finished)?;
+        clock.lap("writing");
     }
+    let times = clock.asked(common);
     if common.json {
-        screen::print(&saturate_json(&found))?;
+        screen::print(&saturate_json(&found, times.as_ref()))?;
     } else if !common.quiet {
-        let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: None };
+        let look =
+            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
         screen::print(&saturate_screen(&found, &look))?;
         screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
     }

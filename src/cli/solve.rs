@@ -1,5 +1,6 @@
 //! The command `solve`: the main job, from the sheet to files and screen.
 
+use super::clock::Clock;
 use super::files::Finished;
 use super::options::{Options, SolveOptions};
 use super::{End, Stop, files, screen, sheet};
@@ -7,7 +8,6 @@ use gapwright::adapt::{self, AdaptError, Event, Outcome, Stage};
 use gapwright::geometry::Outline;
 use gapwright::mesh::MeshError;
 use gapwright::model::Model;
-use gapwright::report::StageTimes;
 use gapwright::report::csv;
 use gapwright::report::field_map::{FieldMap, field_svg};
 use gapwright::report::json::result_json;
@@ -21,7 +21,7 @@ use std::time::Instant;
 
 /// Runs `solve`.
 pub fn solve(options: &SolveOptions) -> Result<End, Stop> {
-    let SolveOptions { common: options, timings, mirror } = options;
+    let SolveOptions { common: options, mirror } = options;
     let start = Instant::now();
     let mut clock = Clock::start();
     let (sheet, outline) = sheet::read(options)?;
@@ -35,15 +35,17 @@ pub fn solve(options: &SolveOptions) -> Result<End, Stop> {
 
     let writes_files = !options.json || options.out.is_some();
     let out = files::directory(&options.sheet, options.out.as_deref());
-    let times = |clock: &Clock| timings.then(|| clock.times.clone());
     if writes_files {
         let mut finished = drawings(&sheet.model, &outline, &outcome, &results, *mirror)?;
         clock.lap("drawings and tables");
-        finished.push(("result.json", result_json(&results, times(&clock).as_ref()).into_bytes()));
+        finished.push((
+            "result.json",
+            result_json(&results, clock.asked(options).as_ref()).into_bytes(),
+        ));
         files::write_all(&out, &finished)?;
         clock.lap("writing");
     }
-    let times = times(&clock);
+    let times = clock.asked(options);
     if options.json {
         screen::print(&result_json(&results, times.as_ref()))?;
     } else if !options.quiet {
@@ -158,28 +160,5 @@ fn end_of(results: &Results) -> End {
         (false, _) => End::NotReached,
         (true, false) => End::NotMet,
         (true, true) => End::Done,
-    }
-}
-
-/// Laps of the run.
-struct Clock {
-    last: Instant,
-    times: StageTimes,
-}
-
-impl Clock {
-    fn start() -> Clock {
-        Clock { last: Instant::now(), times: StageTimes::default() }
-    }
-
-    /// Adds the time since the last lap to `stage`.
-    fn lap(&mut self, stage: &str) {
-        let now = Instant::now();
-        let seconds = (now - self.last).as_secs_f64();
-        match self.times.stages.iter_mut().find(|(name, _)| name == stage) {
-            Some((_, sum)) => *sum += seconds,
-            None => self.times.stages.push((stage.to_string(), seconds)),
-        }
-        self.last = now;
     }
 }

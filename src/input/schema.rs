@@ -395,6 +395,12 @@ mod tests {
     }
 
     #[test]
+    fn the_schema_file_beside_the_code_is_up_to_date() {
+        let text = serde_json::to_string_pretty(&schema()).unwrap() + "\n";
+        expect_test::expect_file!["sheet.schema.json"].assert_eq(&text);
+    }
+
+    #[test]
     fn null_is_nowhere_allowed() {
         assert!(!schema().to_string().contains("null"));
     }

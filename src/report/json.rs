@@ -2,7 +2,7 @@
 
 mod fill;
 
-pub(super) use fill::require_entries;
+pub(super) use fill::{require_entries, timing_entries};
 
 use super::StageTimes;
 use crate::results::Results;
@@ -269,7 +269,7 @@ struct RipplePartEntry {
 
 #[derive(Serialize, JsonSchema)]
 #[serde(deny_unknown_fields)]
-struct TimingEntry {
+pub(super) struct TimingEntry {
     stage: String,
     seconds: f64,
 }

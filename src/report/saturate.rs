@@ -6,11 +6,13 @@ mod tests;
 
 pub use plot::saturate_svg;
 
+use super::StageTimes;
 use super::csv::field;
-use super::json::{RequireEntry, require_entries};
+use super::json::{RequireEntry, TimingEntry, require_entries, timing_entries};
 use super::numbers::{clip, grouped, percent, wrap};
 use super::terminal::{
     BOLD, Look, NAME_WIDTH, WARN, WIDTH, heading, notes, paint, push, push_table, requirement_line,
+    stage_times,
 };
 use crate::study::saturate::{Row, Saturation};
 use crate::units::engineering;
@@ -129,6 +131,9 @@ struct SaturateFile {
     require: Vec<RequireEntry>,
     work: WorkEntry,
     notes: Vec<String>,
+    /// Seconds of each stage, only with --timings.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    timings: Option<Vec<TimingEntry>>,
 }
 
 #[derive(Serialize, JsonSchema)]
@@ -169,8 +174,8 @@ impl RowEntry {
     }
 }
 
-/// The text of `saturate.json`: equal tables give equal bytes.
-pub fn saturate_json(found: &Saturation) -> String {
+/// The text of `saturate.json`: equal tables give equal bytes; stage times only when the caller measured some.
+pub fn saturate_json(found: &Saturation, times: Option<&StageTimes>) -> String {
     let file = SaturateFile {
         program: concat!("gapwright ", env!("CARGO_PKG_VERSION")).to_string(),
         title: found.title.clone(),
@@ -189,6 +194,7 @@ pub fn saturate_json(found: &Saturation) -> String {
             meshes: found.work.n_meshes,
         },
         notes: shortfall(found).into_iter().chain(found.notes.iter().cloned()).collect(),
+        timings: times.map(timing_entries),
     };
     // The shape has text keys and finite depth, so serialising cannot fail; an empty object would break the schema test.
     let mut text = serde_json::to_string_pretty(&file).unwrap_or_else(|_| "{}".to_string());
@@ -250,6 +256,9 @@ pub fn saturate_screen(found: &Saturation, look: &Look) -> String {
     push(&mut text, &work);
     table(&mut text, found, look);
     notes(&mut text, &found.notes, look);
+    if let Some(times) = look.times {
+        stage_times(&mut text, times, look);
+    }
     text
 }
 

@@ -135,6 +135,11 @@ fn timings(text: &mut String, results: &Results, times: &StageTimes, look: &Look
     let unit = if results.is_linear && results.inductance.is_some() { "H" } else { "J" };
     let (low, high) = (format!("low [{unit}]"), format!("high [{unit}]"));
     push_table(text, &["", "unknowns", "Newton", "CG", &low, &high], &rows);
+    stage_times(text, times, look);
+}
+
+/// The time of every stage and its share of their sum.
+pub(super) fn stage_times(text: &mut String, times: &StageTimes, look: &Look) {
     heading(text, "Stage times", look);
     let whole: f64 = times.stages.iter().map(|(_, s)| s).sum();
     let rows: Vec<Vec<String>> = times

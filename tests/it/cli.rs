@@ -120,6 +120,9 @@ fn stage_times_appear_only_on_request() {
     let output = run(&["solve", "--json", "--timings"], &sheet);
     let value: serde_json::Value = serde_json::from_slice(&output.stdout).unwrap();
     assert!(3 < value["timings"].as_array().unwrap().len());
+    let screen = run(&["solve", "--timings"], &sheet);
+    let screen = String::from_utf8(screen.stdout).unwrap();
+    assert!(screen.contains("\nRounds\n") && screen.contains("\nStage times\n"), "{screen}");
 }
 
 #[test]
@@ -276,4 +279,109 @@ fn the_vtk_library_reads_the_field_and_derives_the_same_flux_density() {
         return;
     }
     check_code(&output, 0);
+}
+
+const BIASED: &str = include_str!("../../meshes/saturating_choke.toml");
+
+/// The saturating choke beside its two tables.
+fn biased(text: &str) -> (tempfile::TempDir, PathBuf) {
+    let (directory, sheet) = bench(text);
+    for (name, table) in [
+        ("ferrite_cold.csv", include_str!("../../meshes/ferrite_cold.csv")),
+        ("ferrite_hot.csv", include_str!("../../meshes/ferrite_hot.csv")),
+    ] {
+        std::fs::write(directory.path().join(name), table).unwrap();
+    }
+    (directory, sheet)
+}
+
+/// Few rows of a wide interval: what is asked here is how a run ends.
+const SHORT_TABLE: [&str; 6] = ["saturate", "--to", "3A", "--points", "5", "--interval=1%"];
+
+fn json_of(output: &Output) -> serde_json::Value {
+    serde_json::from_slice(&output.stdout).unwrap()
+}
+
+#[test]
+fn saturate_writes_its_table_plot_and_json_and_shows_them() {
+    let (directory, sheet) = biased(BIASED);
+    let output = run(&SHORT_TABLE, &sheet);
+    check_code(&output, 0);
+    let screen = String::from_utf8(output.stdout).unwrap();
+    assert!(screen.contains("has fallen") && screen.contains("kept by"), "{screen}");
+    assert!(output.stderr.is_empty());
+    let out = directory.path().join("choke.out");
+    assert_eq!(names(&out), ["saturate.csv", "saturate.json", "saturate.svg"]);
+
+    let quiet = run(&[&SHORT_TABLE[..], &["--quiet"]].concat(), &sheet);
+    check_code(&quiet, 0);
+    assert!(quiet.stdout.is_empty() && quiet.stderr.is_empty());
+
+    let timed = run(&[&SHORT_TABLE[..], &["--timings"]].concat(), &sheet);
+    assert!(String::from_utf8_lossy(&timed.stdout).contains("\nStage times\n"));
+    let timed = run(&[&SHORT_TABLE[..], &["--timings", "--json"]].concat(), &sheet);
+    assert!(1 < json_of(&timed)["timings"].as_array().unwrap().len());
+
+    let json =
+        run(&[&SHORT_TABLE[..], &["--json", "--out", out.to_str().unwrap()]].concat(), &sheet);
+    assert!(json.stdout == std::fs::read(out.join("saturate.json")).unwrap());
+    assert_eq!(json_of(&json)["rows"].as_array().unwrap().len(), 5);
+}
+
+#[test]
+fn a_broken_promise_ends_with_1_in_solve_and_saturate() {
+    let (directory, sheet) = biased(BIASED);
+    let hot = format!("--material=charger_ferrite={}/ferrite_hot.csv", directory.path().display());
+    for command in [&["solve", "--interval=1%"][..], &SHORT_TABLE] {
+        let cold = run(&[command, &["--json"]].concat(), &sheet);
+        check_code(&cold, 0);
+        assert_eq!(json_of(&cold)["require"][0]["met"], true);
+        let warm = run(&[command, &["--json", &hot]].concat(), &sheet);
+        check_code(&warm, 1);
+        assert_eq!(json_of(&warm)["require"][0]["met"], false);
+        let screen = run(&[command, &[&hot]].concat(), &sheet);
+        check_code(&screen, 1);
+        assert!(String::from_utf8_lossy(&screen.stdout).contains("broken by"));
+    }
+}
+
+#[test]
+fn saturate_ends_with_2_3_and_4_like_solve() {
+    let (directory, sheet) = biased(BIASED);
+    let without_end = run(&["saturate"], &sheet);
+    check_code(&without_end, 2);
+    assert!(String::from_utf8_lossy(&without_end.stderr).contains("--to"));
+    for wrong in [["--to", "0"], ["--to", "6 mm"], ["--points", "2"]] {
+        check_code(&run(&["saturate", "--to=3A", wrong[0], wrong[1]], &sheet), 2);
+    }
+
+    let blocked = directory.path().join("choke.toml/deeper");
+    let unwritten =
+        run(&[&SHORT_TABLE[..], &["--out", blocked.to_str().unwrap()]].concat(), &sheet);
+    check_code(&unwritten, 4);
+
+    let narrow =
+        BIASED.replace("interval = \"0.01 %\"", "interval = \"0.001 %\"\nmax_unknowns = 1500");
+    assert_ne!(narrow, BIASED);
+    let (directory, sheet) = biased(&narrow);
+    let missed = run(&["saturate", "--to", "3A", "--points", "5"], &sheet);
+    check_code(&missed, 3);
+    let screen = String::from_utf8(missed.stdout).unwrap();
+    assert!(screen.lines().nth(1).unwrap().contains("Not reached"), "{screen}");
+    let json = std::fs::read_to_string(directory.path().join("choke.out/saturate.json")).unwrap();
+    assert!(json.contains("was wanted"));
+}
+
+#[test]
+fn the_interval_of_the_command_line_replaces_the_sheets() {
+    let (_directory, sheet) = bench(CHOKE);
+    let mut unknowns = Vec::new();
+    for (argument, wanted) in [("--interval=1%", 1e-2), ("--interval=0.01 %", 1e-4)] {
+        let value = json_of(&run(&["solve", "--json", argument], &sheet));
+        let [best, low, high] =
+            ["value", "low", "high"].map(|key| value["inductance"][key].as_f64().unwrap());
+        assert!(low < best && best < high && (high - low) / best <= wanted, "{argument}");
+        unknowns.push(value["unknowns"].as_u64().unwrap());
+    }
+    assert!(2 * unknowns[0] < unknowns[1], "{unknowns:?}");
 }

@@ -3,6 +3,7 @@
 
 mod architecture;
 mod bench_smoke;
+mod blame;
 mod cases;
 mod cli;
 mod forces;

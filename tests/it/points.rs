@@ -1,6 +1,6 @@
 //! Fluxes through cuts, ψ and B at points: against the references, each other, and the coil's own field.
 
-use crate::cases::{ALL, Case, R1, R5, R7, R8, Run};
+use crate::cases::{ALL, Case, R1, R5, R7, R8, Run, model};
 use gapwright::model::Point;
 use gapwright::results::sample::Sampler;
 use gapwright::units::MU0;
@@ -197,5 +197,90 @@ fn outside_the_polygon_the_field_is_that_of_the_coil() {
             );
             assert!(worst <= limit, "{rho} m: {worst:.1e}");
         }
+    }
+}
+
+/// B_z on the axis of the air coil R7 at height z.
+///
+/// B = ½µ0 J [s·ln((r2 + √(r2² + s²))/(r1 + √(r1² + s²)))] between s = z − h/2 and s = z + h/2.
+/// Source: D. B. Montgomery, Solenoid Magnet Design (1969) (from memory).
+fn b_on_axis_of_air_coil(z: f64) -> f64 {
+    let (r1, r2, half_height) = (20.0 * MM, 30.0 * MM, 5.0 * MM);
+    let density = 100.0 / ((r2 - r1) * 2.0 * half_height);
+    let at = |s: f64| s * ((r2 + r2.hypot(s)) / (r1 + r1.hypot(s))).ln();
+    0.5 * MU0 * density * (at(z + half_height) - at(z - half_height))
+}
+
+/// A probe of R7 at the default interval: B_z and ψ at (r, z) [mm] as `solve` reports them, and without the probe.
+fn probed(r_mm: f64, z_mm: f64) -> [(f64, f64); 2] {
+    let point = Point { r: r_mm * MM, z: z_mm * MM };
+    let plain = Run::new(R7.model(1e-3));
+    let without = Sampler::new(&plain.outline, &plain.outcome).probe(point).unwrap();
+    let probe = format!("[[probes]]\nname = \"p\"\nat = [{r_mm}, {z_mm}]\n");
+    let results = Run::new(model(&(R7.sheet.to_string() + &probe), 1e-3)).results();
+    let with = results.probes[0].points[0];
+    assert!((with.r - point.r).abs() + (with.z - point.z).abs() <= 1e-15);
+    [(with.b_z, with.psi), (without.b_z, without.psi)]
+}
+
+/// A probe refines until its triangle's own error is about 0.3 % of B there; the rest is what comes from elsewhere.
+const PROBE_LIMIT: f64 = 1e-2;
+
+/// B_z of a probe on the axis against the closed form, from the middle to the rim of the polygon.
+fn check_probe_on_the_axis(z_mm: f64) -> f64 {
+    let exact = b_on_axis_of_air_coil(z_mm * MM);
+    let [(with, _), (without, _)] = probed(0.0, z_mm);
+    let [with, without] = [with, without].map(|b| b / exact - 1.0);
+    println!("(0, {z_mm}) mm: B_z off by {with:+.1e}, without a probe there {without:+.1e}");
+    assert!(with.abs() <= PROBE_LIMIT, "{z_mm} mm: {with:+.1e}");
+    without.abs()
+}
+
+#[test]
+fn a_probe_on_the_axis_gets_the_field_of_the_thick_coil() {
+    let without = [0.0, 10.0].map(check_probe_on_the_axis);
+    // Else the probe's own refinement is not what this test sees. Measured 0.9 and 12 % without it, 0.6 and 0.9 % with it.
+    assert!(10.0 * PROBE_LIMIT < without[1], "{without:?}");
+}
+
+/// A known fault: 1.7 % is measured. Triangles elsewhere spoil the probe's; its own share is small enough.
+#[test]
+#[should_panic(expected = "40 mm: ")]
+fn known_fault_a_probe_on_the_axis_at_the_rim_of_the_polygon() {
+    check_probe_on_the_axis(40.0);
+}
+
+/// B_z and ψ of a probe six polygon radii away: how far they are off.
+fn far_probe(r_mm: f64, z_mm: f64) -> f64 {
+    // B_z of ψ by a difference quotient: a step of 0.1 mm at 240 mm errs by 1e-7.
+    let (r, z, step) = (r_mm * MM, z_mm * MM, 0.1 * MM);
+    let exact_b = (psi_of_air_coil(r + step, z) - psi_of_air_coil(r - step, z)) / (2.0 * step * r);
+    let both =
+        probed(r_mm, z_mm).map(|(b, psi)| (b / exact_b - 1.0, psi / psi_of_air_coil(r, z) - 1.0));
+    let [(b, psi), without] = both;
+    println!(
+        "({r_mm}, {z_mm}) mm: B_z off by {b:+.1e}, ψ by {psi:+.1e}; without a probe there {without:?}"
+    );
+    b.abs().max(psi.abs())
+}
+
+/// Along r, along z, and between; 240 mm from the middle.
+const FAR: [(f64, f64); 3] = [(240.0, 0.0), (150.0, 187.0), (24.0, 239.0)];
+
+#[test]
+fn a_probe_far_outside_gets_the_field_of_the_coil_within_some_per_cents() {
+    for (r_mm, z_mm) in FAR {
+        // Measured 2.6, 1.5 and 4.4 %: what the default interval leaves of the field at six radii.
+        assert!(far_probe(r_mm, z_mm) <= 5.0 * PROBE_LIMIT, "({r_mm}, {z_mm}) mm");
+    }
+}
+
+/// A known fault: a probe far outside is no better than 1.5 to 4.4 % at the default interval.
+#[test]
+#[should_panic(expected = " mm: ")]
+fn known_fault_a_probe_far_outside_is_as_good_as_one_near_the_coil() {
+    for (r_mm, z_mm) in FAR {
+        let worst = far_probe(r_mm, z_mm);
+        assert!(worst <= PROBE_LIMIT, "({r_mm}, {z_mm}) mm: {worst:.1e}");
     }
 }

@@ -48,12 +48,7 @@ impl ResultFile {
             require: require_entries(&results.requirements),
             losses: None,
             notes: shortfall(results).into_iter().chain(results.notes.iter().cloned()).collect(),
-            timings: times.map(|t| {
-                t.stages
-                    .iter()
-                    .map(|(stage, seconds)| TimingEntry { stage: stage.clone(), seconds: *seconds })
-                    .collect()
-            }),
+            timings: times.map(timing_entries),
         }
     }
 }
@@ -96,6 +91,13 @@ impl PartEntry {
             margin: part.margin,
         }
     }
+}
+
+/// One entry a stage, in the order of the run.
+pub(in crate::report) fn timing_entries(times: &StageTimes) -> Vec<TimingEntry> {
+    let entry =
+        |(stage, seconds): &(String, f64)| TimingEntry { stage: stage.clone(), seconds: *seconds };
+    times.stages.iter().map(entry).collect()
 }
 
 fn windings(results: &Results) -> Vec<WindingEntry> {

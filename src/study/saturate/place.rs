@@ -63,17 +63,29 @@ fn renew(bench: &mut Bench, rows: &mut [Row]) -> Result<(), StudyError> {
     Ok(())
 }
 
-/// Index of the interval in which straight lines through the rows miss λ or the incremental inductance most.
+/// Misfits below this share of the largest value are no bends that a plot could show.
+const MISFIT_MIN: f64 = 1e-3;
+/// Algebraic error of λ as a share of the coenergy's interval, see `linkage_width`.
+const LINKAGE_REST: f64 = 0.02;
+
+/// Index of the interval in which straight lines through the rows miss λ or the incremental inductance most; the longest
+/// one where they miss nowhere.
 fn worst(rows: &[Row], length_min: Ampere) -> Option<usize> {
-    let scale_linkage = rows.last()?.flux_linkage;
     let scale_slope = rows.iter().map(|r| r.incremental).fold(0.0, f64::max);
+    let last = rows.last()?;
+    let width = (last.coenergy.high - last.coenergy.low) / last.coenergy.value;
+    let length = |k: usize| rows[k + 1].current - rows[k].current;
+    // What the rests of two λ make up in 3/2·|Δλ/h − …|: with constant laws there is nothing else.
+    let rest = |k: usize| 3.0 * LINKAGE_REST * width * last.current / length(k);
     let error = |k: usize| {
         let [by_linkage, by_slope] = misfit(&rows[k], &rows[k + 1]);
-        (by_linkage / scale_linkage).max(by_slope / scale_slope)
+        let error = (by_linkage / last.flux_linkage).max(by_slope / scale_slope);
+        if error < MISFIT_MIN.max(rest(k)) { 0.0 } else { error }
     };
-    (0..rows.len() - 1)
-        .filter(|&k| 2.0 * length_min <= rows[k + 1].current - rows[k].current)
-        .max_by(|&a, &b| error(a).total_cmp(&error(b)).then(b.cmp(&a)))
+    (0..rows.len() - 1).filter(|&k| 2.0 * length_min <= length(k)).max_by(|&a, &b| {
+        let by_length = length(a).total_cmp(&length(b));
+        error(a).total_cmp(&error(b)).then(by_length).then(b.cmp(&a))
+    })
 }
 
 /// How far λ and dλ/dI leave the chord at the middle of an interval, from their values and slopes at its ends.

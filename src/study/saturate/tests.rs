@@ -70,6 +70,23 @@ fn without_saturation_nothing_falls_and_every_row_has_one_inductance() {
 }
 
 #[test]
+fn where_nothing_bends_the_rows_are_spaced_evenly() {
+    let model = samples::r5();
+    let outline = geometry::outline(&model).unwrap();
+    for interval in [1e-3, 1e-2] {
+        let mut model = model.clone();
+        model.accuracy.interval = interval;
+        let found = table(&model, &outline, 6.0, 24);
+        assert_eq!(found.rows.len(), 24);
+        let lengths = found.rows.windows(2).map(|pair| pair[1].current - pair[0].current);
+        let (short, long) =
+            lengths.fold((f64::MAX, 0.0_f64), |(a, b), length| (a.min(length), b.max(length)));
+        // Even intervals, some of them halved once more than the others.
+        assert!(long <= 2.001 * short, "{short} to {long} A");
+    }
+}
+
+#[test]
 fn all_currents_scale_with_the_first_that_flows_and_no_ends_are_promised() {
     let (mut model, _) = saturating(samples::r5());
     let second = samples::winding("aux", 15.0, [8.2, 13.4], [7.3, 7.9]);

@@ -72,7 +72,7 @@ fn random_monotone_tables_never_fail_and_every_interval_holds_a_finer_solve() {
 #[test]
 fn newton_converges_far_beyond_saturation_from_any_start() {
     let mut numbers = Numbers(7);
-    for name in ["lamp_choke_saturating.toml", "saturating_choke.toml"] {
+    for name in ["lamp_choke_saturating.toml", "saturating_choke.toml", "chamfered_tip.toml"] {
         let mut run = Run::new(sheet(name), 1e-2);
         // The knee is at a few amperes: 100 × beyond it.
         for factor in [1.0, 10.0, 100.0] {
