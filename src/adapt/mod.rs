@@ -198,13 +198,14 @@ pub fn refine(
         let worst = marked.first().copied();
         let is_divisible = |t: &u32| mark::is_divisible(&outcome.mesh, *t as usize);
         marked.retain(is_divisible);
-        marked.truncate(n_marked_max);
         if marked.is_empty() {
             outcome.unresolved = worst.map(|t| outcome.mesh.corners(t as usize)[0]);
             return Ok(());
         }
         marked.extend(watch::hot_triangles(outcome));
         marked.extend(watch::probe_triangles(outcome).into_iter().filter(is_divisible));
+        // What does not fit any more is what the interval needs least, and the probes.
+        marked.truncate(n_marked_max);
         cut(outcome, &marked, rules, accuracy, progress)?;
     }
     outcome.reached = outcome.bound.relative_width() <= accuracy.interval;

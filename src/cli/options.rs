@@ -146,10 +146,10 @@ mod tests {
 
     #[test]
     fn an_option_that_a_command_cannot_use_is_refused() {
-        for option in ["--mirror"] {
-            assert!(Arguments::try_parse_from(["gapwright", "solve", "a.toml", option]).is_ok());
-            assert!(Arguments::try_parse_from(["gapwright", "check", "a.toml", option]).is_err());
-        }
+        let parsed =
+            |command| Arguments::try_parse_from(["gapwright", command, "a.toml", "--mirror"]);
+        assert!(parsed("solve").is_ok());
+        assert!(parsed("check").is_err());
     }
 
     #[test]

@@ -16,6 +16,7 @@ mod messages;
 mod mutations;
 mod points;
 mod rates;
+mod readme;
 mod saturation;
 mod sheets;
 mod tidy;
