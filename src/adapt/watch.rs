@@ -73,7 +73,7 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
         return Vec::new();
     }
     let pairs = &outcome.fans.edge_triangles;
-    let mut marked = Vec::new();
+    let mut watched = Vec::new();
     let mut last: Option<usize> = None;
     for &at in &outcome.watch.probes {
         let (chart, position) = to_chart(mesh, at);
@@ -83,13 +83,26 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
             .and_then(|t| locate(mesh, pairs, t, position));
         let Some((t, _)) = near.or_else(|| find(mesh, pairs, chart, position)) else { continue };
         last = Some(t);
-        let energy =
-            TAU * linear_energy(&outcome.elements[t].k, &outcome.solution.gradients(mesh, t));
-        if PROBE_SHARE * energy < outcome.bound.shares[t] {
-            marked.push(t as u32);
-        }
+        watched.extend(around(outcome, t));
     }
-    marked.sort_unstable();
-    marked.dedup();
-    marked
+    watched.sort_unstable();
+    watched.dedup();
+    watched.retain(|&t| {
+        let gradients = outcome.solution.gradients(mesh, t as usize);
+        let energy = TAU * linear_energy(&outcome.elements[t as usize].k, &gradients);
+        PROBE_SHARE * energy < outcome.bound.shares[t as usize]
+    });
+    watched
+}
+
+/// The triangles whose error a probe in triangle t feels most: all that touch it, and outside the polygon the whole
+/// exterior, which few triangles cover as long as only the energy counts.
+fn around(outcome: &Outcome, t: usize) -> Vec<u32> {
+    let mesh = &outcome.mesh;
+    if mesh.charts[t] != Chart::Inside {
+        let outside = |t: &u32| mesh.charts[*t as usize] != Chart::Inside;
+        return (0..mesh.triangles.len() as u32).filter(outside).collect();
+    }
+    let ring = mesh.triangles[t].into_iter().flat_map(|v| outcome.fans.around(v as usize));
+    ring.map(|blade| blade.triangle).collect()
 }

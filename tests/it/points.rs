@@ -243,10 +243,8 @@ fn a_probe_on_the_axis_gets_the_field_of_the_thick_coil() {
     assert!(10.0 * PROBE_LIMIT < without[1], "{without:?}");
 }
 
-/// A known fault: 1.7 % is measured. Triangles elsewhere spoil the probe's; its own share is small enough.
 #[test]
-#[should_panic(expected = "40 mm: ")]
-fn known_fault_a_probe_on_the_axis_at_the_rim_of_the_polygon() {
+fn a_probe_on_the_axis_at_the_rim_of_the_polygon_gets_the_field_of_the_thick_coil() {
     check_probe_on_the_axis(40.0);
 }
 
@@ -268,17 +266,7 @@ fn far_probe(r_mm: f64, z_mm: f64) -> f64 {
 const FAR: [(f64, f64); 3] = [(240.0, 0.0), (150.0, 187.0), (24.0, 239.0)];
 
 #[test]
-fn a_probe_far_outside_gets_the_field_of_the_coil_within_some_per_cents() {
-    for (r_mm, z_mm) in FAR {
-        // Measured 2.6, 1.5 and 4.4 %: what the default interval leaves of the field at six radii.
-        assert!(far_probe(r_mm, z_mm) <= 5.0 * PROBE_LIMIT, "({r_mm}, {z_mm}) mm");
-    }
-}
-
-/// A known fault: a probe far outside is no better than 1.5 to 4.4 % at the default interval.
-#[test]
-#[should_panic(expected = " mm: ")]
-fn known_fault_a_probe_far_outside_is_as_good_as_one_near_the_coil() {
+fn a_probe_far_outside_is_as_good_as_one_near_the_coil() {
     for (r_mm, z_mm) in FAR {
         let worst = far_probe(r_mm, z_mm);
         assert!(worst <= PROBE_LIMIT, "({r_mm}, {z_mm}) mm: {worst:.1e}");

@@ -162,6 +162,17 @@ impl<'a> Bench<'a> {
         TAU * dot(&self.load_alone, &self.outcome.space.restrict(&solution.vertex, &solution.edge))
     }
 
+    /// What carries λ of ψ_h, the low end where laws are constant, to the middle of the interval as `solve` tells it; 1 where
+    /// something saturates, for there the middle belongs to the coenergy alone.
+    fn lift(&self) -> f64 {
+        match self.outcome.rounds.last() {
+            Some(round) if self.outcome.coefficients.is_linear() => {
+                0.5 * (round.low + round.high) / round.low
+            }
+            _ => 1.0,
+        }
+    }
+
     /// dλ/dI along the scale at the outcome's field [H].
     fn slope(&self) -> Result<Henry, StudyError> {
         tangent(&self.outcome, &self.outcome.elements, &self.load_alone, &self.load_along)
@@ -176,7 +187,8 @@ impl<'a> Bench<'a> {
 
     fn read(&self, n_newton_steps: usize) -> Result<Row, StudyError> {
         let (current, bound) = (self.current, &self.outcome.bound);
-        let (flux_linkage, incremental) = (self.flux_linkage(), self.slope()?);
+        let lift = self.lift();
+        let (flux_linkage, incremental) = (lift * self.flux_linkage(), lift * self.slope()?);
         let sampler = Sampler::new(self.outline, &self.outcome);
         let exceeded = parts::exceedances(&sampler, &self.outcome.solution);
         Ok(Row {
