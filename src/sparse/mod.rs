@@ -2,6 +2,7 @@
 
 pub mod cg;
 mod dissection;
+mod ldl;
 pub mod matrix;
 pub mod multilevel;
 

@@ -6,6 +6,7 @@
 
 use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
 use super::dissection::nested_dissection;
+use super::ldl::Ldl;
 use super::matrix::{Matrix, Swept, leading_block};
 use nalgebra::DMatrix;
 use nalgebra_sparse::factorization::CscCholesky;
@@ -44,7 +45,7 @@ pub struct Workspace {
 
 #[derive(Debug)]
 struct Coarse {
-    factor: CscCholesky<f64>,
+    factor: Factor,
     /// new position → old
     order: Vec<usize>,
     /// Power of two that the matrix was multiplied by: a problem scaled by any power of two has the same factor, bit by bit,
@@ -256,33 +257,53 @@ fn prolong(interpolation: &[Interpolation], n: usize, v: &mut Vec<f64>) {
     }
 }
 
+/// Unknowns up to which the library's Cholesky is at least as fast as our own factorisation.
+const N_LIBRARY_MAX: usize = 800;
+
+/// The coarsest factorisation, in the order of elimination.
+#[derive(Debug)]
+enum Factor {
+    Library(CscCholesky<f64>),
+    Own(Ldl),
+}
+
 impl Coarse {
-    /// Factorises the leading block by nested dissection (the library's Cholesky keeps the given order).
+    /// Factorises the leading block by nested dissection.
     fn new(matrix: &Matrix, size: usize) -> Option<Coarse> {
-        let block = leading_block(matrix, size);
+        let mut block = leading_block(matrix, size);
         let order = nested_dissection(&block);
-        let mut position = vec![0; size];
-        for (new, &old) in order.iter().enumerate() {
-            position[old] = new;
-        }
         let scale = power_of_two_below(block.data().first().copied().unwrap_or(1.0)).recip();
-        let mut triplets = CooMatrix::new(size, size);
-        for (i, row) in block.outer_iterator().enumerate() {
-            for (j, &v) in row.iter() {
-                triplets.push(position[i], position[j], scale * v);
-            }
-        }
-        let factor = CscCholesky::factor(&CscMatrix::from(&triplets)).ok()?;
+        block.scale(scale);
+        let factor = match size <= N_LIBRARY_MAX {
+            true => Factor::Library(library_factor(&block, &order)?),
+            false => Factor::Own(Ldl::new(&block, &order)?),
+        };
         Some(Coarse { factor, order, scale })
     }
 
     fn solve(&self, b: &[f64], x: &mut [f64]) {
         let mut permuted = DMatrix::from_iterator(b.len(), 1, self.order.iter().map(|&old| b[old]));
-        self.factor.solve_mut(&mut permuted);
+        match &self.factor {
+            Factor::Library(factor) => factor.solve_mut(&mut permuted),
+            Factor::Own(factor) => factor.solve(permuted.as_mut_slice()),
+        }
         for (new, &old) in self.order.iter().enumerate() {
             x[old] = self.scale * permuted[(new, 0)];
         }
     }
+}
+
+/// Cholesky of the reordered block by nalgebra-sparse.
+fn library_factor(block: &Matrix, order: &[usize]) -> Option<CscCholesky<f64>> {
+    let mut position = vec![0; order.len()];
+    order.iter().enumerate().for_each(|(new, &old)| position[old] = new);
+    let mut triplets = CooMatrix::new(order.len(), order.len());
+    for (i, row) in block.outer_iterator().enumerate() {
+        for (j, &v) in row.iter() {
+            triplets.push(position[i], position[j], v);
+        }
+    }
+    CscCholesky::factor(&CscMatrix::from(&triplets)).ok()
 }
 
 #[cfg(test)]
