@@ -23,7 +23,7 @@ pub fn nested_dissection(matrix: &Matrix) -> Vec<usize> {
             continue;
         }
         let levels = search.levels(id, &set);
-        let Some(middle) = median_level(&levels) else {
+        let Some(middle) = best_level(&levels) else {
             reversed.extend(set);
             continue;
         };
@@ -52,11 +52,18 @@ pub fn nested_dissection(matrix: &Matrix) -> Vec<usize> {
     reversed
 }
 
-/// The level before which half of the vertices lie; `None` with fewer than three levels.
-fn median_level(levels: &[(usize, u32)]) -> Option<u32> {
+/// The smallest level that leaves a fifth or more of the vertices on both sides, else the median one; `None` with fewer than
+/// three levels. Graded meshes have few levels, and some are wide.
+fn best_level(levels: &[(usize, u32)]) -> Option<u32> {
     let last = levels.last()?.1;
-    let half = levels.get(levels.len() / 2)?.1;
-    (2 <= last).then(|| half.clamp(1, last - 1))
+    if last < 2 {
+        return None;
+    }
+    let n = levels.len();
+    let end = |level: u32| levels.partition_point(|&(_, l)| l <= level);
+    let is_balanced = |&level: &u32| n <= 5 * end(level - 1) && 5 * end(level) <= 4 * n;
+    let smallest = (1..last).filter(is_balanced).min_by_key(|&level| end(level) - end(level - 1));
+    smallest.or_else(|| Some(levels[n / 2].1.clamp(1, last - 1)))
 }
 
 struct Search<'a> {
