@@ -23,8 +23,9 @@ use crate::units::{Joule, MU0};
 const ALGEBRAIC_SHARE: f64 = 3e-4;
 /// Dörfler's share of the total that the marked triangles hold.
 const MARKED_SHARE: f64 = 0.7;
-/// Rounds at the probes alone; each halves their triangles.
-const N_SHARPENINGS_MAX: usize = 10;
+/// Rounds at the probes alone; each halves their triangles. On the axis and towards infinity a triangle's own share falls
+/// slowly or not at all, so the number is what bounds the work.
+const N_SHARPENINGS_MAX: usize = 5;
 /// Rounds before giving up: each divides the interval by about 2, so 60 reach rounding from anywhere.
 const N_ROUNDS_MAX: usize = 60;
 

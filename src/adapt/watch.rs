@@ -15,6 +15,9 @@ use std::f64::consts::TAU;
 
 /// Share of a triangle's own energy that the interval may have in a probe's triangle: about (δB/B)², so 0.3 % of B.
 const PROBE_SHARE: f64 = 1e-5;
+/// The same for the rest of the exterior when a probe lies outside the polygon, where few triangles stand as long as only the
+/// energy counts: 3 % of B. Much less would refine for ever towards infinity, where every shell looks like the one before.
+const EXTERIOR_SHARE: f64 = 1e-3;
 /// Core triangles that a round cuts because they are the hottest and wider than the averaging disc.
 const N_HOT: usize = 8;
 /// Relative permeability above which a region counts as core.
@@ -73,7 +76,7 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
         return Vec::new();
     }
     let pairs = &outcome.fans.edge_triangles;
-    let mut watched = Vec::new();
+    let (mut watched, mut is_outside) = (Vec::new(), false);
     let mut last: Option<usize> = None;
     for &at in &outcome.watch.probes {
         let (chart, position) = to_chart(mesh, at);
@@ -83,26 +86,31 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
             .and_then(|t| locate(mesh, pairs, t, position));
         let Some((t, _)) = near.or_else(|| find(mesh, pairs, chart, position)) else { continue };
         last = Some(t);
+        is_outside |= chart != Chart::Inside;
         watched.extend(around(outcome, t));
+    }
+    watched.retain(|&t| has_share(outcome, t, PROBE_SHARE));
+    if is_outside {
+        let exterior = (0..mesh.triangles.len() as u32).filter(|&t| {
+            mesh.charts[t as usize] != Chart::Inside && has_share(outcome, t, EXTERIOR_SHARE)
+        });
+        watched.extend(exterior);
     }
     watched.sort_unstable();
     watched.dedup();
-    watched.retain(|&t| {
-        let gradients = outcome.solution.gradients(mesh, t as usize);
-        let energy = TAU * linear_energy(&outcome.elements[t as usize].k, &gradients);
-        PROBE_SHARE * energy < outcome.bound.shares[t as usize]
-    });
     watched
 }
 
-/// The triangles whose error a probe in triangle t feels most: all that touch it, and outside the polygon the whole
-/// exterior, which few triangles cover as long as only the energy counts.
+/// Is the triangle's share in the interval more than `share` of its own energy?
+fn has_share(outcome: &Outcome, t: u32, share: f64) -> bool {
+    let t = t as usize;
+    let gradients = outcome.solution.gradients(&outcome.mesh, t);
+    share * TAU * linear_energy(&outcome.elements[t].k, &gradients) < outcome.bound.shares[t]
+}
+
+/// The triangles whose error a probe in triangle t feels most: all that touch it.
 fn around(outcome: &Outcome, t: usize) -> Vec<u32> {
     let mesh = &outcome.mesh;
-    if mesh.charts[t] != Chart::Inside {
-        let outside = |t: &u32| mesh.charts[*t as usize] != Chart::Inside;
-        return (0..mesh.triangles.len() as u32).filter(outside).collect();
-    }
     let ring = mesh.triangles[t].into_iter().flat_map(|v| outcome.fans.around(v as usize));
     ring.map(|blade| blade.triangle).collect()
 }
