@@ -2,7 +2,7 @@
 
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
-use crate::fem::{Element, Rules};
+use crate::fem::{Elements, Rules};
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::units::{AmperePerSquareMeter, Joule};
 
@@ -10,7 +10,7 @@ use crate::units::{AmperePerSquareMeter, Joule};
 #[derive(Debug, Clone, PartialEq)]
 pub struct Again {
     pub solution: Solution,
-    pub elements: Vec<Element>,
+    pub elements: Elements,
     pub bound: Bound,
     pub effort: Effort,
 }
@@ -37,7 +37,7 @@ pub fn at_density(
 fn solve_and_bound(
     outcome: &mut Outcome,
     solution: &mut Solution,
-    elements: &mut [Element],
+    elements: &mut Elements,
     width: f64,
 ) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();

@@ -11,7 +11,7 @@ pub use tree::{defect, scale};
 
 use crate::fem::element::Frame;
 use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux};
-use crate::fem::{Coefficients, Element, Reluctivity, Rules};
+use crate::fem::{Coefficients, Elements, Reluctivity, Rules};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
 use crate::solve::Solution;
@@ -58,7 +58,7 @@ pub struct Field<'a> {
     pub coefficients: &'a Coefficients,
     pub rules: &'a Rules,
     /// Of the constant coefficient, or of the tangent at `solution`.
-    pub elements: &'a [Element],
+    pub elements: &'a Elements,
     pub solution: &'a Solution,
 }
 
@@ -82,7 +82,7 @@ fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
     let gradients = field.solution.gradients(field.mesh, t);
     match &field.coefficients.reluctivity[field.mesh.regions[t].0 as usize] {
         Reluctivity::Constant(_) => {
-            let k = &field.elements[t].k;
+            let k = &field.elements.k[t];
             (linear_flux(k, &gradients), linear_energy(k, &gradients))
         }
         Reluctivity::Saturating(law) => {
@@ -112,7 +112,7 @@ fn evaluate(field: &Field, primal: &[f64], flux: Flux) -> Bound {
             };
             let product = element::wedge_integral(&gradients, &form);
             let dual = match &field.coefficients.reluctivity[mesh.regions[t].0 as usize] {
-                Reluctivity::Constant(_) => element::half_square(&field.elements[t].gram, &numbers),
+                Reluctivity::Constant(_) => element::half_square(&field.elements.gram[t], &numbers),
                 Reluctivity::Saturating(law) => element::saturating_coenergy(field, t, law, &form),
             };
             let share = dual - product + primal[t];

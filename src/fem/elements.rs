@@ -2,12 +2,13 @@
 //!
 //! Constant laws: computed once when bisection makes the triangle. Saturating laws: at every new field.
 
+use super::batches::in_order;
 use super::coefficients::{Coefficients, Reluctivity};
 use super::element::{Frame, GRADIENT, Tensor, contract};
 use super::moments::{Moments, PAIR_INDEX, constant_moments, rule_of};
 use super::quadrature::Rules;
 use crate::mesh::Mesh;
-use rayon::prelude::*;
+use crate::mesh::bisect::MADE;
 
 /// Local edges: (start, end) of the edges 0, 1, 2.
 pub const LOCAL_EDGES: [(usize, usize); 3] = [(0, 1), (1, 2), (2, 0)];
@@ -33,12 +34,6 @@ pub struct Element {
     pub gram: Packed,
 }
 
-impl Default for Element {
-    fn default() -> Element {
-        Element { k: [[0.0; 3]; 6], stiffness: [0.0; 21], gram: [0.0; 21] }
-    }
-}
-
 impl Element {
     /// Both matrices from the moments.
     pub fn new(frame: &Frame, moments: &Moments) -> Element {
@@ -56,31 +51,73 @@ impl Element {
     }
 }
 
-/// Recomputes the `changed` triangles (ascending) that carry a constant law; the vector grows with the mesh.
-pub fn update_constant(
-    mesh: &Mesh,
-    coefficients: &Coefficients,
-    rules: &Rules,
-    changed: &[u32],
-    elements: &mut Vec<Element>,
-) {
-    elements.resize(mesh.triangles.len(), Element::default());
-    let fresh = |t: usize| match &coefficients.reluctivity[mesh.regions[t].0 as usize] {
-        Reluctivity::Constant(nu) => {
-            let frame = Frame::new(mesh, t);
-            Some(Element::new(&frame, &constant_moments(&frame, rule_of(rules, &frame), *nu)))
-        }
-        Reluctivity::Saturating(_) => None,
-    };
-    // A few changed triangles at a time, so that the copies stay in the cache.
-    const N_BATCH: usize = 4096;
-    for batch in changed.chunks(N_BATCH) {
-        let fresh: Vec<_> =
-            batch.par_iter().with_min_len(512).map(|&t| fresh(t as usize)).collect();
-        for (&t, element) in batch.iter().zip(fresh) {
-            if let Some(element) = element {
-                elements[t as usize] = element;
+/// The matrices of all triangles, each kind in an array of its own: a stage reads only what it needs.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Elements {
+    pub k: Vec<[Tensor; 6]>,
+    pub stiffness: Vec<Packed>,
+    pub gram: Vec<Packed>,
+}
+
+impl Elements {
+    /// Room for n triangles, new ones filled with zeros.
+    fn resize(&mut self, n: usize) {
+        self.k.resize(n, [[0.0; 3]; 6]);
+        self.stiffness.resize(n, [0.0; 21]);
+        self.gram.resize(n, [0.0; 21]);
+    }
+
+    /// Stores the matrices of triangle t.
+    pub fn set(&mut self, t: usize, element: &Element) {
+        self.k[t] = element.k;
+        self.stiffness[t] = element.stiffness;
+        self.gram[t] = element.gram;
+    }
+
+    /// Takes what is kept of every triangle to its new number.
+    ///
+    /// - `origin`: old number of each new triangle, ascending but for [`MADE`]; never above the new one
+    pub fn renumber(&mut self, origin: &[u32]) {
+        self.resize(origin.len());
+        spread(&mut self.k, origin);
+        spread(&mut self.stiffness, origin);
+        spread(&mut self.gram, origin);
+    }
+
+    /// Computes the `fresh` triangles that carry a constant law; the arrays grow with the mesh.
+    pub fn update_constant(
+        &mut self,
+        mesh: &Mesh,
+        coefficients: &Coefficients,
+        rules: &Rules,
+        fresh: &[u32],
+    ) {
+        /// Triangles of one piece of work.
+        const N_PIECE: usize = 256;
+        self.resize(mesh.triangles.len());
+        let element = |&t: &u32| match &coefficients.reluctivity[mesh.regions[t as usize].0 as usize] {
+            Reluctivity::Constant(nu) => {
+                let frame = Frame::new(mesh, t as usize);
+                let moments = constant_moments(&frame, rule_of(rules, &frame), *nu);
+                Some((t, Element::new(&frame, &moments)))
             }
+            Reluctivity::Saturating(_) => None,
+        };
+        let pieces: Vec<&[u32]> = fresh.chunks(N_PIECE).collect();
+        in_order(
+            pieces.len(),
+            |piece| pieces[piece].iter().filter_map(element).collect::<Vec<_>>(),
+            |made| made.iter().for_each(|(t, element)| self.set(*t as usize, element)),
+        );
+    }
+}
+
+/// Moves every value that stays to its new place.
+fn spread<T: Copy>(values: &mut [T], origin: &[u32]) {
+    // From the back: nothing is overwritten before it has moved.
+    for (t, &old) in origin.iter().enumerate().rev() {
+        if old != MADE && old as usize != t {
+            values[t] = values[old as usize];
         }
     }
 }

@@ -16,33 +16,77 @@ pub struct Carried<'a> {
     pub edge: &'a mut Vec<f64>,
 }
 
-/// Cuts all three edges of every marked triangle, closes the mesh, and returns the triangles that changed, ascending.
+/// What a call did to the triangles, in their new numbers.
+#[derive(Debug, Clone, Default)]
+pub struct Changes {
+    /// Triangles that this call made, ascending.
+    pub fresh: Vec<u32>,
+    /// Old number of every triangle that stayed, [`MADE`] for the fresh ones; no triangle moves to a smaller number.
+    pub origin: Vec<u32>,
+}
+
+/// Marks a triangle that this call made.
+pub const MADE: u32 = u32::MAX;
+
+/// Cuts all three edges of every marked triangle and closes the mesh.
+///
+/// Children take their parent's place in the order and edges follow the triangles, so that what touches in the plane lies
+/// near in memory at every size.
 ///
 /// - `marked`: triangles to refine
 /// - `carried`: coefficients on the old mesh in, on the new mesh out
-pub fn bisect(mesh: &mut Mesh, marked: &[u32], carried: &mut Carried) -> Vec<u32> {
+pub fn bisect(mesh: &mut Mesh, marked: &[u32], carried: &mut Carried) -> Changes {
     let is_cut = close(mesh, marked);
     let cut = cut_edges(mesh, &is_cut, carried);
-    let n_old = mesh.triangles.len();
-    let mut changed = Vec::new();
-    for t in 0..n_old {
-        let edges = mesh.triangle_edges[t];
-        if cut[edges[0] as usize].vertex == UNCUT {
+    let is_old_and_cut = |e: u32| (e as usize) < cut.len() && cut[e as usize].vertex != UNCUT;
+    let n_room = mesh.triangles.len() + 4 * marked.len();
+    let (mut pieces, mut parents) = (Vec::with_capacity(n_room), Vec::with_capacity(n_room));
+    let mut changes = Changes { fresh: Vec::new(), origin: Vec::with_capacity(n_room) };
+    for t in 0..mesh.triangles.len() {
+        let whole = Piece { corners: mesh.triangles[t], edges: mesh.triangle_edges[t] };
+        if !is_old_and_cut(whole.edges[0]) {
+            changes.origin.push(t as u32);
+            pieces.push(whole);
+            parents.push(t as u32);
             continue;
         }
-        changed.push(t as u32);
-        let second = bisect_triangle(mesh, t, &cut, Generation::First, carried);
-        for child in [t, second] {
+        let n_before = pieces.len();
+        for half in split(mesh, whole, &cut, Generation::First, carried) {
             // The parent's other edges are the children's refinement edges; they may be cut as well.
-            let e = mesh.triangle_edges[child][0] as usize;
-            if e < cut.len() && cut[e].vertex != UNCUT {
-                bisect_triangle(mesh, child, &cut, Generation::Second, carried);
+            match is_old_and_cut(half.edges[0]) {
+                true => pieces.extend(split(mesh, half, &cut, Generation::Second, carried)),
+                false => pieces.push(half),
             }
         }
+        changes.fresh.extend(n_before as u32..pieces.len() as u32);
+        changes.origin.resize(pieces.len(), MADE);
+        parents.resize(pieces.len(), t as u32);
     }
-    changed.extend(n_old as u32..mesh.triangles.len() as u32);
+    mesh.regions = parents.iter().map(|&t| mesh.regions[t as usize]).collect();
+    mesh.charts = parents.iter().map(|&t| mesh.charts[t as usize]).collect();
+    mesh.triangles = pieces.iter().map(|piece| piece.corners).collect();
+    mesh.triangle_edges = pieces.iter().map(|piece| piece.edges).collect();
+    number_edges(mesh, carried.edge);
     mesh.level_sizes.push(mesh.points.len());
-    changed
+    changes
+}
+
+/// Numbers the edges in the order in which the triangles meet them.
+fn number_edges(mesh: &mut Mesh, coefficients: &mut Vec<f64>) {
+    const UNMET: u32 = u32::MAX;
+    let mut place = vec![UNMET; mesh.edges.len()];
+    let (mut edges, mut values) =
+        (Vec::with_capacity(mesh.edges.len()), Vec::with_capacity(mesh.edges.len()));
+    for e in mesh.triangle_edges.iter_mut().flatten() {
+        let old = *e as usize;
+        if place[old] == UNMET {
+            place[old] = edges.len() as u32;
+            edges.push(mesh.edges[old]);
+            values.push(coefficients[old]);
+        }
+        *e = place[old];
+    }
+    (mesh.edges, *coefficients) = (edges, values);
 }
 
 /// Edges to cut: those of the marked triangles, and the refinement edge wherever any other edge is cut.
@@ -121,37 +165,40 @@ enum Generation {
     Second,
 }
 
-/// Cuts triangle t across its refinement edge; child one replaces it, child two is appended and returned.
-fn bisect_triangle(
+/// A triangle on its way into the new mesh.
+#[derive(Debug, Clone, Copy)]
+struct Piece {
+    corners: [u32; 3],
+    edges: [u32; 3],
+}
+
+/// Cuts a triangle across its refinement edge.
+fn split(
     mesh: &mut Mesh,
-    t: usize,
+    whole: Piece,
     cut: &[Cut],
     generation: Generation,
     carried: &mut Carried,
-) -> usize {
-    let [a, b, c] = mesh.triangles[t];
-    let [ab, bc, ca] = mesh.triangle_edges[t];
+) -> [Piece; 2] {
+    let [a, b, c] = whole.corners;
+    let [ab, bc, ca] = whole.edges;
     let Cut { vertex: m, second_half, bubble } = cut[ab as usize];
     let (half_a, half_b) =
         if mesh.edges[ab as usize][0] == a { (ab, second_half) } else { (second_half, ab) };
 
     // ψ along m → c: bubble (b_bc + b_ca)/2 − b_ab/4 with the uncut edges' coefficients (eq. 13).
-    let whole = |e: u32| match generation {
+    let uncut = |e: u32| match generation {
         Generation::First => cut[e as usize].bubble,
         Generation::Second => carried.edge[e as usize],
     };
-    let inner_bubble = 0.5 * (whole(bc) + whole(ca)) - 0.25 * bubble;
+    let inner_bubble = 0.5 * (uncut(bc) + uncut(ca)) - 0.25 * bubble;
     let inner = mesh.edges.len() as u32;
     mesh.edges.push([m, c]);
     carried.edge.push(inner_bubble);
-
-    mesh.triangles[t] = [c, a, m];
-    mesh.triangle_edges[t] = [ca, half_a, inner];
-    mesh.triangles.push([b, c, m]);
-    mesh.triangle_edges.push([bc, inner, half_b]);
-    mesh.regions.push(mesh.regions[t]);
-    mesh.charts.push(mesh.charts[t]);
-    mesh.triangles.len() - 1
+    [
+        Piece { corners: [c, a, m], edges: [ca, half_a, inner] },
+        Piece { corners: [b, c, m], edges: [bc, inner, half_b] },
+    ]
 }
 
 #[cfg(test)]
@@ -216,11 +263,16 @@ mod tests {
         for round in 0..5 {
             let marked: Vec<u32> =
                 (0..mesh.triangles.len() as u32).filter(|t| t % 3 == round % 2).collect();
-            let n_before = mesh.triangles.clone();
-            let changed =
+            let before_cut = mesh.triangles.clone();
+            let Changes { fresh, origin } =
                 bisect(&mut mesh, &marked, &mut Carried { vertex: &mut vertex, edge: &mut edge });
-            for (t, old) in n_before.iter().enumerate() {
-                assert_eq!(changed.contains(&(t as u32)), mesh.triangles[t] != *old);
+            assert_eq!(origin.len(), mesh.triangles.len());
+            for (t, &old) in origin.iter().enumerate() {
+                assert_eq!(fresh.contains(&(t as u32)), old == MADE);
+                if old != MADE {
+                    assert!(old as usize <= t);
+                    assert_eq!(mesh.triangles[t], before_cut[old as usize]);
+                }
             }
             let total: f64 = (0..mesh.triangles.len()).map(|t| area(&mesh, t)).sum();
             assert!((total - 1.0).abs() < 1e-14);

@@ -67,7 +67,7 @@ impl<'a> Sampler<'a> {
         let (frame, gradients) = self.local(t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU * linear_energy(&self.outcome.elements[t].k, &gradients);
+                let energy = TAU * linear_energy(&self.outcome.elements.k[t], &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {

@@ -6,6 +6,14 @@ use sprs::CsMatI;
 /// Sparse symmetric matrix, CSR, columns sorted within a row.
 pub type Matrix = CsMatI<f64, u32, usize>;
 
+/// The arrays of a matrix, handed from one that is done with to the next: fresh memory costs more than its filling.
+#[derive(Debug, Default)]
+pub struct Storage {
+    pub start: Vec<usize>,
+    pub columns: Vec<u32>,
+    pub values: Vec<f64>,
+}
+
 /// Rows above which a product is shared between threads; below, the hand-over costs more than it gives.
 const N_ROWS_PARALLEL: usize = 40_000;
 /// Rows a thread takes at a time.
@@ -35,6 +43,12 @@ impl Swept {
             .collect();
         let inverse_diagonal = diagonal.iter().map(|&k| 1.0 / matrix.data()[k]).collect();
         Swept { matrix, diagonal, inverse_diagonal }
+    }
+
+    /// The arrays, for the next matrix.
+    pub fn into_storage(self) -> Storage {
+        let (start, columns, values) = self.matrix.into_raw_storage();
+        Storage { start, columns, values }
     }
 
     /// The matrix itself.

@@ -7,5 +7,5 @@ pub mod matrix;
 pub mod multilevel;
 
 pub use cg::{CgError, Convergence, Operator, Stop, conjugate_gradients};
-pub use matrix::{Matrix, Swept};
+pub use matrix::{Matrix, Storage, Swept};
 pub use multilevel::{Hierarchy, Interpolation, Multilevel, Workspace};

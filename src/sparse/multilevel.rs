@@ -7,7 +7,7 @@
 use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
 use super::dissection::nested_dissection;
 use super::ldl::Ldl;
-use super::matrix::{Matrix, Swept, leading_block};
+use super::matrix::{Matrix, Storage, Swept, leading_block};
 use nalgebra::DMatrix;
 use nalgebra_sparse::factorization::CscCholesky;
 use nalgebra_sparse::{CooMatrix, CscMatrix};
@@ -41,6 +41,8 @@ pub struct Workspace {
     transfer: Vec<f64>,
     /// Vectors of the conjugate gradients around it.
     pub vectors: Vectors,
+    /// Arrays of the last matrix, for the next one.
+    pub storage: Storage,
 }
 
 #[derive(Debug)]

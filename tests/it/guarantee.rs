@@ -3,15 +3,14 @@
 use crate::cases::{ALL, Case, R1, R5, R7, R8, Run, is_slow, run};
 use gapwright::adapt::{self, Outcome};
 use gapwright::bound::{self, Field};
-use gapwright::fem::elements::update_constant;
-use gapwright::fem::{Element, Rules, Space, assemble};
+use gapwright::fem::{Elements, Rules, Space, assemble};
 use gapwright::geometry::outline;
 use gapwright::mesh::fans::Fans;
 use gapwright::mesh::first_mesh;
 use gapwright::model::{Law, Model};
 use gapwright::solve::{self, Solution, System};
 use gapwright::sparse::cg::Vectors;
-use gapwright::sparse::{Hierarchy, Operator, Stop, Swept, conjugate_gradients};
+use gapwright::sparse::{Hierarchy, Operator, Stop, Storage, Swept, conjugate_gradients};
 use std::path::Path;
 use std::process::Command;
 
@@ -177,7 +176,7 @@ impl Operator for Plain {
 /// Without a preconditioner the first steps lower the energy slowly, so this stops far from the solution.
 fn loosely_solved(run: &Run, decrease: f64) -> Solution {
     let Outcome { mesh, space, coefficients, elements, .. } = &run.outcome;
-    let matrix = Swept::new(assemble::stiffness(mesh, space, &Fans::new(mesh), elements));
+    let matrix = Swept::new(assemble::stiffness(mesh, space, &Fans::new(mesh), elements, Storage::default()));
     let load = assemble::load(mesh, space, coefficients);
     let mut x = vec![0.0; load.len()];
     let stop = Stop { decrease, n_iterations_max: 10_000 };
@@ -253,9 +252,9 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
         let mut mesh = first_mesh(&outline).unwrap();
         for _ in 0..3 {
             let space = Space::new(&mesh);
-            let mut elements: Vec<Element> = Vec::new();
+            let mut elements = Elements::default();
             let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-            update_constant(&mesh, &coefficients, &rules, &all, &mut elements);
+            elements.update_constant(&mesh, &coefficients, &rules, &all);
             let mut solution = Solution::zero(&mesh);
             let fans = Fans::new(&mesh);
             let system = System {
@@ -289,9 +288,9 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
 /// Ends [J] of the same discrete problem, mesh given, under other rules: solved anew, to rounding.
 fn ends_under(run: &Run, rules: &Rules) -> [f64; 2] {
     let (mesh, coefficients) = (&run.outcome.mesh, &run.outcome.coefficients);
-    let mut elements: Vec<Element> = Vec::new();
+    let mut elements = Elements::default();
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    update_constant(mesh, coefficients, rules, &all, &mut elements);
+    elements.update_constant(mesh, coefficients, rules, &all);
     let fans = Fans::new(mesh);
     let system = System { mesh, space: &run.outcome.space, fans: &fans, coefficients, rules };
     let mut solution = run.outcome.solution.clone();

@@ -5,7 +5,7 @@ use gapwright::adapt::Outcome;
 use gapwright::fem::assemble;
 use gapwright::mesh::fans::Fans;
 use gapwright::sparse::cg::dot;
-use gapwright::sparse::{Multilevel, Stop, Swept, Workspace};
+use gapwright::sparse::{Multilevel, Stop, Storage, Swept, Workspace};
 use std::cell::RefCell;
 
 /// Relative error of the energy, ‖x − x*‖²_A/‖x*‖²_A, that counts as solved.
@@ -35,7 +35,8 @@ impl<'a> LastSystem<'a> {
     /// Assembles the last round's system again.
     pub fn new(outcome: &'a Outcome) -> LastSystem<'a> {
         let fans = Fans::new(&outcome.mesh);
-        let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements);
+        let Outcome { mesh, space, elements, .. } = outcome;
+        let matrix = assemble::stiffness(mesh, space, &fans, elements, Storage::default());
         let load = assemble::load(&outcome.mesh, &outcome.space, &outcome.coefficients);
         LastSystem { outcome, matrix: Swept::new(matrix), load, work: RefCell::default() }
     }

@@ -4,14 +4,14 @@
 
 use gapwright::fem::assemble;
 use gapwright::fem::element::{Frame, Pair, blend, contract, dot};
-use gapwright::fem::elements::{LOCAL_EDGES, update_constant};
+use gapwright::fem::elements::{Elements, LOCAL_EDGES};
 use gapwright::fem::moments::rule_of;
 use gapwright::fem::{Coefficients, Reluctivity, Rules, Space, evaluate};
 use gapwright::mesh::fans::{Fans, NO_TRIANGLE, edge_triangles};
 use gapwright::mesh::{Mesh, RegionId};
 use gapwright::model::Point;
 use gapwright::solve::Solution;
-use gapwright::sparse::{Hierarchy, Matrix, Multilevel, Stop, Swept, Workspace};
+use gapwright::sparse::{Hierarchy, Matrix, Multilevel, Stop, Storage, Swept, Workspace};
 
 /// A field that is known everywhere: ψ, ∇ψ and the current density that drives it, in physical space.
 pub trait Exact {
@@ -82,10 +82,10 @@ pub fn errors(mesh: &Mesh, exact: &dyn Exact) -> Errors {
             .collect(),
         current_density: vec![0.0; n_regions as usize],
     };
-    let mut elements = Vec::new();
+    let mut elements = Elements::default();
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    update_constant(mesh, &coefficients, &Rules::working(), &all, &mut elements);
-    let matrix = assemble::stiffness(mesh, &space, &Fans::new(mesh), &elements);
+    elements.update_constant(mesh, &coefficients, &Rules::working(), &all);
+    let matrix = assemble::stiffness(mesh, &space, &Fans::new(mesh), &elements, Storage::default());
     let load = load(mesh, &space, exact);
     let fixed = border_values(mesh, &space, exact);
     let x = solve(&matrix, load, &fixed);
