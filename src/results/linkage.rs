@@ -109,7 +109,7 @@ pub fn tangent(
         Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.fans, elements, Storage::default()));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
-    let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };
+    let stop = Stop { outstanding: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };
     Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0)?;
     Ok(TAU * dot(unit, &y))
 }

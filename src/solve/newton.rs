@@ -58,7 +58,7 @@ pub enum SolveError {
     Stalled { n_steps: usize, decrement: f64, wanted: f64 },
 }
 
-/// Improves `solution` until a further step would lower F by less than `decrease`·bᵀx.
+/// Improves `solution` until all further steps would lower F by less than about `decrease`·bᵀx.
 ///
 /// - `elements`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
 /// - `hierarchy`: levels of the earlier rounds in, this mesh's level added
@@ -75,7 +75,7 @@ pub fn solve(
     let effort = if system.coefficients.is_linear() {
         let matrix = assembled(system, elements, hierarchy);
         set_level(system, hierarchy, matrix.matrix(), &interpolation)?;
-        let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
+        let stop = Stop { outstanding: decrease, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &load, &mut x, &stop, 0.0)?;
         hierarchy.work.storage = matrix.into_storage();
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
@@ -140,7 +140,7 @@ fn newton(
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
-        let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
+        let stop = Stop { outstanding: 0.1 * decrease, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
         if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
             return Err(SolveError::CoarseNotPositive);

@@ -179,7 +179,7 @@ fn loosely_solved(run: &Run, decrease: f64) -> Solution {
     let matrix = Swept::new(assemble::stiffness(mesh, space, &Fans::new(mesh), elements, Storage::default()));
     let load = assemble::load(mesh, space, coefficients);
     let mut x = vec![0.0; load.len()];
-    let stop = Stop { decrease, n_iterations_max: 10_000 };
+    let stop = Stop { outstanding: decrease, n_iterations_max: 10_000 };
     let mut vectors = Vectors::default();
     conjugate_gradients(&mut Plain(matrix), &load, &mut x, &stop, 0.0, &mut vectors).unwrap();
     let (vertex, edge) = space.expand(mesh, &x);
