@@ -95,10 +95,13 @@ fn dispatch(command: &Command) -> Result<End, Stop> {
     }
 }
 
-/// Bounds the thread pool before anything uses it.
+/// Makes the thread pool before anything uses it, this thread being one of its own: no hand-over for small work.
 fn set_threads(options: &Options) -> Result<(), Stop> {
-    let Some(n_threads) = options.threads else { return Ok(()) };
-    rayon::ThreadPoolBuilder::new().num_threads(usize::from(n_threads)).build_global().map_err(
-        |e| Stop::new(End::InputWrong, format!("--threads {n_threads}: {e}; ask for fewer")),
-    )
+    // 0: one per processor.
+    let n_threads = options.threads.map_or(0, usize::from);
+    let pool = rayon::ThreadPoolBuilder::new().num_threads(n_threads).use_current_thread();
+    pool.build_global().map_err(|e| {
+        let asked = options.threads.map_or(String::new(), |n| format!("--threads {n}: "));
+        Stop::new(End::InputWrong, format!("{asked}{e}; ask for fewer threads with --threads"))
+    })
 }

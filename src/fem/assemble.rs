@@ -3,7 +3,7 @@
 use super::batches::in_order;
 use super::coefficients::Coefficients;
 use super::element::{Frame, GRADIENT, Pair};
-use super::elements::{Elements, LOCAL_EDGES, packed};
+use super::elements::{Elements, LOCAL_EDGES, PLACE};
 use super::space::{NONE, Space};
 use crate::mesh::Mesh;
 use crate::mesh::fans::{Fans, NO_TRIANGLE};
@@ -52,7 +52,6 @@ pub fn stiffness(
 }
 
 /// Consecutive finished rows.
-#[derive(Default)]
 struct Piece {
     ends: Vec<usize>,
     columns: Vec<u32>,
@@ -60,18 +59,35 @@ struct Piece {
 }
 
 impl Piece {
-    /// Appends a row from its entries, those of vertices before those of edges; unknowns of vertices have the smaller numbers.
-    fn push(&mut self, vertices: &mut [(u32, f64)], edges: &mut [(u32, f64)]) {
-        for part in [vertices, edges] {
-            part.sort_unstable_by_key(|entry| entry.0);
-            // Constrained ones are last: NONE is the largest number.
-            for &(column, value) in part.iter().take_while(|entry| entry.0 != NONE) {
-                self.columns.push(column);
-                self.values.push(value);
-            }
+    fn with_room(n_rows: usize) -> Piece {
+        // Twelve entries a row on average; a fan of many triangles has more.
+        let n = 14 * n_rows;
+        Piece {
+            ends: Vec::with_capacity(n_rows),
+            columns: Vec::with_capacity(n),
+            values: Vec::with_capacity(n),
         }
+    }
+
+    /// Appends entries to the row at hand, ordered by column; entries of constrained unknowns fall away.
+    fn push(&mut self, keys: &mut [u64], values: &[f64]) {
+        keys.sort_unstable();
+        // Those of constrained unknowns are last: no number is larger than NONE.
+        let n_constrained = keys.iter().rev().take_while(|&&k| key(NONE, 0) <= k).count();
+        let entries = &keys[..keys.len() - n_constrained];
+        self.columns.extend(entries.iter().map(|k| (k >> 32) as u32));
+        self.values.extend(entries.iter().map(|&k| values[k as u32 as usize]));
+    }
+
+    fn end_row(&mut self) {
         self.ends.push(self.columns.len());
     }
+}
+
+/// What is sorted instead of an entry: its column, and its place below.
+#[inline]
+fn key(column: u32, place: usize) -> u64 {
+    u64::from(column) << 32 | place as u64
 }
 
 struct Rows<'a> {
@@ -87,57 +103,64 @@ impl Rows<'_> {
     /// The rows of owners `range`: vertices, then edges, those without an unknown left out.
     fn gather(&self, range: Range<usize>) -> Piece {
         let n_vertices = self.mesh.points.len();
-        let mut piece = Piece::default();
-        let (mut vertices, mut edges) = (Vec::new(), Vec::new());
+        let mut piece = Piece::with_room(range.len());
+        let (mut keys, mut values) = (Vec::new(), Vec::new());
         for owner in range {
             if owner < n_vertices {
                 if self.space.vertex_dof[owner] != NONE {
-                    self.vertex_row(owner, &mut vertices, &mut edges);
-                    piece.push(&mut vertices, &mut edges);
+                    self.vertex_row(owner, &mut keys, &mut values, &mut piece);
                 }
             } else if self.space.edge_dof[owner - n_vertices] != NONE {
-                let (mut vertices, mut edges) = self.edge_row(owner - n_vertices);
-                piece.push(&mut vertices, &mut edges);
+                self.edge_row(owner - n_vertices, &mut piece);
             }
         }
         piece
     }
 
-    /// The vertex itself and its spokes' far ends; the spokes and the rim.
+    /// The spokes' far ends and the vertex itself; the spokes and the rim.
     fn vertex_row(
         &self,
         vertex: usize,
-        vertices: &mut Vec<(u32, f64)>,
-        edges: &mut Vec<(u32, f64)>,
+        keys: &mut Vec<u64>,
+        values: &mut Vec<f64>,
+        piece: &mut Piece,
     ) {
         let fan = self.fans.around(vertex);
         let n = fan.len();
-        vertices.clear();
-        vertices.resize(n + 1, (0, 0.0));
-        edges.clear();
-        edges.resize(2 * n, (0, 0.0));
+        // Places: far ends 0.., the vertex n, spokes n + 1.., rim 2n + 1...
+        keys.clear();
+        keys.resize(3 * n + 1, 0);
+        values.clear();
+        values.resize(3 * n + 1, 0.0);
         for (q, blade) in fan.iter().enumerate() {
             let (t, a) = (blade.triangle as usize, blade.corner as usize);
             let (b, c) = ((a + 1) % 3, (a + 2) % 3);
             let next = if q + 1 == n { 0 } else { q + 1 };
             let (dofs, stiffness) = (&self.dofs[t], &self.elements.stiffness[t]);
-            let entry = |k: usize| stiffness[packed(a, k)];
-            vertices[n].0 = dofs[a];
-            vertices[n].1 += entry(a);
-            vertices[q].0 = dofs[b];
-            vertices[q].1 += entry(b);
-            vertices[next].1 += entry(c);
-            edges[q].0 = dofs[3 + a];
-            edges[q].1 += entry(3 + a);
-            edges[next].1 += entry(3 + c);
-            edges[n + q] = (dofs[3 + b], entry(3 + b));
+            let entry = |k: usize| stiffness[PLACE[a][k]];
+            keys[n] = key(dofs[a], n);
+            keys[q] = key(dofs[b], q);
+            keys[n + 1 + q] = key(dofs[3 + a], n + 1 + q);
+            keys[2 * n + 1 + q] = key(dofs[3 + b], 2 * n + 1 + q);
+            values[n] += entry(a);
+            values[q] += entry(b);
+            values[next] += entry(c);
+            values[n + 1 + q] += entry(3 + a);
+            values[n + 1 + next] += entry(3 + c);
+            values[2 * n + 1 + q] = entry(3 + b);
         }
+        // Unknowns of vertices have smaller numbers than those of edges.
+        let (vertices, edges) = keys.split_at_mut(n + 1);
+        piece.push(vertices, values);
+        piece.push(edges, values);
+        piece.end_row();
     }
 
     /// Both ends and both far corners; the edge itself and the four others of its triangles.
-    fn edge_row(&self, edge: usize) -> ([(u32, f64); 4], [(u32, f64); 5]) {
-        let mut vertices = [(NONE, 0.0); 4];
-        let mut edges = [(NONE, 0.0); 5];
+    fn edge_row(&self, edge: usize, piece: &mut Piece) {
+        let (mut vertices, mut edges) = ([key(NONE, 0); 4], [key(NONE, 0); 5]);
+        // Places: start 0, end 1, far corners 2 and 3, the edge 4, two of either triangle 5 and 7.
+        let mut values = [0.0; 9];
         for (side, &t) in self.fans.edge_triangles[edge].iter().enumerate() {
             if t == NO_TRIANGLE {
                 continue;
@@ -147,20 +170,25 @@ impl Rows<'_> {
             let k = usize::from(own[1] as usize == edge) + 2 * usize::from(own[2] as usize == edge);
             let (next, far) = ((k + 1) % 3, (k + 2) % 3);
             let (dofs, stiffness) = (&self.dofs[t], &self.elements.stiffness[t]);
-            let entry = |l: usize| stiffness[packed(3 + k, l)];
+            let entry = |l: usize| stiffness[PLACE[3 + k][l]];
             // The two triangles run along the edge in opposite directions.
             let (start, end) = if side == 0 { (k, next) } else { (next, k) };
-            vertices[0].0 = dofs[start];
-            vertices[0].1 += entry(start);
-            vertices[1].0 = dofs[end];
-            vertices[1].1 += entry(end);
-            vertices[2 + side] = (dofs[far], entry(far));
-            edges[0].0 = dofs[3 + k];
-            edges[0].1 += entry(3 + k);
-            edges[1 + 2 * side] = (dofs[3 + next], entry(3 + next));
-            edges[2 + 2 * side] = (dofs[3 + far], entry(3 + far));
+            vertices[0] = key(dofs[start], 0);
+            vertices[1] = key(dofs[end], 1);
+            vertices[2 + side] = key(dofs[far], 2 + side);
+            edges[0] = key(dofs[3 + k], 4);
+            edges[1 + 2 * side] = key(dofs[3 + next], 5 + 2 * side);
+            edges[2 + 2 * side] = key(dofs[3 + far], 6 + 2 * side);
+            values[0] += entry(start);
+            values[1] += entry(end);
+            values[2 + side] = entry(far);
+            values[4] += entry(3 + k);
+            values[5 + 2 * side] = entry(3 + next);
+            values[6 + 2 * side] = entry(3 + far);
         }
-        (vertices, edges)
+        piece.push(&mut vertices, &values);
+        piece.push(&mut edges, &values);
+        piece.end_row();
     }
 }
 

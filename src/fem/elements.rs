@@ -23,6 +23,17 @@ pub const fn packed(i: usize, j: usize) -> usize {
     i * (11 - i) / 2 + j
 }
 
+/// [`packed`] as a table.
+pub const PLACE: [[usize; 6]; 6] = {
+    let mut table = [[0; 6]; 6];
+    let mut k = 0;
+    while k < 36 {
+        table[k / 6][k % 6] = packed(k / 6, k % 6);
+        k += 1;
+    }
+    table
+};
+
 /// One triangle's matrices.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Element {
@@ -95,14 +106,15 @@ impl Elements {
         /// Triangles of one piece of work.
         const N_PIECE: usize = 256;
         self.resize(mesh.triangles.len());
-        let element = |&t: &u32| match &coefficients.reluctivity[mesh.regions[t as usize].0 as usize] {
-            Reluctivity::Constant(nu) => {
-                let frame = Frame::new(mesh, t as usize);
-                let moments = constant_moments(&frame, rule_of(rules, &frame), *nu);
-                Some((t, Element::new(&frame, &moments)))
-            }
-            Reluctivity::Saturating(_) => None,
-        };
+        let element =
+            |&t: &u32| match &coefficients.reluctivity[mesh.regions[t as usize].0 as usize] {
+                Reluctivity::Constant(nu) => {
+                    let frame = Frame::new(mesh, t as usize);
+                    let moments = constant_moments(&frame, rule_of(rules, &frame), *nu);
+                    Some((t, Element::new(&frame, &moments)))
+                }
+                Reluctivity::Saturating(_) => None,
+            };
         let pieces: Vec<&[u32]> = fresh.chunks(N_PIECE).collect();
         in_order(
             pieces.len(),

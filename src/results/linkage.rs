@@ -105,8 +105,13 @@ pub fn tangent(
     unit: &[f64],
     rate: &[f64],
 ) -> Result<Henry, CgError> {
-    let matrix =
-        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.fans, elements, Storage::default()));
+    let matrix = Swept::new(assemble::stiffness(
+        &outcome.mesh,
+        &outcome.space,
+        &outcome.fans,
+        elements,
+        Storage::default(),
+    ));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
     let stop = Stop { outstanding: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };

@@ -21,7 +21,9 @@ pub struct Convergence {
 pub enum CgError {
     #[error("matrix is not positive definite: pᵀAp = {curvature:.3e} in iteration {iteration}")]
     NotPositiveDefinite { iteration: usize, curvature: f64 },
-    #[error("relative error {reached:.1e} of the energy after {n_iterations} iterations, wanted {wanted:.1e}")]
+    #[error(
+        "relative error {reached:.1e} of the energy after {n_iterations} iterations, wanted {wanted:.1e}"
+    )]
     NotConverged { n_iterations: usize, reached: f64, wanted: f64 },
 }
 

@@ -176,7 +176,13 @@ impl Operator for Plain {
 /// Without a preconditioner the first steps lower the energy slowly, so this stops far from the solution.
 fn loosely_solved(run: &Run, decrease: f64) -> Solution {
     let Outcome { mesh, space, coefficients, elements, .. } = &run.outcome;
-    let matrix = Swept::new(assemble::stiffness(mesh, space, &Fans::new(mesh), elements, Storage::default()));
+    let matrix = Swept::new(assemble::stiffness(
+        mesh,
+        space,
+        &Fans::new(mesh),
+        elements,
+        Storage::default(),
+    ));
     let load = assemble::load(mesh, space, coefficients);
     let mut x = vec![0.0; load.len()];
     let stop = Stop { outstanding: decrease, n_iterations_max: 10_000 };
