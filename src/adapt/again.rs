@@ -96,11 +96,11 @@ pub fn rate_ends_at(
 
 /// The width to hand to [`at_density`] where the flux linkage is wanted, not only the coenergy.
 ///
-/// λ errs like the field, the coenergy like its square: with η·min(1 %, 100 η) the algebraic error of λ is at most
-/// √(3e-4·100)·η = 0.17 η, and 2 % of η where η is 0.5 %.
+/// λ errs like the field, the coenergy like its square: with η·min(10 %, 1000 η) the algebraic error of λ is at most
+/// √(3e-5·1000)·η = 0.17 η, and 2 % of η where η is 0.5 %.
 pub fn linkage_width(relative_width: f64) -> f64 {
     let width = relative_width.min(1.0);
-    (width * (100.0 * width).min(1e-2)).max(1e-13)
+    (width * (1000.0 * width).min(0.1)).max(1e-13)
 }
 
 /// δ = √η.

@@ -17,9 +17,9 @@ use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::sparse::Hierarchy;
 use crate::units::{Joule, MU0};
 
-/// The algebraic error may use this share of the interval : its square root, 1.7 %, is what it may add to the
+/// The algebraic error may use this share of the interval: its square root, 0.6 %, is what it may add to the
 /// error in norm. A cost setting, not a safety setting.
-const ALGEBRAIC_SHARE: f64 = 3e-4;
+const ALGEBRAIC_SHARE: f64 = 3e-5;
 /// Dörfler's share of the total that the marked triangles hold.
 const MARKED_SHARE: f64 = 0.7;
 /// Rounds at the probes alone; each halves their triangles. On the axis and towards infinity a triangle's own share falls

@@ -10,7 +10,7 @@ mod tree;
 pub use tree::{defect, scale};
 
 use crate::fem::element::Frame;
-use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux};
+use crate::fem::moments::{energy_of_flux, linear_flux, rule_of, saturating_flux};
 use crate::fem::{Coefficients, Elements, Reluctivity, Rules};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
@@ -82,8 +82,8 @@ fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
     let gradients = field.solution.gradients(field.mesh, t);
     match &field.coefficients.reluctivity[field.mesh.regions[t].0 as usize] {
         Reluctivity::Constant(_) => {
-            let k = &field.elements.k[t];
-            (linear_flux(k, &gradients), linear_energy(k, &gradients))
+            let flux = linear_flux(&field.elements.k[t], &gradients);
+            (flux, energy_of_flux(&flux, &gradients))
         }
         Reluctivity::Saturating(law) => {
             let frame = Frame::new(field.mesh, t);

@@ -3,7 +3,7 @@
 use super::element::Patchwork;
 use super::{Field, Flux};
 use crate::fem::batches::in_order;
-use crate::fem::elements::{Packed, packed};
+use crate::fem::elements::{PLACE, Packed};
 use crate::mesh::Mesh;
 use crate::mesh::fans::{Blade, Fans};
 
@@ -185,7 +185,7 @@ impl Workspace {
 #[inline]
 fn corner_gram(gram: &Packed, a: usize) -> [[f64; 4]; 4] {
     let (out, back) = (a, (a + 2) % 3);
-    let at = |i: usize, j: usize| gram[packed(i, j)];
+    let at = |i: usize, j: usize| gram[PLACE[i][j]];
     // The form on the edge from a + 2 to a points towards the vertex.
     let with_back = [-at(out, back), -at(back, 3 + out), -at(back, 3 + back)];
     let (tilt_out, tilt_back) = (at(out, 3 + out), at(out, 3 + back));

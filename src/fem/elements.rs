@@ -4,8 +4,8 @@
 
 use super::batches::in_order;
 use super::coefficients::{Coefficients, Reluctivity};
-use super::element::{Frame, GRADIENT, Tensor, contract};
-use super::moments::{Moments, PAIR_INDEX, constant_moments, rule_of};
+use super::element::{Frame, Tensor};
+use super::moments::{Moments, PAIR_INDEX, PAIRS, constant_moments, rule_of};
 use super::quadrature::Rules;
 use crate::mesh::Mesh;
 use crate::mesh::bisect::MADE;
@@ -52,13 +52,7 @@ impl Element {
         if frame.axis != 0 {
             fold_axis(&mut stiffness, frame);
         }
-        let mut half = [0.0; 21];
-        for i in 0..6 {
-            for j in i..6 {
-                half[packed(i, j)] = stiffness[i][j];
-            }
-        }
-        Element { k: moments.k, stiffness: half, gram: gram(&moments.c) }
+        Element { k: moments.k, stiffness, gram: gram(&moments.c) }
     }
 }
 
@@ -134,69 +128,81 @@ fn spread<T: Copy>(values: &mut [T], origin: &[u32]) {
     }
 }
 
-/// Stiffness of one triangle, 6 × 6: vertices, then edge bubbles 4λ_iλ_j; axis rule not yet applied.
+/// ∇λ_a·T·∇λ_b of each of six tensors, for every pair (a, b) in storage order.
+///
+/// The reference gradients being (−1, −1), (1, 0) and (0, 1), these are sums of the tensor's own entries.
+fn contracted(tensors: &[Tensor; 6]) -> [[f64; 6]; 6] {
+    let mut table = [[0.0; 6]; 6];
+    for (row, [xx, xy, yy]) in table.iter_mut().zip(tensors) {
+        let (x, y) = (xx + xy, xy + yy);
+        // (0, 0), (1, 1), (2, 2), (0, 1), (1, 2), (2, 0).
+        *row = [x + y, *xx, *yy, -x, *xy, -y];
+    }
+    table
+}
+
+/// The four products of an edge (i, j) with an edge (p, q): ip, iq, jp, jq, where `mn` is λ_m λ_n times the other two gradients.
+#[inline]
+fn four(table: &[[f64; 6]; 6], (i, j): (usize, usize), (p, q): (usize, usize)) -> [f64; 4] {
+    let at = |m: usize, n: usize, a: usize, b: usize| table[PAIR_INDEX[m][n]][PAIR_INDEX[a][b]];
+    [at(i, p, j, q), at(i, q, j, p), at(j, p, i, q), at(j, q, i, p)]
+}
+
+/// Stiffness of one triangle: vertices, then edge bubbles 4λ_iλ_j; axis rule not yet applied.
 ///
 /// Edge–edge entries are 16·Σ G·k·G over the two ends of each, vertex–edge ones need only the row sums K_m (eq. 8).
-pub fn element_stiffness(k: &[Tensor; 6]) -> [[f64; 6]; 6] {
-    let pair = |m: usize, n: usize| k[PAIR_INDEX[m][n]];
-    let add = |a: Tensor, b: Tensor| [a[0] + b[0], a[1] + b[1], a[2] + b[2]];
-    let row: [Tensor; 3] = [0, 1, 2].map(|m| add(add(pair(m, 0), pair(m, 1)), pair(m, 2)));
-    let total = add(add(row[0], row[1]), row[2]);
-    let g = GRADIENT;
-    let mut stiffness = [[0.0; 6]; 6];
-    for i in 0..3 {
-        for j in i..3 {
-            stiffness[i][j] = contract(g[i], total, g[j]);
-        }
+fn element_stiffness(k: &[Tensor; 6]) -> Packed {
+    let table = contracted(k);
+    // row[m][ab] = ∇λ_a·K_m·∇λ_b.
+    let mut row = [[0.0; 6]; 3];
+    for ab in 0..6 {
+        row[0][ab] = table[0][ab] + table[3][ab] + table[5][ab];
+        row[1][ab] = table[3][ab] + table[1][ab] + table[4][ab];
+        row[2][ab] = table[5][ab] + table[4][ab] + table[2][ab];
+    }
+    let mut stiffness = [0.0; 21];
+    for (ab, (a, b)) in PAIRS.into_iter().enumerate() {
+        stiffness[packed(a, b)] = row[0][ab] + row[1][ab] + row[2][ab];
     }
     for (e, (i, j)) in LOCAL_EDGES.into_iter().enumerate() {
         for l in 0..3 {
-            stiffness[l][3 + e] =
-                4.0 * (contract(g[j], row[i], g[l]) + contract(g[i], row[j], g[l]));
+            stiffness[packed(l, 3 + e)] =
+                4.0 * (row[i][PAIR_INDEX[j][l]] + row[j][PAIR_INDEX[i][l]]);
         }
-        for (f, (p, q)) in LOCAL_EDGES.into_iter().enumerate().skip(e) {
-            let sum = contract(g[j], pair(i, p), g[q])
-                + contract(g[j], pair(i, q), g[p])
-                + contract(g[i], pair(j, p), g[q])
-                + contract(g[i], pair(j, q), g[p]);
-            stiffness[3 + e][3 + f] = 16.0 * sum;
-        }
-    }
-    for i in 0..6 {
-        for j in 0..i {
-            stiffness[i][j] = stiffness[j][i];
+        for (f, other) in LOCAL_EDGES.into_iter().enumerate().skip(e) {
+            let [ip, iq, jp, jq] = four(&table, (i, j), other);
+            stiffness[packed(3 + e, 3 + f)] = 16.0 * (ip + iq + jp + jq);
         }
     }
     stiffness
 }
 
 /// Applies the axis rule: a half-axis edge (v, axis) gives −¼ of its row and column to v.
-fn fold_axis(stiffness: &mut [[f64; 6]; 6], frame: &Frame) {
+fn fold_axis(stiffness: &mut Packed, frame: &Frame) {
     for (e, (i, j)) in LOCAL_EDGES.into_iter().enumerate() {
         let v = match (frame.on_axis(i), frame.on_axis(j)) {
             (false, true) => i,
             (true, false) => j,
             _ => continue,
         };
-        for k in 0..6 {
-            stiffness[v][k] -= 0.25 * stiffness[3 + e][k];
-        }
-        for k in 0..6 {
-            stiffness[k][v] -= 0.25 * stiffness[k][3 + e];
+        let edge = |k: usize| packed(k, 3 + e);
+        // Twice into the diagonal: once by row and once by column, each from what the other has left.
+        let own = stiffness[edge(v)];
+        let bubble = stiffness[edge(3 + e)];
+        stiffness[packed(v, v)] += -0.5 * own + 0.0625 * bubble;
+        for k in (0..6).filter(|&k| k != v) {
+            stiffness[packed(v, k)] -= 0.25 * stiffness[edge(k)];
         }
     }
 }
 
 /// Gram matrix of the Whitney forms w_ij = λ_i dλ_j − λ_j dλ_i and d_ij = λ_i dλ_j + λ_j dλ_i.
 fn gram(c: &[Tensor; 6]) -> Packed {
+    let table = contracted(c);
     let mut gram = [0.0; 21];
-    let g = GRADIENT;
-    for (e, (i, j)) in LOCAL_EDGES.into_iter().enumerate() {
-        for (f, (p, q)) in LOCAL_EDGES.into_iter().enumerate() {
-            let ip = contract(g[j], c[PAIR_INDEX[i][p]], g[q]);
-            let iq = contract(g[j], c[PAIR_INDEX[i][q]], g[p]);
-            let jp = contract(g[i], c[PAIR_INDEX[j][p]], g[q]);
-            let jq = contract(g[i], c[PAIR_INDEX[j][q]], g[p]);
+    for (e, one) in LOCAL_EDGES.into_iter().enumerate() {
+        for (f, other) in LOCAL_EDGES.into_iter().enumerate() {
+            let [ip, iq, jp, jq] = four(&table, one, other);
             if e <= f {
                 gram[packed(e, f)] = ip - iq - jp + jq;
                 gram[packed(3 + e, 3 + f)] = ip + iq + jp + jq;

@@ -2,7 +2,7 @@
 
 use super::Solution;
 use crate::fem::element::{Frame, Pair};
-use crate::fem::moments::{Saturated, linear_energy, linear_flux, rule_of, saturated};
+use crate::fem::moments::{Saturated, energy_of_flux, linear_flux, rule_of, saturated};
 use crate::fem::{Coefficients, Element, Elements, Reluctivity, Rules, Space, assemble, space};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
@@ -254,7 +254,8 @@ fn linear_parts(
     let part = |t: usize| match law_of(system, t) {
         Reluctivity::Constant(_) => {
             let gradients = solution.gradients(system.mesh, t);
-            (linear_flux(&elements.k[t], &gradients), linear_energy(&elements.k[t], &gradients))
+            let flux = linear_flux(&elements.k[t], &gradients);
+            (flux, energy_of_flux(&flux, &gradients))
         }
         Reluctivity::Saturating(_) => ([[0.0; 2]; 3], 0.0),
     };

@@ -143,7 +143,7 @@ fn low_ends_rise_from_round_to_round() {
     for case in ALL {
         let Run { outcome, .. } = Run::new(case.model(1e-4));
         for pair in outcome.rounds.windows(2) {
-            // Spaces nest, so an exact solve rises. A round's stop leaves about 3e-4 of the interval before it, and the
+            // Spaces nest, so an exact solve rises. A round's stop leaves about 3e-5 of the interval before it, and the
             // axis rule, which bisection does not nest, costs less than that.
             let allowed = 1e-3 * (pair[0].high - pair[0].low);
             assert!(
