@@ -242,9 +242,10 @@ fn cut(
     let width = outcome.bound.relative_width();
     let solution = &mut outcome.solution;
     let mut carried = Carried { vertex: &mut solution.vertex, edge: &mut solution.edge };
-    let changes = bisect(&mut outcome.mesh, marked, &mut carried);
-    outcome.elements.renumber(&changes.origin);
+    let pairs = &outcome.fans.edge_triangles;
+    let changes = bisect(&mut outcome.mesh, pairs, marked, &mut carried);
     progress(Event::Finished(Stage::Refine));
+    outcome.elements.renumber(&changes.origin);
     round(outcome, &changes.fresh, width, rules, accuracy, progress)
 }
 

@@ -4,7 +4,7 @@
 //! exactly: a new vertex takes the edge's midpoint value, new bubbles follow from second differences.
 //! Source: W. F. Mitchell, ACM Trans. Math. Softw. 15 (1989) 326 (bisection by newest vertex).
 
-use super::{Mesh, Point};
+use super::{Chart, Mesh, Point, RegionId};
 
 /// Marks an edge that is not cut.
 const UNCUT: u32 = u32::MAX;
@@ -33,65 +33,105 @@ pub const MADE: u32 = u32::MAX;
 /// Children take their parent's place in the order and edges follow the triangles, so that what touches in the plane lies
 /// near in memory at every size.
 ///
+/// - `edge_triangles`: of the mesh as it is
 /// - `marked`: triangles to refine
 /// - `carried`: coefficients on the old mesh in, on the new mesh out
-pub fn bisect(mesh: &mut Mesh, marked: &[u32], carried: &mut Carried) -> Changes {
-    let is_cut = close(mesh, marked);
+pub fn bisect(
+    mesh: &mut Mesh,
+    edge_triangles: &[[u32; 2]],
+    marked: &[u32],
+    carried: &mut Carried,
+) -> Changes {
+    let is_cut = close(mesh, edge_triangles, marked);
     let cut = cut_edges(mesh, &is_cut, carried);
-    let is_old_and_cut = |e: u32| (e as usize) < cut.len() && cut[e as usize].vertex != UNCUT;
-    let n_room = mesh.triangles.len() + 4 * marked.len();
-    let (mut pieces, mut parents) = (Vec::with_capacity(n_room), Vec::with_capacity(n_room));
-    let mut changes = Changes { fresh: Vec::new(), origin: Vec::with_capacity(n_room) };
+    let is_old_and_cut = |e: u32| cut.get(e as usize).is_some_and(|cut| cut.vertex != UNCUT);
+    let mut new = Reordered::with_room(mesh);
     for t in 0..mesh.triangles.len() {
         let whole = Piece { corners: mesh.triangles[t], edges: mesh.triangle_edges[t] };
         if !is_old_and_cut(whole.edges[0]) {
-            changes.origin.push(t as u32);
-            pieces.push(whole);
-            parents.push(t as u32);
+            new.push(mesh, t, whole, t as u32);
             continue;
         }
-        let n_before = pieces.len();
         for half in split(mesh, whole, &cut, Generation::First, carried) {
             // The parent's other edges are the children's refinement edges; they may be cut as well.
-            match is_old_and_cut(half.edges[0]) {
-                true => pieces.extend(split(mesh, half, &cut, Generation::Second, carried)),
-                false => pieces.push(half),
+            if is_old_and_cut(half.edges[0]) {
+                for quarter in split(mesh, half, &cut, Generation::Second, carried) {
+                    new.push(mesh, t, quarter, MADE);
+                }
+            } else {
+                new.push(mesh, t, half, MADE);
             }
         }
-        changes.fresh.extend(n_before as u32..pieces.len() as u32);
-        changes.origin.resize(pieces.len(), MADE);
-        parents.resize(pieces.len(), t as u32);
     }
-    mesh.regions = parents.iter().map(|&t| mesh.regions[t as usize]).collect();
-    mesh.charts = parents.iter().map(|&t| mesh.charts[t as usize]).collect();
-    mesh.triangles = pieces.iter().map(|piece| piece.corners).collect();
-    mesh.triangle_edges = pieces.iter().map(|piece| piece.edges).collect();
-    number_edges(mesh, carried.edge);
+    let changes = new.replace(mesh, carried.edge);
     mesh.level_sizes.push(mesh.points.len());
     changes
 }
 
-/// Numbers the edges in the order in which the triangles meet them.
-fn number_edges(mesh: &mut Mesh, coefficients: &mut Vec<f64>) {
-    const UNMET: u32 = u32::MAX;
-    let mut place = vec![UNMET; mesh.edges.len()];
-    let (mut edges, mut values) =
-        (Vec::with_capacity(mesh.edges.len()), Vec::with_capacity(mesh.edges.len()));
-    for e in mesh.triangle_edges.iter_mut().flatten() {
-        let old = *e as usize;
-        if place[old] == UNMET {
-            place[old] = edges.len() as u32;
-            edges.push(mesh.edges[old]);
-            values.push(coefficients[old]);
+/// The new triangles in their order, and the edges in the order in which these meet them.
+struct Reordered {
+    triangles: Vec<[u32; 3]>,
+    triangle_edges: Vec<[u32; 3]>,
+    regions: Vec<RegionId>,
+    charts: Vec<Chart>,
+    changes: Changes,
+    /// Final number of an edge, [`UNMET`] as long as no triangle has met it.
+    place: Vec<u32>,
+    /// Edges in their final order.
+    edges: Vec<u32>,
+}
+
+/// Marks an edge without a final number.
+const UNMET: u32 = u32::MAX;
+
+impl Reordered {
+    /// Room for what becomes of a mesh whose new vertices are there already: of a disc, twice as many triangles.
+    fn with_room(mesh: &Mesh) -> Reordered {
+        let n_new = 2 * mesh.points.len();
+        Reordered {
+            triangles: Vec::with_capacity(n_new),
+            triangle_edges: Vec::with_capacity(n_new),
+            regions: Vec::with_capacity(n_new),
+            charts: Vec::with_capacity(n_new),
+            changes: Changes { fresh: Vec::new(), origin: Vec::with_capacity(n_new) },
+            place: vec![UNMET; mesh.edges.len()],
+            edges: Vec::with_capacity(mesh.edges.len()),
         }
-        *e = place[old];
     }
-    (mesh.edges, *coefficients) = (edges, values);
+
+    /// Appends a triangle, `parent` being the old one whose region and chart it has.
+    fn push(&mut self, mesh: &Mesh, parent: usize, piece: Piece, origin: u32) {
+        if origin == MADE {
+            self.changes.fresh.push(self.triangles.len() as u32);
+        }
+        self.changes.origin.push(origin);
+        self.triangles.push(piece.corners);
+        self.regions.push(mesh.regions[parent]);
+        self.charts.push(mesh.charts[parent]);
+        self.place.resize(mesh.edges.len(), UNMET);
+        self.triangle_edges.push(piece.edges.map(|e| {
+            let place = &mut self.place[e as usize];
+            if *place == UNMET {
+                *place = self.edges.len() as u32;
+                self.edges.push(e);
+            }
+            *place
+        }));
+    }
+
+    fn replace(self, mesh: &mut Mesh, coefficients: &mut Vec<f64>) -> Changes {
+        mesh.triangles = self.triangles;
+        mesh.triangle_edges = self.triangle_edges;
+        mesh.regions = self.regions;
+        mesh.charts = self.charts;
+        mesh.edges = self.edges.iter().map(|&e| mesh.edges[e as usize]).collect();
+        *coefficients = self.edges.iter().map(|&e| coefficients[e as usize]).collect();
+        self.changes
+    }
 }
 
 /// Edges to cut: those of the marked triangles, and the refinement edge wherever any other edge is cut.
-fn close(mesh: &Mesh, marked: &[u32]) -> Vec<bool> {
-    let pairs = super::fans::edge_triangles(mesh);
+fn close(mesh: &Mesh, edge_triangles: &[[u32; 2]], marked: &[u32]) -> Vec<bool> {
     let mut is_cut = vec![false; mesh.edges.len()];
     let mut stack: Vec<u32> = Vec::new();
     for &t in marked {
@@ -104,7 +144,7 @@ fn close(mesh: &Mesh, marked: &[u32]) -> Vec<bool> {
     }
     // Every edge enters the stack at most once.
     while let Some(e) = stack.pop() {
-        for t in pairs[e as usize] {
+        for t in edge_triangles[e as usize] {
             if t == super::fans::NO_TRIANGLE {
                 continue;
             }
@@ -204,7 +244,8 @@ fn split(
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::mesh::{Cap, Chart, RegionId};
+    use crate::mesh::Cap;
+    use crate::mesh::fans::edge_triangles;
 
     /// The square 1 < r < 2, 0 < z < 1 in two triangles, no axis.
     fn square() -> Mesh {
@@ -264,8 +305,9 @@ mod tests {
             let marked: Vec<u32> =
                 (0..mesh.triangles.len() as u32).filter(|t| t % 3 == round % 2).collect();
             let before_cut = mesh.triangles.clone();
-            let Changes { fresh, origin } =
-                bisect(&mut mesh, &marked, &mut Carried { vertex: &mut vertex, edge: &mut edge });
+            let pairs = edge_triangles(&mesh);
+            let mut carried = Carried { vertex: &mut vertex, edge: &mut edge };
+            let Changes { fresh, origin } = bisect(&mut mesh, &pairs, &marked, &mut carried);
             assert_eq!(origin.len(), mesh.triangles.len());
             for (t, &old) in origin.iter().enumerate() {
                 assert_eq!(fresh.contains(&(t as u32)), old == MADE);

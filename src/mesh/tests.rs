@@ -1,6 +1,6 @@
 //! First meshes of reference sections, random sections and hard corners.
 
-use super::{Chart, Mesh, MeshError, bisect, first_mesh};
+use super::{Chart, Mesh, MeshError, bisect, fans, first_mesh};
 use crate::geometry::samples::{
     self, Across, Form, Model, PotWall, doubled, empty, part, r1_with_gap, winding,
 };
@@ -423,7 +423,8 @@ fn a_bisected_mesh_is_valid_though_its_edges_have_lost_their_order() {
         let all: Vec<u32> = (0..mesh.n_triangles() as u32).collect();
         let (mut vertex, mut edge) = (vec![0.0; mesh.n_vertices()], vec![0.0; mesh.edges.len()]);
         let mut carried = bisect::Carried { vertex: &mut vertex, edge: &mut edge };
-        bisect::bisect(&mut mesh, &all, &mut carried);
+        let pairs = fans::edge_triangles(&mesh);
+        bisect::bisect(&mut mesh, &pairs, &all, &mut carried);
         mesh.validate();
     }
     assert!(mesh.edges.iter().any(|[a, b]| a > b));

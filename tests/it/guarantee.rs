@@ -286,7 +286,8 @@ fn the_guarantee_does_not_lean_on_the_solver_in_the_rounds() {
                 vertex: &mut solution.vertex,
                 edge: &mut solution.edge,
             };
-            gapwright::mesh::bisect::bisect(&mut mesh, &all, &mut carried);
+            let pairs = &fans.edge_triangles;
+            gapwright::mesh::bisect::bisect(&mut mesh, pairs, &all, &mut carried);
         }
     }
 }
