@@ -32,7 +32,7 @@ impl Rules {
     /// The working rules: 16 points of degree 8, and 7 × 8 Gauss points collapsed into a vertex.
     ///
     /// The coefficient ν/r is rational, so a rule that is too low *underestimates the high end*; with
-    /// these the interval moves by ≤ 1e-9 under a higher rule at intervals of 0.1 % and below (tested in `tests/it/guarantee.rs`).
+    /// these a higher rule moves the ends by less than the margin of `bound` (tested in `tests/it/guarantee.rs`).
     pub fn working() -> Rules {
         Rules { plain: degree_8(), collapsed: collapsed_rules(7, 8) }
     }

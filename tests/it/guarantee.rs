@@ -129,8 +129,8 @@ fn shares_are_not_negative_and_add_up_to_the_interval() {
         let (low, high) = (outcome.bound.low, outcome.bound.high);
         let sum: f64 = outcome.bound.shares.iter().sum();
         let least = outcome.bound.shares.iter().fold(f64::INFINITY, |m, &s| m.min(s));
-        // The ends carry the fixed margin on both sides; sums of 1e4 terms round to about 1e-14 of W'.
-        let width = high - low - 2.0 * bound::MARGIN * high / (1.0 + bound::MARGIN);
+        // The ends carry the margin on both sides; sums of 1e4 terms round to about 1e-14 of W'.
+        let width = high - low - 2.0 * outcome.bound.margin;
         println!("{}: Σ shares − (high − low) = {:.1e} W'", case.name, (sum - width) / high);
         assert!((sum - width).abs() <= 1e-13 * high, "{}: {sum} against {width}", case.name);
         // A share is a difference of terms that are parts of W'.
@@ -317,29 +317,29 @@ fn movement(run: &Run, n: usize) -> [f64; 2] {
 
 #[test]
 fn a_higher_quadrature_moves_the_ends_by_less_than_the_margin() {
-    for case in ALL {
-        for width in [1e-2, 1e-3] {
-            // On coarser meshes only the interval itself must be far wider than what quadrature moves.
-            let run = Run::new(case.model(width));
-            let movement = movement(&run, 12);
-            println!("{} at {width:.0e}: {:+.1e} {:+.1e}", case.name, movement[0], movement[1]);
-            assert!(
-                movement.iter().all(|m| m.abs() <= 1e-4 * width),
-                "{}: {movement:?}",
-                case.name
-            );
-        }
-        let run = Run::new(case.model(1e-4));
-        let movements = [12, 16].map(|n| movement(&run, n));
-        let told: Vec<String> =
-            movements.iter().map(|[low, high]| format!("{low:+.1e} {high:+.1e}")).collect();
-        println!(
-            "{}: low and high move by {} of W' under 12², 16² points",
-            case.name,
-            told.join(", ")
-        );
-        for movement in movements.iter().flatten() {
-            assert!(movement.abs() <= bound::MARGIN, "{}: {movement:.2e}", case.name);
+    let sheets = crate::sheets::all();
+    let saturating = sheets.iter().filter(|(name, _)| name.contains("saturating"));
+    let saturating =
+        saturating.map(|(name, text)| (&name[..], crate::sheets::sheet(name, text).model));
+    let linear = ALL.iter().map(|case| (case.name, case.model(1e-2)));
+    for (name, mut model) in linear.chain(saturating) {
+        for width in [1e-2, 1e-3, 1e-4] {
+            model.accuracy.interval = width;
+            let run = Run::new(model.clone());
+            let reached = run.outcome.bound.relative_width();
+            let of_width = bound::margin_of_width(&run.outcome.coefficients);
+            let margin = bound::MARGIN + of_width * reached;
+            let rules: &[usize] = if width == 1e-4 { &[12, 16] } else { &[12] };
+            for &n in rules {
+                let movement = movement(&run, n);
+                println!(
+                    "{name} at {width:.0e} under {n}² points: {:+.1e} {:+.1e} of the interval, margin {:.1e}",
+                    movement[0] / reached,
+                    movement[1] / reached,
+                    margin / reached
+                );
+                assert!(movement.iter().all(|m| m.abs() <= margin), "{name}: {movement:?}");
+            }
         }
     }
 }
