@@ -67,6 +67,17 @@ pub fn scaled(solution: &Solution, factor: f64) -> Solution {
     }
 }
 
+/// A start for the field at currents `factor` times those of the outcome.
+///
+/// A saturated core keeps its flux when the current changes a little: scaled along, it would be pushed far over the bend (8 Newton
+/// steps instead of 5 were seen at −17 %). Far below, the scaled field is the nearer one.
+pub fn start_at(outcome: &Outcome, factor: f64) -> Solution {
+    match !outcome.coefficients.is_linear() && 0.5 < factor {
+        true => outcome.solution.clone(),
+        false => scaled(&outcome.solution, factor),
+    }
+}
+
 /// Guaranteed ends of dW'/ds at s = 1, where s scales all currents (with one current: λ·I).
 pub fn work_rate_ends(outcome: &mut Outcome) -> Result<[Joule; 2], SolveError> {
     let density = outcome.coefficients.current_density.clone();

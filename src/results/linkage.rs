@@ -114,7 +114,7 @@ pub fn tangent(
     ));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
-    let stop = Stop { outstanding: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };
+    let stop = Stop { outstanding: TANGENT_DECREASE, of_lowered: 0.0, n_iterations_max: N_TANGENT_MAX };
     Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0)?;
     Ok(TAU * dot(unit, &y))
 }

@@ -18,9 +18,11 @@ const N_NEWTON_MAX: usize = 60;
 const N_HALVINGS_MAX: usize = 40;
 /// CG iterations before giving up; 20–40 are usual.
 const N_CG_MAX: usize = 2000;
-/// CG iterations above which the coarser levels are taken for stale (of another current) and rebuilt: good ones need
-/// 20–36 for 1e-10 from zero.
-const N_CG_STALE: usize = 25;
+/// A Newton step is solved to this share of the energy that it lowers: the next one would find that much anyway.
+const FORCING: f64 = 3e-4;
+/// CG iterations of a Newton step above which the coarser levels are taken for stale (of another current) and rebuilt: good ones
+/// need 2–6 for [`FORCING`].
+const N_CG_STALE: usize = 12;
 /// F rounds to about this share of itself: a smaller predicted decrease cannot be told from noise.
 const ROUNDING: f64 = 1e-15;
 /// Where no step lowers F, a predicted decrease below this share of 2|F| is the rounding of F's sum and means convergence.
@@ -75,7 +77,7 @@ pub fn solve(
     let effort = if system.coefficients.is_linear() {
         let matrix = assembled(system, elements, hierarchy);
         set_level(system, hierarchy, matrix.matrix(), &interpolation)?;
-        let stop = Stop { outstanding: decrease, n_iterations_max: N_CG_MAX };
+        let stop = Stop { outstanding: decrease, of_lowered: 0.0, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &load, &mut x, &stop, 0.0)?;
         hierarchy.work.storage = matrix.into_storage();
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
@@ -140,7 +142,7 @@ fn newton(
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
-        let stop = Stop { outstanding: 0.1 * decrease, n_iterations_max: N_CG_MAX };
+        let stop = Stop { outstanding: 0.1 * decrease, of_lowered: FORCING, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
         if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
             return Err(SolveError::CoarseNotPositive);

@@ -5,6 +5,8 @@
 pub struct Stop {
     /// Stop when the steps still to come would lower xᵀAx − 2bᵀx by less than this share of bᵀx, see [`outstanding`].
     pub outstanding: f64,
+    /// Or by less than this share of what all steps have lowered: enough for a Newton step, which is not exact itself.
+    pub of_lowered: f64,
     pub n_iterations_max: usize,
 }
 
@@ -74,7 +76,7 @@ pub fn conjugate_gradients(
         r[i] = b[i] - q[i];
     }
     let mut rz = 0.0;
-    let (mut before, mut rest) = (f64::INFINITY, f64::INFINITY);
+    let (mut before, mut rest, mut lowered) = (f64::INFINITY, f64::INFINITY, 0.0);
     for iteration in 0..stop.n_iterations_max {
         operator.precondition(r, z, az);
         let rz_before = rz;
@@ -100,7 +102,8 @@ pub fn conjugate_gradients(
         let size = dot(b, x).max(scale);
         let decrease = if 0.0 < size { alpha * rz / size } else { f64::INFINITY };
         rest = outstanding(before, decrease);
-        if rest <= stop.outstanding {
+        lowered += decrease;
+        if rest <= stop.outstanding.max(stop.of_lowered * lowered) {
             return Ok(Convergence { n_iterations: iteration + 1, outstanding: rest });
         }
         before = decrease;

@@ -185,7 +185,7 @@ fn loosely_solved(run: &Run, decrease: f64) -> Solution {
     ));
     let load = assemble::load(mesh, space, coefficients);
     let mut x = vec![0.0; load.len()];
-    let stop = Stop { outstanding: decrease, n_iterations_max: 10_000 };
+    let stop = Stop { outstanding: decrease, of_lowered: 0.0, n_iterations_max: 10_000 };
     let mut vectors = Vectors::default();
     conjugate_gradients(&mut Plain(matrix), &load, &mut x, &stop, 0.0, &mut vectors).unwrap();
     let (vertex, edge) = space.expand(mesh, &x);

@@ -44,7 +44,7 @@ impl<'a> LastSystem<'a> {
     /// The iterate from zero after `n_iterations_max` iterations or at the wanted error, and how many were used.
     pub fn solve(&self, outstanding: f64, n_iterations_max: usize) -> (Vec<f64>, usize) {
         let mut work = self.work.borrow_mut();
-        let stop = Stop { outstanding, n_iterations_max };
+        let stop = Stop { outstanding, of_lowered: 0.0, n_iterations_max };
         let mut x = vec![0.0; self.load.len()];
         let used = Multilevel::new(&self.matrix, &self.outcome.hierarchy, &mut work)
             .solve(&self.load, &mut x, &stop, 0.0);

@@ -185,7 +185,7 @@ fn solve(matrix: &Matrix, mut b: Vec<f64>, fixed: &[Option<f64>]) -> Vec<f64> {
     let reduced = Swept::new(Matrix::new((n, n), start, columns, values));
     let mut x = vec![0.0; n];
     // 1e-22 of the energy is 1e-11 of the field: far below the smallest error that is measured.
-    let stop = Stop { outstanding: 1e-22, n_iterations_max: 20_000 };
+    let stop = Stop { outstanding: 1e-22, of_lowered: 0.0, n_iterations_max: 20_000 };
     let (hierarchy, mut work) = (Hierarchy::default(), Workspace::default());
     Multilevel::new(&reduced, &hierarchy, &mut work).solve(&b, &mut x, &stop, 0.0).unwrap();
     for (x, given) in x.iter_mut().zip(fixed) {
