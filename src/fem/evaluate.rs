@@ -14,7 +14,11 @@ const AXIS_NUDGE: f64 = 1e-9;
 /// [B_r, B_z] at barycentric point `lambda` of a triangle, with the reference gradients of ψ at its corners.
 ///
 /// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
-pub fn flux_density(frame: &Frame, gradients: &[Pair; 3], lambda: &[f64; 3]) -> [Tesla; 2] {
+pub fn flux_density_components(
+    frame: &Frame,
+    gradients: &[Pair; 3],
+    lambda: &[f64; 3],
+) -> [Tesla; 2] {
     let mut lambda = *lambda;
     if frame.position(&lambda).r <= 0.0 {
         lambda = lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0);

@@ -7,7 +7,7 @@
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
 use crate::fem::element::{Pair, blend, contract, dot, sides, wedge};
-use crate::fem::moments::{flux_density, rule_of};
+use crate::fem::moments::{flux_density_magnitude, rule_of};
 use crate::geometry::{Leg, RegionKind};
 use crate::mesh::Chart;
 use crate::model::{Across, Model, Point};
@@ -53,7 +53,7 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
             * match sampler.reluctivity(t) {
                 Reluctivity::Constant(nu) => 0.5 * nu / r * stretch,
                 Reluctivity::Saturating(law) => {
-                    let b = flux_density(&frame, r, u);
+                    let b = flux_density_magnitude(&frame, r, u);
                     let square = contract(u, frame.metric, u);
                     let at = law.at(b);
                     r * at.energy * det_rate

@@ -2,7 +2,7 @@
 
 use super::HotSpot;
 use super::sample::Sampler;
-use crate::fem::evaluate::{flux_density, locate};
+use crate::fem::evaluate::{flux_density_components, locate};
 use crate::geometry::{Region, RegionKind};
 use crate::mesh::Chart;
 use crate::model::{Model, Point};
@@ -146,7 +146,7 @@ impl Search<'_> {
                 if found != local_of {
                     (local_of, local) = (found, self.sampler.local(found));
                 }
-                let [b_r, b_z] = flux_density(&local.0, &local.1, &lambda);
+                let [b_r, b_z] = flux_density_components(&local.0, &local.1, &lambda);
                 sum += (b_r * b_r + b_z * b_z).sqrt();
                 n += 1.0;
             }
@@ -182,7 +182,7 @@ fn candidates(sampler: &Sampler, radius: Meter) -> Vec<(usize, Point)> {
         let (frame, gradients) = sampler.local(t);
         let middle = [1.0 / 3.0; 3];
         let at = frame.position(&middle);
-        let [b_r, b_z] = crate::fem::evaluate::flux_density(&frame, &gradients, &middle);
+        let [b_r, b_z] = crate::fem::evaluate::flux_density_components(&frame, &gradients, &middle);
         let b = b_r.hypot(b_z);
         let key = ((at.r / radius).floor() as i64, (at.z / radius).floor() as i64, body);
         let cell =

@@ -68,7 +68,8 @@ fn samples(
     for &t in triangles {
         let (frame, gradients) = (Frame::new(mesh, t), solution.gradients(mesh, t));
         for lambda in &SAMPLES {
-            let [b_r, b_z] = crate::fem::evaluate::flux_density(&frame, &gradients, lambda);
+            let [b_r, b_z] =
+                crate::fem::evaluate::flux_density_components(&frame, &gradients, lambda);
             samples.push((b_r.hypot(b_z), TAU * frame.position(lambda).r * frame.det_abs / 6.0));
         }
     }

@@ -4,7 +4,7 @@ use crate::adapt::Outcome;
 use crate::fem::Reluctivity;
 use crate::fem::element::{Frame, Pair, blend};
 use crate::fem::evaluate;
-use crate::fem::moments::{flux_density, linear_energy, rule_of};
+use crate::fem::moments::{flux_density_magnitude, linear_energy, rule_of};
 use crate::fem::quadrature::Rules;
 use crate::geometry::Outline;
 use crate::model::Point;
@@ -59,7 +59,7 @@ impl<'a> Sampler<'a> {
     /// [B_r, B_z] at a barycentric point of triangle t.
     pub fn flux_density(&self, t: usize, lambda: &[f64; 3]) -> [Tesla; 2] {
         let (frame, gradients) = self.local(t);
-        evaluate::flux_density(&frame, &gradients, lambda)
+        evaluate::flux_density_components(&frame, &gradients, lambda)
     }
 
     /// ∫ H·B dV and ∫ w(B) dV over triangle t [J].
@@ -76,7 +76,7 @@ impl<'a> Sampler<'a> {
                 for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
                     let r = frame.position(lambda).r;
                     let u = blend(lambda, &gradients);
-                    let b = flux_density(&frame, r, u);
+                    let b = flux_density_magnitude(&frame, r, u);
                     let at = law.at(b);
                     let volume = TAU * weight * r * frame.det_abs;
                     work += volume * at.reluctivity * b * b;
@@ -104,7 +104,8 @@ impl<'a> Sampler<'a> {
         let mut values = CellValues::default();
         for t in 0..self.outcome.mesh.triangles.len() {
             let (frame, gradients) = self.local(t);
-            let at = |lambda: &[f64; 3]| evaluate::flux_density(&frame, &gradients, lambda);
+            let at =
+                |lambda: &[f64; 3]| evaluate::flux_density_components(&frame, &gradients, lambda);
             let b = at(&[1.0 / 3.0; 3]);
             let nu = self.reluctivity_at(t, b[0].hypot(b[1]));
             values.b.push(b);
