@@ -1,6 +1,6 @@
 //! Field values at points: B from ψ in either chart, and a walk that finds the triangle of a point.
 
-use super::element::{Frame, Gauge, Pair, blend, dot};
+use super::element::{Frame, Gauge, Pair, blend, dot, wedge};
 use crate::mesh::fans::NO_TRIANGLE;
 use crate::mesh::{Chart, Mesh};
 use crate::model::Point;
@@ -11,30 +11,68 @@ use std::f64::consts::PI;
 /// about the same share of the field's variation over the triangle.
 const AXIS_NUDGE: f64 = 1e-9;
 
-/// [B_r, B_z] at barycentric point `lambda` of a triangle, with the reference gradients of ψ at its corners.
-///
-/// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
-pub fn flux_density_components(
-    frame: &Frame,
-    gradients: &[Pair; 3],
-    lambda: &[f64; 3],
-) -> [Tesla; 2] {
-    let mut lambda = *lambda;
-    if frame.position(&lambda).r <= 0.0 {
-        lambda = lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0);
+/// One triangle with its field, ready to be asked at many points: λ and ∇ψ are linear on it.
+#[derive(Debug, Clone, Copy)]
+pub struct LocalField {
+    pub frame: Frame,
+    /// ∇λ_1 and ∇λ_2 in the triangle's chart [1/m].
+    slopes: [Pair; 2],
+    /// ∇ψ at the corners, in the triangle's chart [Wb/(rad·m)].
+    gradient: [Pair; 3],
+}
+
+impl LocalField {
+    /// From a triangle's geometry and the reference gradients of ψ at its corners.
+    pub fn new(frame: Frame, gradients: &[Pair; 3]) -> LocalField {
+        let slopes = [[1.0, 0.0], [0.0, 1.0]].map(|u| frame.chart_gradient(u));
+        let gradient = gradients.map(|u| [0, 1].map(|i| u[0] * slopes[0][i] + u[1] * slopes[1][i]));
+        LocalField { frame, slopes, gradient }
     }
-    let point = frame.position(&lambda);
-    let d = frame.chart_gradient(blend(&lambda, gradients));
-    match frame.gauge {
-        None => [-d[1] / point.r, d[0] / point.r],
-        Some(gauge) => {
-            let (g, y) = gauge.at(point);
-            let m = gauge.fold(g, y);
-            // g² from the gradient, g² from 1/r_x.
-            let f = g.powi(4) / point.r;
-            let x = [f * (m[0][0] * d[0] + m[1][0] * d[1]), f * (m[0][1] * d[0] + m[1][1] * d[1])];
-            [-x[1], x[0]]
+
+    /// Barycentric coordinates of a point of the triangle's chart.
+    #[inline]
+    pub fn barycentric(&self, at: Point) -> [f64; 3] {
+        let corner = self.frame.corners[0];
+        let [l1, l2] = self.slopes.map(|slope| dot(slope, [at.r - corner.r, at.z - corner.z]));
+        [1.0 - l1 - l2, l1, l2]
+    }
+
+    /// [B_r, B_z] at a barycentric point.
+    ///
+    /// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
+    pub fn components(&self, lambda: &[f64; 3]) -> [Tesla; 2] {
+        let (point, d) = self.off_axis(lambda);
+        match self.frame.gauge {
+            None => [-d[1] / point.r, d[0] / point.r],
+            Some(gauge) => {
+                let (g, y) = gauge.at(point);
+                let m = gauge.fold(g, y);
+                // g² from the gradient, g² from 1/r_x.
+                let f = g.powi(4) / point.r;
+                let x =
+                    [f * (m[0][0] * d[0] + m[1][0] * d[1]), f * (m[0][1] * d[0] + m[1][1] * d[1])];
+                [-x[1], x[0]]
+            }
         }
+    }
+
+    /// |B| at a barycentric point.
+    #[inline]
+    pub fn magnitude(&self, lambda: &[f64; 3]) -> Tesla {
+        let b = self.components(lambda);
+        dot(b, b).sqrt()
+    }
+
+    /// Position and ∇ψ at a barycentric point, or a little beside it where it lies on the axis.
+    #[inline]
+    fn off_axis(&self, lambda: &[f64; 3]) -> (Point, Pair) {
+        let mut lambda = *lambda;
+        let mut point = self.frame.position(&lambda);
+        if point.r <= 0.0 {
+            lambda = lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0);
+            point = self.frame.position(&lambda);
+        }
+        (point, blend(&lambda, &self.gradient))
     }
 }
 
@@ -63,12 +101,23 @@ fn facet_of(mesh: &Mesh, at: Point) -> usize {
 }
 
 /// Barycentric coordinates of a point of the triangle's chart.
+#[inline]
 pub fn barycentric(mesh: &Mesh, t: usize, at: Point) -> [f64; 3] {
-    let c = mesh.triangles[t].map(|v| mesh.points[v as usize]);
-    let part = |p: Point, q: Point| (p.r - at.r) * (q.z - at.z) - (q.r - at.r) * (p.z - at.z);
-    let parts = [part(c[1], c[2]), part(c[2], c[0]), part(c[0], c[1])];
+    let spoke = |v: u32| {
+        let corner = mesh.points[v as usize];
+        [corner.r - at.r, corner.z - at.z]
+    };
+    let [a, b, c] = mesh.triangles[t].map(spoke);
+    let parts = [wedge(b, c), wedge(c, a), wedge(a, b)];
     let whole = parts[0] + parts[1] + parts[2];
     parts.map(|p| p / whole)
+}
+
+/// Local corner with the smallest barycentric coordinate.
+#[inline]
+fn lowest(lambda: &[f64; 3]) -> usize {
+    let k = usize::from(lambda[1] < lambda[0]);
+    if lambda[2] < lambda[k] { 2 } else { k }
 }
 
 /// Walks from triangle `start` towards a point of that triangle's chart; returns its triangle and barycentric coordinates.
@@ -81,13 +130,24 @@ pub fn locate(
     start: usize,
     at: Point,
 ) -> Option<(usize, [f64; 3])> {
+    walk(mesh, edge_triangles, start, |t| barycentric(mesh, t, at))
+}
+
+/// [`locate`] with the point's barycentric coordinates in triangle t from `lambda`.
+#[inline]
+pub fn walk(
+    mesh: &Mesh,
+    edge_triangles: &[[u32; 2]],
+    start: usize,
+    mut lambda: impl FnMut(usize) -> [f64; 3],
+) -> Option<(usize, [f64; 3])> {
     /// Points this little outside (barycentric) count as inside: rounding of the coordinates.
     const SLACK: f64 = -1e-11;
     let chart = mesh.charts[start];
     let mut t = start;
     for _ in 0..mesh.triangles.len() {
-        let lambda = barycentric(mesh, t, at);
-        let k = (0..3).min_by(|&a, &b| lambda[a].total_cmp(&lambda[b]))?;
+        let lambda = lambda(t);
+        let k = lowest(&lambda);
         if SLACK <= lambda[k] {
             return Some((t, lambda.map(|l| l.max(0.0))));
         }

@@ -3,10 +3,10 @@
 use crate::adapt::Outcome;
 use crate::fem::Reluctivity;
 use crate::fem::element::{Frame, Pair, blend};
-use crate::fem::evaluate;
+use crate::fem::evaluate::{self, LocalField};
 use crate::fem::moments::{flux_density_magnitude, linear_energy, rule_of};
 use crate::fem::quadrature::Rules;
-use crate::geometry::Outline;
+use crate::geometry::{Outline, Region};
 use crate::model::Point;
 use crate::results::ProbePoint;
 use crate::units::{AmperePerMeter, Joule, MU0, Tesla};
@@ -30,12 +30,28 @@ pub struct Sampler<'a> {
     pub outcome: &'a Outcome,
     pub outline: &'a Outline,
     pub rules: Rules,
+    /// Triangles of every region, ascending.
+    of_region: Vec<Vec<u32>>,
 }
 
 impl<'a> Sampler<'a> {
     /// Prepares a field for questions.
     pub fn new(outline: &'a Outline, outcome: &'a Outcome) -> Sampler<'a> {
-        Sampler { outcome, outline, rules: Rules::working() }
+        let mut of_region = vec![Vec::new(); outline.regions.len()];
+        for (t, region) in outcome.mesh.regions.iter().enumerate() {
+            of_region[region.0 as usize].push(t as u32);
+        }
+        Sampler { outcome, outline, rules: Rules::working(), of_region }
+    }
+
+    /// Triangles of a region, ascending.
+    pub fn triangles(&self, region: usize) -> impl ExactSizeIterator<Item = usize> {
+        self.of_region[region].iter().map(|&t| t as usize)
+    }
+
+    /// The region of triangle t.
+    pub fn region(&self, t: usize) -> &'a Region {
+        &self.outline.regions[self.outcome.mesh.regions[t].0 as usize]
     }
 
     /// Law of triangle t.
@@ -56,21 +72,23 @@ impl<'a> Sampler<'a> {
         (Frame::new(&self.outcome.mesh, t), self.outcome.solution.gradients(&self.outcome.mesh, t))
     }
 
-    /// [B_r, B_z] at a barycentric point of triangle t.
-    pub fn flux_density(&self, t: usize, lambda: &[f64; 3]) -> [Tesla; 2] {
+    /// The field on triangle t.
+    pub fn field(&self, t: usize) -> LocalField {
         let (frame, gradients) = self.local(t);
-        evaluate::flux_density_components(&frame, &gradients, lambda)
+        LocalField::new(frame, &gradients)
     }
 
     /// ∫ H·B dV and ∫ w(B) dV over triangle t [J].
     pub fn work_and_energy(&self, t: usize) -> (Joule, Joule) {
-        let (frame, gradients) = self.local(t);
+        let Outcome { mesh, solution, elements, .. } = self.outcome;
+        let gradients = solution.gradients(mesh, t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU * linear_energy(&self.outcome.elements[t].k, &gradients);
+                let energy = TAU * linear_energy(&elements[t].k, &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {
+                let frame = Frame::new(mesh, t);
                 let rule = rule_of(&self.rules, &frame);
                 let (mut work, mut energy) = (0.0, 0.0);
                 for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
@@ -92,7 +110,7 @@ impl<'a> Sampler<'a> {
         let mesh = &self.outcome.mesh;
         let (chart, position) = evaluate::to_chart(mesh, at);
         let (t, lambda) = evaluate::find(mesh, &self.outcome.fans.edge_triangles, chart, position)?;
-        let [b_r, b_z] = self.flux_density(t, &lambda);
+        let [b_r, b_z] = self.field(t).components(&lambda);
         let nu: AmperePerMeter = self.reluctivity_at(t, b_r.hypot(b_z));
         let (vertex, edge) = self.outcome.solution.local(mesh, t);
         let psi = evaluate::psi(vertex, edge, &lambda);
@@ -103,20 +121,19 @@ impl<'a> Sampler<'a> {
     pub fn cell_values(&self) -> CellValues {
         let mut values = CellValues::default();
         for t in 0..self.outcome.mesh.triangles.len() {
-            let (frame, gradients) = self.local(t);
-            let at =
-                |lambda: &[f64; 3]| evaluate::flux_density_components(&frame, &gradients, lambda);
-            let b = at(&[1.0 / 3.0; 3]);
+            let field = self.field(t);
+            let b = field.components(&[1.0 / 3.0; 3]);
             let nu = self.reluctivity_at(t, b[0].hypot(b[1]));
             values.b.push(b);
             values.h.push(b.map(|b| nu * b));
             values.permeability.push(1.0 / (MU0 * nu));
             // At infinity's image the field is 0 and its formula 0/0.
-            let corner = |k: usize| match frame.gauge.is_some() && frame.collapse == Some(k) {
-                true => [0.0; 2],
-                false => at(&[0, 1, 2].map(|i| f64::from(u8::from(i == k)))),
+            let infinity = field.frame.collapse.filter(|_| field.frame.gauge.is_some());
+            let at_corner = |k: usize| match infinity == Some(k) {
+                true => 0.0,
+                false => field.magnitude(&[0, 1, 2].map(|i| f64::from(u8::from(i == k)))),
             };
-            values.b_corner.push([0, 1, 2].map(|k| corner(k)[0].hypot(corner(k)[1])));
+            values.b_corner.push([0, 1, 2].map(at_corner));
         }
         values
     }
