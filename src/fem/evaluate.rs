@@ -11,37 +11,35 @@ use std::f64::consts::PI;
 /// about the same share of the field's variation over the triangle.
 const AXIS_NUDGE: f64 = 1e-9;
 
-/// One triangle with its field, ready to be asked at many points: λ and ∇ψ are linear on it.
+/// `lambda` moved off the axis by [`AXIS_NUDGE`].
+#[inline]
+pub fn off_axis(lambda: &[f64; 3]) -> [f64; 3] {
+    lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0)
+}
+
+/// The field on one triangle, ready to be asked at many points: ∇ψ is linear there.
 #[derive(Debug, Clone, Copy)]
 pub struct LocalField {
     pub frame: Frame,
-    /// ∇λ_1 and ∇λ_2 in the triangle's chart [1/m].
-    slopes: [Pair; 2],
     /// ∇ψ at the corners, in the triangle's chart [Wb/(rad·m)].
-    gradient: [Pair; 3],
+    pub gradient: [Pair; 3],
 }
 
 impl LocalField {
     /// From a triangle's geometry and the reference gradients of ψ at its corners.
     pub fn new(frame: Frame, gradients: &[Pair; 3]) -> LocalField {
-        let slopes = [[1.0, 0.0], [0.0, 1.0]].map(|u| frame.chart_gradient(u));
-        let gradient = gradients.map(|u| [0, 1].map(|i| u[0] * slopes[0][i] + u[1] * slopes[1][i]));
-        LocalField { frame, slopes, gradient }
-    }
-
-    /// Barycentric coordinates of a point of the triangle's chart.
-    #[inline]
-    pub fn barycentric(&self, at: Point) -> [f64; 3] {
-        let corner = self.frame.corners[0];
-        let [l1, l2] = self.slopes.map(|slope| dot(slope, [at.r - corner.r, at.z - corner.z]));
-        [1.0 - l1 - l2, l1, l2]
+        LocalField { frame, gradient: gradients.map(|u| frame.chart_gradient(u)) }
     }
 
     /// [B_r, B_z] at a barycentric point.
     ///
     /// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
     pub fn components(&self, lambda: &[f64; 3]) -> [Tesla; 2] {
-        let (point, d) = self.off_axis(lambda);
+        let mut lambda = *lambda;
+        if self.frame.position(&lambda).r <= 0.0 {
+            lambda = off_axis(&lambda);
+        }
+        let (point, d) = (self.frame.position(&lambda), blend(&lambda, &self.gradient));
         match self.frame.gauge {
             None => [-d[1] / point.r, d[0] / point.r],
             Some(gauge) => {
@@ -61,18 +59,6 @@ impl LocalField {
     pub fn magnitude(&self, lambda: &[f64; 3]) -> Tesla {
         let b = self.components(lambda);
         dot(b, b).sqrt()
-    }
-
-    /// Position and ∇ψ at a barycentric point, or a little beside it where it lies on the axis.
-    #[inline]
-    fn off_axis(&self, lambda: &[f64; 3]) -> (Point, Pair) {
-        let mut lambda = *lambda;
-        let mut point = self.frame.position(&lambda);
-        if point.r <= 0.0 {
-            lambda = lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0);
-            point = self.frame.position(&lambda);
-        }
-        (point, blend(&lambda, &self.gradient))
     }
 }
 
@@ -113,11 +99,24 @@ pub fn barycentric(mesh: &Mesh, t: usize, at: Point) -> [f64; 3] {
     parts.map(|p| p / whole)
 }
 
-/// Local corner with the smallest barycentric coordinate.
+/// Points this little outside (barycentric) count as inside: rounding of the coordinates.
+pub const SLACK: f64 = -1e-11;
+
+/// Local corner with the smallest barycentric coordinate, and that: the edge opposite to it is where a walk goes on.
 #[inline]
-fn lowest(lambda: &[f64; 3]) -> usize {
-    let k = usize::from(lambda[1] < lambda[0]);
-    if lambda[2] < lambda[k] { 2 } else { k }
+pub fn lowest(lambda: &[f64; 3]) -> (usize, f64) {
+    let (k, least) = if lambda[1] < lambda[0] { (1, lambda[1]) } else { (0, lambda[0]) };
+    if lambda[2] < least { (2, lambda[2]) } else { (k, least) }
+}
+
+/// The triangle across the edge opposite to corner k of triangle t; `None` where the chart ends.
+#[inline]
+pub fn across(mesh: &Mesh, edge_triangles: &[[u32; 2]], t: usize, k: usize) -> Option<usize> {
+    // The edge opposite corner k is local edge k + 1.
+    let pair = edge_triangles[mesh.triangle_edges[t][(k + 1) % 3] as usize];
+    let next = if pair[0] as usize == t { pair[1] } else { pair[0] };
+    let is_in_chart = next != NO_TRIANGLE && mesh.charts[next as usize] == mesh.charts[t];
+    is_in_chart.then_some(next as usize)
 }
 
 /// Walks from triangle `start` towards a point of that triangle's chart; returns its triangle and barycentric coordinates.
@@ -130,34 +129,14 @@ pub fn locate(
     start: usize,
     at: Point,
 ) -> Option<(usize, [f64; 3])> {
-    walk(mesh, edge_triangles, start, |t| barycentric(mesh, t, at))
-}
-
-/// [`locate`] with the point's barycentric coordinates in triangle t from `lambda`.
-#[inline]
-pub fn walk(
-    mesh: &Mesh,
-    edge_triangles: &[[u32; 2]],
-    start: usize,
-    mut lambda: impl FnMut(usize) -> [f64; 3],
-) -> Option<(usize, [f64; 3])> {
-    /// Points this little outside (barycentric) count as inside: rounding of the coordinates.
-    const SLACK: f64 = -1e-11;
-    let chart = mesh.charts[start];
     let mut t = start;
     for _ in 0..mesh.triangles.len() {
-        let lambda = lambda(t);
-        let k = lowest(&lambda);
-        if SLACK <= lambda[k] {
+        let lambda = barycentric(mesh, t, at);
+        let (k, least) = lowest(&lambda);
+        if SLACK <= least {
             return Some((t, lambda.map(|l| l.max(0.0))));
         }
-        // The edge opposite corner k is local edge k + 1.
-        let pair = edge_triangles[mesh.triangle_edges[t][(k + 1) % 3] as usize];
-        let next = if pair[0] as usize == t { pair[1] } else { pair[0] };
-        if next == NO_TRIANGLE || mesh.charts[next as usize] != chart {
-            return None;
-        }
-        t = next as usize;
+        t = across(mesh, edge_triangles, t, k)?;
     }
     None
 }

@@ -7,7 +7,7 @@
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
 use crate::fem::element::{Frame, Pair, Tensor, blend, contract, dot, sides, wedge};
-use crate::fem::moments::{flux_density_magnitude, linear_energy, rule_of};
+use crate::fem::moments::{PAIRS, flux_density_magnitude, rule_of};
 use crate::fem::quadrature::Rule;
 use crate::geometry::{Leg, RegionKind};
 use crate::mesh::Chart;
@@ -60,16 +60,20 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
     }
 }
 
-/// d(½∫ (ν/r) u·S u)/dl for a constant law: k_mn = S·∫λ_m λ_n ν/r, and of its factors only S changes.
+/// d(½∫ (ν/r) u·S u)/dl for a constant law: k_mn = s_mn·S with s_mn = ∫ λ_m λ_n ν/r, and only S changes.
 fn linear_energy_rate(
     frame: &Frame,
     gradients: &[Pair; 3],
     metric_rate: Tensor,
     k: &[Tensor; 6],
 ) -> f64 {
-    // The trace is never 0.
-    let trace = frame.metric[0] + frame.metric[2];
-    linear_energy(&k.map(|k| metric_rate.map(|rate| rate * (k[0] + k[2]) / trace)), gradients)
+    let mut sum = 0.0;
+    for (k, (m, n)) in k.iter().zip(PAIRS) {
+        let twice = if m == n { 1.0 } else { 2.0 };
+        sum += twice * (k[0] + k[2]) * contract(gradients[m], metric_rate, gradients[n]);
+    }
+    // The traces, which are never 0, tell s_mn.
+    0.5 * sum / (frame.metric[0] + frame.metric[2])
 }
 
 /// d(∫ r·w·|det|)/dl for a saturating law, at fixed relative rates of the metric and the determinant.

@@ -81,25 +81,35 @@ fn samples(sampler: &Sampler, solution: &Solution, region: usize) -> Vec<Sample>
 
 /// Flux densities that the shares of [`EXCEEDED_SHARES`] of the volume exceed; reorders the samples.
 fn exceeded(samples: &mut [Sample]) -> [Tesla; 3] {
+    let mut exceeded = [0.0; 3];
     let total: CubicMeter = samples.iter().map(|s| s.volume).sum();
-    EXCEEDED_SHARES.map(|share| exceeded_by(samples, share * total))
+    let mut hotter = samples;
+    // The largest share first: the others are found among its samples.
+    for (b, share) in exceeded.iter_mut().zip(EXCEEDED_SHARES).rev() {
+        let Some(n) = hottest(hotter, share * total) else { break };
+        *b = hotter[n].b;
+        hotter = &mut hotter[..=n];
+    }
+    exceeded
 }
 
-/// Flux density that the hottest `volume` of the samples exceeds, by bisection of the unsorted samples in linear time.
-fn exceeded_by(mut samples: &mut [Sample], mut volume: CubicMeter) -> Tesla {
-    while 1 < samples.len() {
-        let middle = samples.len() / 2;
-        samples.select_nth_unstable_by(middle, |a, b| b.b.total_cmp(&a.b));
-        let (hotter, colder) = samples.split_at_mut(middle);
-        let of_hotter: CubicMeter = hotter.iter().map(|s| s.volume).sum();
+/// Brings the hottest samples to the front and returns the first place at which their volumes add up to `volume` (the last
+/// place if they never do); halves the samples in question until one is left, so the time is linear.
+fn hottest(samples: &mut [Sample], mut volume: CubicMeter) -> Option<usize> {
+    let (mut start, mut end) = (0, samples.len());
+    while start + 1 < end {
+        let middle = start.midpoint(end);
+        let open = &mut samples[start..end];
+        open.select_nth_unstable_by(middle - start, |a, b| b.b.total_cmp(&a.b));
+        let of_hotter: CubicMeter = open[..middle - start].iter().map(|s| s.volume).sum();
         if volume <= of_hotter {
-            samples = hotter;
+            end = middle;
         } else {
             volume -= of_hotter;
-            samples = colder;
+            start = middle;
         }
     }
-    samples.first().map_or(0.0, |s| s.b)
+    (start < end).then_some(start)
 }
 
 /// Flux density above which a constant permeability deserves a word [T]: power ferrites saturate at 0.3 to 0.5 T (common

@@ -11,6 +11,7 @@ use crate::model::Point;
 use crate::results::ProbePoint;
 use crate::units::{AmperePerMeter, Joule, MU0, Tesla};
 use std::f64::consts::TAU;
+use std::sync::LazyLock;
 
 /// The field on every triangle, for pictures and files.
 #[derive(Debug, Clone, PartialEq, Default)]
@@ -29,24 +30,38 @@ pub struct CellValues {
 pub struct Sampler<'a> {
     pub outcome: &'a Outcome,
     pub outline: &'a Outline,
-    pub rules: Rules,
-    /// Triangles of every region, ascending.
-    of_region: Vec<Vec<u32>>,
+    /// Asked for by saturating laws only.
+    pub rules: LazyLock<Rules>,
+    /// Triangles by region, ascending: those of region k are `by_region[starts[k]..starts[k + 1]]`.
+    by_region: Vec<u32>,
+    starts: Vec<usize>,
 }
 
 impl<'a> Sampler<'a> {
     /// Prepares a field for questions.
     pub fn new(outline: &'a Outline, outcome: &'a Outcome) -> Sampler<'a> {
-        let mut of_region = vec![Vec::new(); outline.regions.len()];
-        for (t, region) in outcome.mesh.regions.iter().enumerate() {
-            of_region[region.0 as usize].push(t as u32);
+        let of_triangle = &outcome.mesh.regions;
+        let mut starts = vec![0; outline.regions.len() + 1];
+        for region in of_triangle {
+            starts[region.0 as usize + 1] += 1;
         }
-        Sampler { outcome, outline, rules: Rules::working(), of_region }
+        for k in 0..outline.regions.len() {
+            starts[k + 1] += starts[k];
+        }
+        let mut next = starts.clone();
+        let mut by_region = vec![0; of_triangle.len()];
+        for (t, region) in of_triangle.iter().enumerate() {
+            let place = &mut next[region.0 as usize];
+            by_region[*place] = t as u32;
+            *place += 1;
+        }
+        Sampler { outcome, outline, rules: LazyLock::new(Rules::working), by_region, starts }
     }
 
     /// Triangles of a region, ascending.
     pub fn triangles(&self, region: usize) -> impl ExactSizeIterator<Item = usize> {
-        self.of_region[region].iter().map(|&t| t as usize)
+        let range = self.starts[region]..self.starts[region + 1];
+        self.by_region[range].iter().map(|&t| t as usize)
     }
 
     /// The region of triangle t.

@@ -1,8 +1,10 @@
 //! Mean of |B| over the part of a disc that lies in one body, by a fixed rule of points.
 
-use super::body;
+use super::{Body, Disc, body};
 use crate::adapt::Outcome;
-use crate::fem::evaluate::{LocalField, walk};
+use crate::fem::element::{Pair, blend, dot};
+use crate::fem::evaluate::{LocalField, SLACK, across, lowest, off_axis};
+use crate::mesh::fans::NO_TRIANGLE;
 use crate::model::Point;
 use crate::results::sample::Sampler;
 use crate::units::{Meter, Tesla};
@@ -13,6 +15,7 @@ const NOT_ASKED: u32 = u32::MAX;
 
 /// Points of the averaging rule about the centre: rings of equal area, every other ring turned by half a step.
 pub struct Rule {
+    pub radius: Meter,
     offsets: Vec<[Meter; 2]>,
 }
 
@@ -28,67 +31,140 @@ impl Rule {
             let turned = directions.iter().skip(ring % 2).step_by(2);
             turned.map(move |(sine, cosine)| [distance * cosine, distance * sine])
         };
-        Rule { offsets: (0..n_rings).flat_map(on_ring).collect() }
+        Rule { radius, offsets: (0..n_rings).flat_map(on_ring).collect() }
     }
 }
 
-/// The field of the bodies, with everything that neighbouring discs share.
-pub struct Bodies<'a> {
-    sampler: &'a Sampler<'a>,
-    /// Body of every region of the outline.
-    of_region: Vec<Option<usize>>,
-    /// Place in `fields` of every triangle, or [`NOT_ASKED`]: discs are small, so few ever are.
-    slots: Vec<u32>,
-    fields: Vec<LocalField>,
+/// A triangle unrolled for quick questions: its λ and, on them, r and ∇ψ are linear.
+struct Cell {
+    triangle: u32,
+    body: Option<Body>,
+    corner: Point,
+    /// ∇λ_1 and ∇λ_2 [1/m].
+    slopes: [Pair; 2],
+    /// r at the corners [m].
+    radii: [Meter; 3],
+    /// ∇ψ at the corners [Wb/(rad·m)].
+    gradient: [Pair; 3],
+    /// Triangles across the edges opposite to the corners, or [`NO_TRIANGLE`].
+    neighbours: [u32; 3],
 }
 
-impl<'a> Bodies<'a> {
-    /// Prepares the field for discs.
-    pub fn new(sampler: &'a Sampler<'a>) -> Bodies<'a> {
-        Bodies {
-            sampler,
-            of_region: sampler.outline.regions.iter().map(body).collect(),
-            slots: vec![NOT_ASKED; sampler.outcome.mesh.triangles.len()],
-            fields: Vec::new(),
+impl Cell {
+    fn new(sampler: &Sampler, t: usize) -> Cell {
+        let LocalField { frame, gradient } = sampler.field(t);
+        let Outcome { mesh, fans, .. } = sampler.outcome;
+        let neighbour = |k| across(mesh, &fans.edge_triangles, t, k);
+        Cell {
+            triangle: t as u32,
+            body: body(sampler.region(t)),
+            corner: frame.corners[0],
+            slopes: [[1.0, 0.0], [0.0, 1.0]].map(|u| frame.chart_gradient(u)),
+            radii: frame.corners.map(|corner| corner.r),
+            gradient,
+            neighbours: [0, 1, 2].map(|k| neighbour(k).map_or(NO_TRIANGLE, |t| t as u32)),
         }
     }
 
-    /// Body of triangle t, `None` in air and windings.
-    pub fn body(&self, t: usize) -> Option<usize> {
-        self.of_region[self.sampler.outcome.mesh.regions[t].0 as usize]
+    #[inline]
+    fn barycentric(&self, at: Point) -> [f64; 3] {
+        let spoke = [at.r - self.corner.r, at.z - self.corner.z];
+        let (l1, l2) = (dot(self.slopes[0], spoke), dot(self.slopes[1], spoke));
+        [1.0 - l1 - l2, l1, l2]
     }
 
-    /// The triangle of a point and its barycentric coordinates, by a walk from triangle `start`.
-    pub fn locate(&mut self, start: usize, at: Point) -> Option<(usize, [f64; 3])> {
-        let Outcome { mesh, fans, .. } = self.sampler.outcome;
-        walk(mesh, &fans.edge_triangles, start, |t| self.field(t).barycentric(at))
+    /// |∇ψ|/r.
+    #[inline]
+    fn flux_density(&self, lambda: &[f64; 3]) -> Tesla {
+        let mut r = self.radius(lambda);
+        let mut gradient = blend(lambda, &self.gradient);
+        if r <= 0.0 {
+            let beside = off_axis(lambda);
+            (r, gradient) = (self.radius(&beside), blend(&beside, &self.gradient));
+        }
+        dot(gradient, gradient).sqrt() / r
     }
 
-    /// Mean |B| over the part of the disc round `center`, a point of triangle t, that lies in the body of t.
-    pub fn mean(&mut self, rule: &Rule, t: usize, center: Point) -> Tesla {
-        let own = self.body(t);
-        let (mut sum, mut n, mut last) = (0.0, 0.0, t);
+    #[inline]
+    fn radius(&self, lambda: &[f64; 3]) -> Meter {
+        lambda[0] * self.radii[0] + lambda[1] * self.radii[1] + lambda[2] * self.radii[2]
+    }
+}
+
+/// The field round the discs.
+pub struct Field<'a> {
+    sampler: &'a Sampler<'a>,
+    /// Place in `cells` of every triangle, or [`NOT_ASKED`]: discs are small, so few ever are.
+    slots: Vec<u32>,
+    cells: Vec<Cell>,
+}
+
+impl<'a> Field<'a> {
+    /// Prepares the field for discs.
+    pub fn new(sampler: &'a Sampler<'a>) -> Field<'a> {
+        let slots = vec![NOT_ASKED; sampler.outcome.mesh.triangles.len()];
+        Field { sampler, slots, cells: Vec::new() }
+    }
+
+    /// The disc of this centre, a point of the same body as `near`; `None` where the centre is in another one.
+    pub fn disc(&mut self, rule: &Rule, near: usize, at: Point) -> Option<Disc> {
+        let start = self.slot(near);
+        let (center, _) = self.walk(start, at)?;
+        let own = self.cells[start].body;
+        if self.cells[center].body != own {
+            return None;
+        }
+        let (mut sum, mut n, mut last) = (0.0, 0.0, center);
         for [dr, dz] in &rule.offsets {
-            let at = Point { r: center.r + dr, z: center.z + dz };
+            let at = Point { r: at.r + dr, z: at.z + dz };
             if at.r < 0.0 {
                 continue;
             }
             // Neighbours on the ring are neighbours in the mesh: walk on from the last one.
-            let Some((found, lambda)) = self.locate(last, at) else { continue };
+            let Some((found, lambda)) = self.walk(last, at) else { continue };
             last = found;
-            if self.body(found) == own {
-                sum += self.field(found).magnitude(&lambda);
+            let cell = &self.cells[found];
+            if cell.body == own {
+                sum += cell.flux_density(&lambda);
                 n += 1.0;
             }
         }
-        if n == 0.0 { 0.0 } else { sum / n }
+        let mean = if n == 0.0 { 0.0 } else { sum / n };
+        Some(Disc { triangle: self.cells[center].triangle as usize, at, mean })
     }
 
-    fn field(&mut self, t: usize) -> &LocalField {
-        if self.slots[t] == NOT_ASKED {
-            self.slots[t] = self.fields.len() as u32;
-            self.fields.push(self.sampler.field(t));
+    /// The cell of a point and its λ, by a walk from cell `start`; `None` where the mesh of the inside ends.
+    #[inline(always)]
+    fn walk(&mut self, start: usize, at: Point) -> Option<(usize, [f64; 3])> {
+        let mut slot = start;
+        for _ in 0..self.slots.len() {
+            let cell = &self.cells[slot];
+            let lambda = cell.barycentric(at);
+            let (k, least) = lowest(&lambda);
+            if SLACK <= least {
+                return Some((slot, lambda));
+            }
+            match cell.neighbours[k] {
+                NO_TRIANGLE => return None,
+                next => slot = self.slot(next as usize),
+            }
         }
-        &self.fields[self.slots[t] as usize]
+        None
+    }
+
+    /// Place of triangle t in `cells`.
+    #[inline]
+    fn slot(&mut self, t: usize) -> usize {
+        match self.slots[t] {
+            NOT_ASKED => self.ask(t),
+            slot => slot as usize,
+        }
+    }
+
+    #[cold]
+    fn ask(&mut self, t: usize) -> usize {
+        self.slots[t] = self.cells.len() as u32;
+        self.cells.push(Cell::new(self.sampler, t));
+        self.cells.len() - 1
     }
 }
