@@ -95,10 +95,16 @@ fn dispatch(command: &Command) -> Result<End, Stop> {
     }
 }
 
-/// Bounds the thread pool before anything uses it.
+/// Sets up the thread pool before anything uses it.
+///
+/// The main thread is one of its threads: a pool beside it would be woken and waited for at every parallel step, which
+/// costs a small run more than the steps.
 fn set_threads(options: &Options) -> Result<(), Stop> {
-    let Some(n_threads) = options.threads else { return Ok(()) };
-    rayon::ThreadPoolBuilder::new().num_threads(usize::from(n_threads)).build_global().map_err(
-        |e| Stop::new(End::InputWrong, format!("--threads {n_threads}: {e}; ask for fewer")),
-    )
+    // 0 leaves the number to rayon: one per processor.
+    let n_threads = options.threads.map_or(0, usize::from);
+    let pool = rayon::ThreadPoolBuilder::new().num_threads(n_threads).use_current_thread();
+    pool.build_global().map_err(|e| {
+        let message = format!("no threads to compute with: {e}; ask for fewer with --threads");
+        Stop::new(End::InputWrong, message)
+    })
 }
