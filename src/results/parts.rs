@@ -162,3 +162,35 @@ pub fn beyond_tables(model: &Model, sampler: &Sampler) -> Vec<String> {
     }
     notes
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// [`exceeded`] by sorting.
+    fn by_sorting(samples: &[Sample]) -> [Tesla; 3] {
+        let mut sorted = samples.to_vec();
+        sorted.sort_by(|a, b| b.b.total_cmp(&a.b));
+        let total: CubicMeter = sorted.iter().map(|s| s.volume).sum();
+        EXCEEDED_SHARES.map(|share| {
+            let mut volume = 0.0;
+            let found = sorted.iter().find(|s| {
+                volume += s.volume;
+                share * total <= volume
+            });
+            found.or(sorted.last()).map_or(0.0, |s| s.b)
+        })
+    }
+
+    #[test]
+    fn exceeded_flux_densities_are_those_of_the_sorted_samples() {
+        for n in [0, 1, 2, 3, 10, 101, 1000] {
+            // Scattered, some of them equal, in volumes that differ by powers of two: sums of these are exact.
+            let mut samples: Vec<Sample> = (0..n)
+                .map(|i| Sample { b: f64::from(i * 37 % 89), volume: 2_f64.powi(i * 11 % 7) })
+                .collect();
+            let sorted = by_sorting(&samples);
+            assert_eq!(exceeded(&mut samples), sorted, "{n} samples");
+        }
+    }
+}

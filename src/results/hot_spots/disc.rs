@@ -35,7 +35,8 @@ impl Rule {
     }
 }
 
-/// A triangle unrolled for quick questions: its λ and, on them, r and ∇ψ are linear.
+/// A triangle with all that a disc asks of it, in one place: a climb asks the same few hundred triangles some ten thousand
+/// times.
 struct Cell {
     triangle: u32,
     body: Option<Body>,
@@ -91,7 +92,7 @@ impl Cell {
     }
 }
 
-/// The field round the discs.
+/// The field round the discs, one cell for every triangle that was asked.
 pub struct Field<'a> {
     sampler: &'a Sampler<'a>,
     /// Place in `cells` of every triangle, or [`NOT_ASKED`]: discs are small, so few ever are.

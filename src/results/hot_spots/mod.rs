@@ -28,7 +28,7 @@ const FINEST_STEP: f64 = 0.06;
 /// Places closer than this share of the radius are one: far below the finest step, far above rounding.
 const SAME_PLACE: f64 = 1e-6;
 /// A disc as close as this share of the radius to an earlier climb's top, and no hotter, is on the way there. Found the
-/// same spots as climbs to their end in 218 fields of 106 sections; with 0.5 it was one spot fewer in one of them.
+/// same spots as climbs to their end in 218 fields of 100 sections; with 0.5 one spot fewer in one of them.
 const SAME_TOP: f64 = 0.25;
 
 /// The `count` hottest discs, hottest first, at least two radii apart.
@@ -84,8 +84,8 @@ fn distance(a: Point, b: Point) -> Meter {
     (dr * dr + dz * dz).sqrt()
 }
 
-/// Moves a disc from a point of this triangle uphill inside its body by halved steps; `None` on the way to one of the `tops`
-/// of earlier climbs.
+/// Moves a disc uphill inside its body by halved steps, from a point of this triangle; `None` when it is on the way to one of
+/// the `tops` of earlier climbs.
 fn climb(
     field: &mut Field,
     rule: &Rule,
@@ -129,7 +129,8 @@ fn climb(
     Some(disc)
 }
 
-/// A piece of magnetic material in which discs lie and climb: the core, or a part.
+/// A piece of magnetic material in which discs lie and climb: the core, or a part. Never 0, so that an `Option` of it is
+/// compared as one number, which every point of every disc does.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
 struct Body(NonZeroU32);
 
