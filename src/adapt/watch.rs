@@ -6,7 +6,7 @@
 use super::Outcome;
 use crate::fem::Reluctivity;
 use crate::fem::element::Frame;
-use crate::fem::evaluate::{find, flux_density, locate, to_chart};
+use crate::fem::evaluate::{LocalField, find, locate, to_chart};
 use crate::fem::moments::linear_energy;
 use crate::mesh::Chart;
 use crate::model::{Model, Point};
@@ -60,7 +60,7 @@ pub fn hot_triangles(outcome: &Outcome) -> Vec<u32> {
             // Twice the area against the square of the radius: wider than the disc.
             (radius * radius < frame.det_abs).then(|| {
                 let gradients = outcome.solution.gradients(mesh, t);
-                let b = flux_density(&frame, &gradients, &[1.0 / 3.0; 3]);
+                let b = LocalField::new(frame, &gradients).components(&[1.0 / 3.0; 3]);
                 (b[0] * b[0] + b[1] * b[1], t as u32)
             })
         })

@@ -95,13 +95,16 @@ fn dispatch(command: &Command) -> Result<End, Stop> {
     }
 }
 
-/// Makes the thread pool before anything uses it, this thread being one of its own: no hand-over for small work.
+/// Sets up the thread pool before anything uses it.
+///
+/// The main thread is one of its threads: a pool beside it would be woken and waited for at every parallel step, which
+/// costs a small run more than the steps.
 fn set_threads(options: &Options) -> Result<(), Stop> {
-    // 0: one per processor.
+    // 0 leaves the number to rayon: one per processor.
     let n_threads = options.threads.map_or(0, usize::from);
     let pool = rayon::ThreadPoolBuilder::new().num_threads(n_threads).use_current_thread();
     pool.build_global().map_err(|e| {
-        let asked = options.threads.map_or(String::new(), |n| format!("--threads {n}: "));
-        Stop::new(End::InputWrong, format!("{asked}{e}; ask for fewer threads with --threads"))
+        let message = format!("no threads to compute with: {e}; ask for fewer with --threads");
+        Stop::new(End::InputWrong, message)
     })
 }

@@ -65,7 +65,7 @@ fn read_text(path: &Path) -> Result<String, ReadFault> {
     let file = File::open(path).map_err(system)?;
     let n_bytes = file.metadata().map_err(system)?.len();
     input::check_size(n_bytes, &name).map_err(|found| ReadFault::Content(Box::new(found)))?;
-    let mut bytes = vec![];
+    let mut bytes = Vec::with_capacity(n_bytes as usize + 1);
     // A device or a pipe has no length: it is cut off one byte above the bound and then refused like a long file.
     file.take(FILE_BYTES_MAX + 1).read_to_end(&mut bytes).map_err(system)?;
     input::check_size(bytes.len() as u64, &name)

@@ -1,6 +1,6 @@
 //! Field values at points: B from ψ in either chart, and a walk that finds the triangle of a point.
 
-use super::element::{Frame, Gauge, Pair, blend, dot};
+use super::element::{Frame, Gauge, Pair, blend, dot, wedge};
 use crate::mesh::fans::NO_TRIANGLE;
 use crate::mesh::{Chart, Mesh};
 use crate::model::Point;
@@ -11,26 +11,54 @@ use std::f64::consts::PI;
 /// about the same share of the field's variation over the triangle.
 const AXIS_NUDGE: f64 = 1e-9;
 
-/// [B_r, B_z] at barycentric point `lambda` of a triangle, with the reference gradients of ψ at its corners.
-///
-/// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
-pub fn flux_density(frame: &Frame, gradients: &[Pair; 3], lambda: &[f64; 3]) -> [Tesla; 2] {
-    let mut lambda = *lambda;
-    if frame.position(&lambda).r <= 0.0 {
-        lambda = lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0);
+/// `lambda` moved off the axis by [`AXIS_NUDGE`].
+#[inline]
+pub fn off_axis(lambda: &[f64; 3]) -> [f64; 3] {
+    lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0)
+}
+
+/// The field on one triangle, ready to be asked at many points: ∇ψ is linear there.
+#[derive(Debug, Clone, Copy)]
+pub struct LocalField {
+    pub frame: Frame,
+    /// ∇ψ at the corners, in the triangle's chart [Wb/(rad·m)].
+    pub gradient: [Pair; 3],
+}
+
+impl LocalField {
+    /// From a triangle's geometry and the reference gradients of ψ at its corners.
+    pub fn new(frame: Frame, gradients: &[Pair; 3]) -> LocalField {
+        LocalField { frame, gradient: gradients.map(|u| frame.chart_gradient(u)) }
     }
-    let point = frame.position(&lambda);
-    let d = frame.chart_gradient(blend(&lambda, gradients));
-    match frame.gauge {
-        None => [-d[1] / point.r, d[0] / point.r],
-        Some(gauge) => {
-            let (g, y) = gauge.at(point);
-            let m = gauge.fold(g, y);
-            // g² from the gradient, g² from 1/r_x.
-            let f = g.powi(4) / point.r;
-            let x = [f * (m[0][0] * d[0] + m[1][0] * d[1]), f * (m[0][1] * d[0] + m[1][1] * d[1])];
-            [-x[1], x[0]]
+
+    /// [B_r, B_z] at a barycentric point.
+    ///
+    /// B_r = −(1/r)∂ψ/∂z, B_z = (1/r)∂ψ/∂r; in the cap ∇_x = g²Mᵀ∇_y and r_x = r_y/g².
+    pub fn components(&self, lambda: &[f64; 3]) -> [Tesla; 2] {
+        let mut lambda = *lambda;
+        if self.frame.position(&lambda).r <= 0.0 {
+            lambda = off_axis(&lambda);
         }
+        let (point, d) = (self.frame.position(&lambda), blend(&lambda, &self.gradient));
+        match self.frame.gauge {
+            None => [-d[1] / point.r, d[0] / point.r],
+            Some(gauge) => {
+                let (g, y) = gauge.at(point);
+                let m = gauge.fold(g, y);
+                // g² from the gradient, g² from 1/r_x.
+                let f = g.powi(4) / point.r;
+                let x =
+                    [f * (m[0][0] * d[0] + m[1][0] * d[1]), f * (m[0][1] * d[0] + m[1][1] * d[1])];
+                [-x[1], x[0]]
+            }
+        }
+    }
+
+    /// |B| at a barycentric point.
+    #[inline]
+    pub fn magnitude(&self, lambda: &[f64; 3]) -> Tesla {
+        let b = self.components(lambda);
+        dot(b, b).sqrt()
     }
 }
 
@@ -59,12 +87,36 @@ fn facet_of(mesh: &Mesh, at: Point) -> usize {
 }
 
 /// Barycentric coordinates of a point of the triangle's chart.
+#[inline]
 pub fn barycentric(mesh: &Mesh, t: usize, at: Point) -> [f64; 3] {
-    let c = mesh.triangles[t].map(|v| mesh.points[v as usize]);
-    let part = |p: Point, q: Point| (p.r - at.r) * (q.z - at.z) - (q.r - at.r) * (p.z - at.z);
-    let parts = [part(c[1], c[2]), part(c[2], c[0]), part(c[0], c[1])];
+    let spoke = |v: u32| {
+        let corner = mesh.points[v as usize];
+        [corner.r - at.r, corner.z - at.z]
+    };
+    let [a, b, c] = mesh.triangles[t].map(spoke);
+    let parts = [wedge(b, c), wedge(c, a), wedge(a, b)];
     let whole = parts[0] + parts[1] + parts[2];
     parts.map(|p| p / whole)
+}
+
+/// Points this little outside (barycentric) count as inside: rounding of the coordinates.
+pub const SLACK: f64 = -1e-11;
+
+/// Local corner with the smallest barycentric coordinate, and that: the edge opposite to it is where a walk goes on.
+#[inline]
+pub fn lowest(lambda: &[f64; 3]) -> (usize, f64) {
+    let (k, least) = if lambda[1] < lambda[0] { (1, lambda[1]) } else { (0, lambda[0]) };
+    if lambda[2] < least { (2, lambda[2]) } else { (k, least) }
+}
+
+/// The triangle across the edge opposite to corner k of triangle t; `None` where the chart ends.
+#[inline]
+pub fn across(mesh: &Mesh, edge_triangles: &[[u32; 2]], t: usize, k: usize) -> Option<usize> {
+    // The edge opposite corner k is local edge k + 1.
+    let pair = edge_triangles[mesh.triangle_edges[t][(k + 1) % 3] as usize];
+    let next = if pair[0] as usize == t { pair[1] } else { pair[0] };
+    let is_in_chart = next != NO_TRIANGLE && mesh.charts[next as usize] == mesh.charts[t];
+    is_in_chart.then_some(next as usize)
 }
 
 /// Walks from triangle `start` towards a point of that triangle's chart; returns its triangle and barycentric coordinates.
@@ -77,23 +129,14 @@ pub fn locate(
     start: usize,
     at: Point,
 ) -> Option<(usize, [f64; 3])> {
-    /// Points this little outside (barycentric) count as inside: rounding of the coordinates.
-    const SLACK: f64 = -1e-11;
-    let chart = mesh.charts[start];
     let mut t = start;
     for _ in 0..mesh.triangles.len() {
         let lambda = barycentric(mesh, t, at);
-        let k = (0..3).min_by(|&a, &b| lambda[a].total_cmp(&lambda[b]))?;
-        if SLACK <= lambda[k] {
+        let (k, least) = lowest(&lambda);
+        if SLACK <= least {
             return Some((t, lambda.map(|l| l.max(0.0))));
         }
-        // The edge opposite corner k is local edge k + 1.
-        let pair = edge_triangles[mesh.triangle_edges[t][(k + 1) % 3] as usize];
-        let next = if pair[0] as usize == t { pair[1] } else { pair[0] };
-        if next == NO_TRIANGLE || mesh.charts[next as usize] != chart {
-            return None;
-        }
-        t = next as usize;
+        t = across(mesh, edge_triangles, t, k)?;
     }
     None
 }

@@ -94,7 +94,7 @@ fn radius_moments(r: &[f64; 3]) -> [f64; 6] {
 
 /// |∇ψ|/r at a point of an inside triangle from the reference gradient u: √(u·S u/|det J|)/r [T].
 #[inline]
-pub fn flux_density(frame: &Frame, radius: f64, u: Pair) -> f64 {
+pub fn flux_density_magnitude(frame: &Frame, radius: f64, u: Pair) -> f64 {
     (contract(u, frame.metric, u) / frame.det_abs).max(0.0).sqrt() / radius
 }
 
@@ -158,7 +158,7 @@ fn integrate(
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
         let radius = frame.position(lambda).r;
         let u = blend(lambda, gradients);
-        let at = law.at(flux_density(frame, radius, u));
+        let at = law.at(flux_density_magnitude(frame, radius, u));
         energy += weight * radius * frame.det_abs * at.energy;
         let su = apply(frame.metric, u);
         let kappa = weight * at.reluctivity / radius;

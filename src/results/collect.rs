@@ -29,7 +29,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
     let hand = hand::hand_sum(model);
     let ledger = ledger::rows(outline, &work, value.map(|l| turns * turns / l), hand.as_ref().ok());
     let gaps = gaps::results(model, &sampler, carrier, &linkage);
-    let parts = parts::results(model, &sampler);
+    let parts = parts::results(model, &sampler, &work);
     let mut notes = notes(model, &sampler);
     notes.extend(parts::constant_law_note(model, &sampler, &parts));
     let verdict = match (&model.estimate, value) {

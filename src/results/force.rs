@@ -6,11 +6,12 @@
 
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
-use crate::fem::element::{Pair, blend, contract, dot, sides, wedge};
-use crate::fem::moments::{flux_density, rule_of};
+use crate::fem::element::{Frame, Pair, Tensor, blend, contract, dot, sides, wedge};
+use crate::fem::moments::{PAIRS, flux_density_magnitude, rule_of};
+use crate::fem::quadrature::Rule;
 use crate::geometry::{Leg, RegionKind};
 use crate::mesh::Chart;
-use crate::model::{Across, Model, Point};
+use crate::model::{Across, Law, Model, Point};
 use crate::units::{Meter, Newton};
 use std::f64::consts::TAU;
 
@@ -24,7 +25,9 @@ pub fn gap_force(model: &Model, sampler: &Sampler, gap: usize) -> Newton {
     let mut change = 0.0;
     for (t, corners) in mesh.triangles.iter().enumerate() {
         let speed = corners.map(|v| velocity[v as usize]);
-        if speed != [0.0; 3] && mesh.charts[t] == Chart::Inside {
+        // What moves as a whole keeps its energy.
+        let is_bent = speed[0] != speed[1] || speed[0] != speed[2];
+        if is_bent && mesh.charts[t] == Chart::Inside {
             change += coenergy_rate(sampler, t, speed);
         }
     }
@@ -37,33 +40,62 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
     let (e1, e2) = sides(&frame.corners);
     let (d1, d2): (Pair, Pair) = ([0.0, speed[1] - speed[0]], [0.0, speed[2] - speed[0]]);
     // Inside triangles are counter-clockwise: det = |det|.
-    let det_rate = wedge(d1, e2) + wedge(e1, d2);
-    let squares = [dot(e2, e2), -dot(e1, e2), dot(e1, e1)];
-    let rates = [2.0 * dot(e2, d2), -dot(d1, e2) - dot(e1, d2), 2.0 * dot(e1, d1)];
-    let metric_rate =
-        [0, 1, 2].map(|i| (rates[i] - squares[i] * det_rate / frame.det_abs) / frame.det_abs);
+    let det_rate = (wedge(d1, e2) + wedge(e1, d2)) / frame.det_abs;
+    let side_rates = [2.0 * dot(e2, d2), -dot(d1, e2) - dot(e1, d2), 2.0 * dot(e1, d1)];
+    let metric_rate = [0, 1, 2].map(|i| side_rates[i] / frame.det_abs - frame.metric[i] * det_rate);
 
-    let rule = rule_of(&sampler.rules, &frame);
+    let energy_rate = match sampler.reluctivity(t) {
+        Reluctivity::Constant(_) => {
+            linear_energy_rate(&frame, &gradients, metric_rate, &sampler.outcome.elements.k[t])
+        }
+        Reluctivity::Saturating(law) => {
+            let rule = rule_of(&sampler.rules, &frame);
+            saturating_energy_rate(&frame, &gradients, metric_rate, det_rate, rule, law)
+        }
+    };
+    let mesh = &sampler.outcome.mesh;
+    match sampler.outcome.coefficients.current_density[mesh.regions[t].0 as usize] {
+        0.0 => -energy_rate,
+        density => density * sampler.outcome.solution.integral(mesh, t) * det_rate - energy_rate,
+    }
+}
+
+/// d(½∫ (ν/r) u·S u)/dl for a constant law: k_mn = s_mn·S with s_mn = ∫ λ_m λ_n ν/r, and only S changes.
+fn linear_energy_rate(
+    frame: &Frame,
+    gradients: &[Pair; 3],
+    metric_rate: Tensor,
+    k: &[Tensor; 6],
+) -> f64 {
+    let mut sum = 0.0;
+    for (k, (m, n)) in k.iter().zip(PAIRS) {
+        let twice = if m == n { 1.0 } else { 2.0 };
+        sum += twice * (k[0] + k[2]) * contract(gradients[m], metric_rate, gradients[n]);
+    }
+    // The traces, which are never 0, tell s_mn.
+    0.5 * sum / (frame.metric[0] + frame.metric[2])
+}
+
+/// d(∫ r·w·|det|)/dl for a saturating law, at fixed relative rates of the metric and the determinant.
+fn saturating_energy_rate(
+    frame: &Frame,
+    gradients: &[Pair; 3],
+    metric_rate: Tensor,
+    det_rate: f64,
+    rule: &Rule,
+    law: &Law,
+) -> f64 {
     let mut rate = 0.0;
     for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
         let r = frame.position(lambda).r;
-        let u = blend(lambda, &gradients);
-        let stretch = contract(u, metric_rate, u);
-        rate -= weight
-            * match sampler.reluctivity(t) {
-                Reluctivity::Constant(nu) => 0.5 * nu / r * stretch,
-                Reluctivity::Saturating(law) => {
-                    let b = flux_density(&frame, r, u);
-                    let square = contract(u, frame.metric, u);
-                    let at = law.at(b);
-                    r * at.energy * det_rate
-                        + 0.5 * at.reluctivity / r * (stretch - square * det_rate / frame.det_abs)
-                }
-            };
+        let u = blend(lambda, gradients);
+        let at = law.at(flux_density_magnitude(frame, r, u));
+        let (square, stretch) = (contract(u, frame.metric, u), contract(u, metric_rate, u));
+        rate += weight
+            * (r * at.energy * frame.det_abs * det_rate
+                + 0.5 * at.reluctivity / r * (stretch - square * det_rate));
     }
-    let mesh = &sampler.outcome.mesh;
-    let current_density = sampler.outcome.coefficients.current_density[mesh.regions[t].0 as usize];
-    rate + current_density * sampler.outcome.solution.integral(mesh, t) * det_rate / frame.det_abs
+    rate
 }
 
 /// Halves moved rigidly apart: ±½ on the core above and below z = 0, 0 elsewhere.
@@ -97,7 +129,7 @@ fn for_kinds(sampler: &Sampler, mut visit: impl FnMut(&RegionKind, usize)) {
     let mesh = &sampler.outcome.mesh;
     for (t, corners) in mesh.triangles.iter().enumerate() {
         if mesh.charts[t] == Chart::Inside {
-            let kind = &sampler.outline.regions[mesh.regions[t].0 as usize].kind;
+            let kind = &sampler.region(t).kind;
             corners.iter().for_each(|&v| visit(kind, v as usize));
         }
     }
@@ -109,26 +141,30 @@ fn ground_velocity(model: &Model, sampler: &Sampler, gap: usize) -> Vec<f64> {
     let Gapped { inner, outer, center, half, reach } = Gapped::new(model, gap);
     let ramp = |p: &Point| {
         let height = p.z - center;
+        let beside = (p.r - outer).max(inner - p.r).max(0.0);
+        if half + reach <= height.abs() || reach <= beside {
+            return 0.0;
+        }
         let along = if height.abs() <= half {
             height / half
         } else {
             (1.0 - (height.abs() - half) / reach) * height.signum()
         };
-        let beside = (p.r - outer).max(inner - p.r).max(0.0);
-        0.5 * along.clamp(-1.0, 1.0)
-            * (1.0 - beside / reach).max(0.0)
-            * f64::from(height.abs() < half + reach)
+        0.5 * along.clamp(-1.0, 1.0) * (1.0 - beside / reach)
     };
     let mut velocity: Vec<f64> = mesh.points.iter().map(ramp).collect();
     for (t, corners) in mesh.triangles.iter().enumerate() {
-        let region = &sampler.outline.regions[mesh.regions[t].0 as usize];
-        for &v in corners {
-            let p = mesh.points[v as usize];
+        for v in corners.map(|v| v as usize) {
+            // Far from the gap nothing moves anyway.
+            if velocity[v] == 0.0 {
+                continue;
+            }
+            let p = mesh.points[v];
             let is_face =
                 inner <= p.r && p.r <= outer && (p.z - center).abs() <= half * (1.0 + 1e-9);
-            if !is_face && must_stay(model, &region.kind, gap, p) || mesh.charts[t] != Chart::Inside
-            {
-                velocity[v as usize] = 0.0;
+            let stays = !is_face && must_stay(model, &sampler.region(t).kind, gap, p);
+            if stays || mesh.charts[t] != Chart::Inside {
+                velocity[v] = 0.0;
             }
         }
     }

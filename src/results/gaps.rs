@@ -41,14 +41,11 @@ pub fn results(
 
 /// U = (1/A)∫ H_z dV over the gap's region [A]; ∫ B_z dV = 2π ∫ ∂ψ/∂r dr dz, exact for quadratics.
 fn mmf_across(sampler: &Sampler, region: usize, area: f64) -> f64 {
-    let mesh = &sampler.outcome.mesh;
     let mut sum = 0.0;
-    for (t, id) in mesh.regions.iter().enumerate() {
-        if id.0 as usize == region {
-            let (frame, u) = sampler.local(t);
-            let mean = [0, 1].map(|i| (u[0][i] + u[1][i] + u[2][i]) / 3.0);
-            sum += 2.0 * PI * 0.5 * frame.det_abs * frame.chart_gradient(mean)[0];
-        }
+    for t in sampler.triangles(region) {
+        let (frame, u) = sampler.local(t);
+        let mean = [0, 1].map(|i| (u[0][i] + u[1][i] + u[2][i]) / 3.0);
+        sum += 2.0 * PI * 0.5 * frame.det_abs * frame.chart_gradient(mean)[0];
     }
     sum / (MU0 * area)
 }

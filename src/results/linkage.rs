@@ -46,20 +46,16 @@ pub fn linkages(model: &Model, sampler: &Sampler) -> Vec<Linkage> {
 /// 2πN/A_w ∫ ψ dA over all sections of winding w: its flux linkage from ψ_h [Wb].
 fn flux_linkage(model: &Model, sampler: &Sampler, w: usize) -> Weber {
     let (mesh, solution) = (&sampler.outcome.mesh, &sampler.outcome.solution);
-    let n_sections = model.windings[w].sections.len();
-    let (mut psi, mut area) = (vec![0.0; n_sections], vec![0.0; n_sections]);
-    for (t, region) in mesh.regions.iter().enumerate() {
-        if let RegionKind::Winding { winding, section } =
-            sampler.outline.regions[region.0 as usize].kind
-            && winding == w
-        {
-            psi[section] += solution.integral(mesh, t);
-            area[section] += 0.5 * Frame::new(mesh, t).det_abs;
+    let mut linkage = 0.0;
+    for (k, region) in sampler.outline.regions.iter().enumerate() {
+        let RegionKind::Winding { winding, section } = region.kind else { continue };
+        if winding == w {
+            let psi: f64 = sampler.triangles(k).map(|t| solution.integral(mesh, t)).sum();
+            let area: f64 = sampler.triangles(k).map(|t| 0.5 * Frame::new(mesh, t).det_abs).sum();
+            linkage += TAU * model.windings[w].sections[section].turns * psi / area;
         }
     }
-    (model.windings[w].sections.iter().enumerate())
-        .map(|(s, section)| TAU * section.turns * psi[s] / area[s])
-        .sum()
+    linkage
 }
 
 /// λ/I with the ends of λ; without guaranteed ends the interval is the value itself.
@@ -114,7 +110,8 @@ pub fn tangent(
     ));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
-    let stop = Stop { outstanding: TANGENT_DECREASE, of_lowered: 0.0, n_iterations_max: N_TANGENT_MAX };
+    let stop =
+        Stop { outstanding: TANGENT_DECREASE, of_lowered: 0.0, n_iterations_max: N_TANGENT_MAX };
     Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0)?;
     Ok(TAU * dot(unit, &y))
 }

@@ -1,10 +1,12 @@
 //! What each magnetic region carries: volume, energy, exceeded flux densities, margin to the knee.
 
 use super::PartResult;
+use super::collect::Work;
 use super::sample::Sampler;
 use crate::fem::Reluctivity;
-use crate::fem::element::Frame;
-use crate::geometry::RegionKind;
+use crate::fem::element::{Frame, blend};
+use crate::fem::moments::flux_density_magnitude;
+use crate::geometry::{Outline, Region, RegionKind};
 use crate::model::Model;
 use crate::solve::Solution;
 use crate::units::{CubicMeter, Tesla};
@@ -20,20 +22,27 @@ const SAMPLES: [[f64; 3]; 3] = [
     [1.0 / 6.0, 1.0 / 6.0, 2.0 / 3.0],
 ];
 
+/// |B| and the volume it stands for.
+#[derive(Debug, Clone, Copy)]
+struct Sample {
+    b: Tesla,
+    volume: CubicMeter,
+}
+
 /// One row for every leg, plate and part.
-pub fn results(model: &Model, sampler: &Sampler) -> Vec<PartResult> {
-    (sampler.outline.regions.iter().enumerate())
-        .filter(|(_, region)| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_)))
+///
+/// - `work`: of every region
+pub fn results(model: &Model, sampler: &Sampler, work: &[Work]) -> Vec<PartResult> {
+    legs_and_parts(sampler.outline)
         .map(|(k, region)| {
-            let triangles = triangles_of(sampler, k);
-            let samples = samples(sampler, &sampler.outcome.solution, &triangles);
-            let volume = samples.iter().map(|s| s.1).sum();
-            let exceeded = exceeded(samples);
+            let mut samples = samples(sampler, &sampler.outcome.solution, k);
+            let volume = samples.iter().map(|s| s.volume).sum();
+            let exceeded = exceeded(&mut samples);
             let knee = region.material.and_then(|id| model.materials[id.0 as usize].law.knee());
             PartResult {
                 name: region.name.clone(),
                 volume,
-                energy: triangles.iter().map(|&t| sampler.work_and_energy(t).1).sum(),
+                energy: work[k].energy,
                 exceeded,
                 margin: knee.map(|knee| 1.0 - exceeded[1] / knee),
             }
@@ -43,50 +52,64 @@ pub fn results(model: &Model, sampler: &Sampler) -> Vec<PartResult> {
 
 /// Name and exceeded flux densities of every leg, plate and part for any field on the sampler's mesh.
 pub fn exceedances(sampler: &Sampler, solution: &Solution) -> Vec<(String, [Tesla; 3])> {
-    (sampler.outline.regions.iter().enumerate())
-        .filter(|(_, region)| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_)))
-        .map(|(k, region)| {
-            let samples = samples(sampler, solution, &triangles_of(sampler, k));
-            (region.name.clone(), exceeded(samples))
-        })
+    legs_and_parts(sampler.outline)
+        .map(|(k, region)| (region.name.clone(), exceeded(&mut samples(sampler, solution, k))))
         .collect()
 }
 
-fn triangles_of(sampler: &Sampler, region: usize) -> Vec<usize> {
-    let regions = &sampler.outcome.mesh.regions;
-    (0..regions.len()).filter(|&t| regions[t].0 as usize == region).collect()
+fn legs_and_parts(outline: &Outline) -> impl Iterator<Item = (usize, &Region)> {
+    let is_solid =
+        |region: &Region| matches!(region.kind, RegionKind::Leg(_) | RegionKind::Part(_));
+    outline.regions.iter().enumerate().filter(move |(_, region)| is_solid(region))
 }
 
-/// (|B|, volume) at three points a triangle; the volumes add up exactly (the rule is exact for r).
-fn samples(
-    sampler: &Sampler,
-    solution: &Solution,
-    triangles: &[usize],
-) -> Vec<(Tesla, CubicMeter)> {
+/// Three samples a triangle of the region; the volumes add up exactly (the rule is exact for r).
+fn samples(sampler: &Sampler, solution: &Solution, region: usize) -> Vec<Sample> {
     let mesh = &sampler.outcome.mesh;
+    let triangles = sampler.triangles(region);
     let mut samples = Vec::with_capacity(3 * triangles.len());
-    for &t in triangles {
+    for t in triangles {
         let (frame, gradients) = (Frame::new(mesh, t), solution.gradients(mesh, t));
         for lambda in &SAMPLES {
-            let [b_r, b_z] = crate::fem::evaluate::flux_density(&frame, &gradients, lambda);
-            samples.push((b_r.hypot(b_z), TAU * frame.position(lambda).r * frame.det_abs / 6.0));
+            let r = frame.position(lambda).r;
+            let b = flux_density_magnitude(&frame, r, blend(lambda, &gradients));
+            samples.push(Sample { b, volume: TAU * r * frame.det_abs / 6.0 });
         }
     }
     samples
 }
 
-/// Flux densities that the shares of [`EXCEEDED_SHARES`] of the volume exceed.
-fn exceeded(mut samples: Vec<(Tesla, CubicMeter)>) -> [Tesla; 3] {
-    samples.sort_by(|a, b| b.0.total_cmp(&a.0));
-    let total: CubicMeter = samples.iter().map(|s| s.1).sum();
-    EXCEEDED_SHARES.map(|share| {
-        let mut sum = 0.0;
-        let found = samples.iter().find(|s| {
-            sum += s.1;
-            share * total <= sum
-        });
-        found.or(samples.last()).map_or(0.0, |s| s.0)
-    })
+/// Flux densities that the shares of [`EXCEEDED_SHARES`] of the volume exceed; reorders the samples.
+fn exceeded(samples: &mut [Sample]) -> [Tesla; 3] {
+    let mut exceeded = [0.0; 3];
+    let total: CubicMeter = samples.iter().map(|s| s.volume).sum();
+    let mut hotter = samples;
+    // The largest share first: the others are found among its samples.
+    for (b, share) in exceeded.iter_mut().zip(EXCEEDED_SHARES).rev() {
+        let Some(n) = hottest(hotter, share * total) else { break };
+        *b = hotter[n].b;
+        hotter = &mut hotter[..=n];
+    }
+    exceeded
+}
+
+/// Brings the hottest samples to the front and returns the first place at which their volumes add up to `volume` (the last
+/// place if they never do); halves the samples in question until one is left, so the time is linear.
+fn hottest(samples: &mut [Sample], mut volume: CubicMeter) -> Option<usize> {
+    let (mut start, mut end) = (0, samples.len());
+    while start + 1 < end {
+        let middle = start.midpoint(end);
+        let open = &mut samples[start..end];
+        open.select_nth_unstable_by(middle - start, |a, b| b.b.total_cmp(&a.b));
+        let of_hotter: CubicMeter = open[..middle - start].iter().map(|s| s.volume).sum();
+        if volume <= of_hotter {
+            end = middle;
+        } else {
+            volume -= of_hotter;
+            start = middle;
+        }
+    }
+    (start < end).then_some(start)
 }
 
 /// Flux density above which a constant permeability deserves a word [T]: power ferrites saturate at 0.3 to 0.5 T (common
@@ -123,11 +146,10 @@ pub fn beyond_tables(model: &Model, sampler: &Sampler) -> Vec<String> {
         if !matches!(sampler.outcome.coefficients.reluctivity[k], Reluctivity::Saturating(_)) {
             continue;
         }
-        let triangles = triangles_of(sampler, k);
-        let samples = samples(sampler, &sampler.outcome.solution, &triangles);
-        let total: CubicMeter = samples.iter().map(|s| s.1).sum();
-        let beyond: CubicMeter = samples.iter().filter(|s| b_last < s.0).map(|s| s.1).sum();
-        let most = samples.iter().fold(0.0, |m: f64, s| m.max(s.0));
+        let samples = samples(sampler, &sampler.outcome.solution, k);
+        let total: CubicMeter = samples.iter().map(|s| s.volume).sum();
+        let beyond: CubicMeter = samples.iter().filter(|s| b_last < s.b).map(|s| s.volume).sum();
+        let most = samples.iter().fold(0.0, |m: f64, s| m.max(s.b));
         if 0.0 < beyond {
             notes.push(format!(
                 "{}: {:.2} % of the volume is beyond the last point of `{}` ({b_last} T), up to {most:.3} T; the law goes \
@@ -139,4 +161,36 @@ pub fn beyond_tables(model: &Model, sampler: &Sampler) -> Vec<String> {
         }
     }
     notes
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// [`exceeded`] by sorting.
+    fn by_sorting(samples: &[Sample]) -> [Tesla; 3] {
+        let mut sorted = samples.to_vec();
+        sorted.sort_by(|a, b| b.b.total_cmp(&a.b));
+        let total: CubicMeter = sorted.iter().map(|s| s.volume).sum();
+        EXCEEDED_SHARES.map(|share| {
+            let mut volume = 0.0;
+            let found = sorted.iter().find(|s| {
+                volume += s.volume;
+                share * total <= volume
+            });
+            found.or(sorted.last()).map_or(0.0, |s| s.b)
+        })
+    }
+
+    #[test]
+    fn exceeded_flux_densities_are_those_of_the_sorted_samples() {
+        for n in [0, 1, 2, 3, 10, 101, 1000] {
+            // Scattered, some of them equal, in volumes that differ by powers of two: sums of these are exact.
+            let mut samples: Vec<Sample> = (0..n)
+                .map(|i| Sample { b: f64::from(i * 37 % 89), volume: 2_f64.powi(i * 11 % 7) })
+                .collect();
+            let sorted = by_sorting(&samples);
+            assert_eq!(exceeded(&mut samples), sorted, "{n} samples");
+        }
+    }
 }

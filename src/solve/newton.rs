@@ -142,7 +142,8 @@ fn newton(
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
-        let stop = Stop { outstanding: 0.1 * decrease, of_lowered: FORCING, n_iterations_max: N_CG_MAX };
+        let stop =
+            Stop { outstanding: 0.1 * decrease, of_lowered: FORCING, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
         if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
             return Err(SolveError::CoarseNotPositive);
