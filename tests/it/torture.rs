@@ -9,6 +9,7 @@ mod draft;
 mod fuzz;
 mod judge;
 mod random;
+mod watch;
 
 /// Whether the long campaigns were asked for.
 fn is_slow() -> bool {

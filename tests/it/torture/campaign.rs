@@ -4,9 +4,9 @@ use super::draft::{Copy, Draft};
 use super::is_slow;
 use super::judge::{Solved, Verdict, overlap, tried};
 use super::random::{Dice, section};
+use super::watch;
 use std::collections::BTreeMap;
 use std::panic::catch_unwind;
-use std::sync::atomic::{AtomicU64, Ordering};
 use std::time::Instant;
 
 /// Stable words of the refusals that random sections may meet; the class is the word.
@@ -51,6 +51,14 @@ struct Fate {
     broken: Option<Vec<String>>,
 }
 
+impl Fate {
+    /// For the line of a slow one: without the copies, and with them.
+    fn size(&self) -> String {
+        let copies = if self.broken.is_some() { " with copies" } else { "" };
+        format!("{:.1} s the section, {} unknowns{copies}", self.seconds, self.n_unknowns)
+    }
+}
+
 fn fate(seed: u64, with_copies: bool) -> Fate {
     let draft = section(seed);
     let text = draft.text();
@@ -68,6 +76,19 @@ fn fate(seed: u64, with_copies: bool) -> Fate {
         }
     }
     fate
+}
+
+/// What must not become of a section.
+fn wrong(fate: &Fate) -> Option<String> {
+    let seed = fate.seed;
+    match (&fate.refused, &fate.broken) {
+        (Some(("other", message)), _) => {
+            Some(format!("seed {seed}: a refusal of no known class: {message}"))
+        }
+        (None, _) if !fate.reached => Some(format!("seed {seed} was not closed")),
+        (_, Some(broken)) if !broken.is_empty() => Some(format!("seed {seed}: {broken:?}")),
+        _ => None,
+    }
 }
 
 /// A tighter run, a mirrored copy and a scaled copy against the first interval.
@@ -108,38 +129,12 @@ fn random_sections_are_solved_and_held_or_refused_by_name() {
     // Copies and the tighter run cost ten times the section itself: one in some gets them.
     let (n, copied_every) = if is_slow() { (2000, 4) } else { (200, 20) };
     let start = Instant::now();
-    let fates = all_fates(n, |seed| fate(seed, seed % copied_every == 0));
+    let fates = watch::all("seed", n, |seed| fate(seed, seed % copied_every == 0), Fate::size);
     let n_solved = report(&fates, start);
-    for fate in &fates {
-        let seed = fate.seed;
-        if let Some(("other", message)) = &fate.refused {
-            panic!("seed {seed}: a refusal of no known class: {message}");
-        }
-        assert!(fate.broken.iter().flatten().count() == 0, "seed {seed}: {:?}", fate.broken);
-        assert!(fate.reached || fate.refused.is_some(), "seed {seed} was not closed");
-    }
+    let wrong: Vec<String> = fates.iter().filter_map(wrong).collect();
+    assert!(wrong.is_empty(), "{} of {n}:\n{}", wrong.len(), wrong.join("\n"));
     // A campaign in which nearly everything is refused shows nothing.
     assert!(2 * n_solved > n as usize, "only {n_solved} of {n} solved");
-}
-
-/// One section after the other on each of a few threads, every one with a pool of its own.
-///
-/// In one shared pool a worker that waits for the inner loops of its section would take up a whole other section, and so on
-/// downwards: seconds turn into minutes and every section begun stays in memory.
-fn all_fates(n: u64, fate: impl Fn(u64) -> Fate + Sync) -> Vec<Fate> {
-    let n_threads = std::thread::available_parallelism().map_or(1, |n| n.get() as u64);
-    let next = AtomicU64::new(0);
-    let work = || {
-        let pool = rayon::ThreadPoolBuilder::new().num_threads(1).build().unwrap();
-        let take = || Some(next.fetch_add(1, Ordering::Relaxed)).filter(|&seed| seed < n);
-        pool.install(|| std::iter::from_fn(take).map(&fate).collect::<Vec<Fate>>())
-    };
-    let mut fates: Vec<Fate> = std::thread::scope(|scope| {
-        let threads: Vec<_> = (0..n_threads).map(|_| scope.spawn(work)).collect();
-        threads.into_iter().flat_map(|thread| thread.join().unwrap()).collect()
-    });
-    fates.sort_by_key(|fate| fate.seed);
-    fates
 }
 
 /// Prints the counts; tells how many were solved.
