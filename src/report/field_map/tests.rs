@@ -11,7 +11,7 @@ fn draw(mirror: bool, hot_spots: &[HotSpot]) -> String {
         mesh: &field.mesh,
         outline: &outline,
         solution: &field.solution,
-        b_corner: &field.b_corner,
+        b_corner: &field.cells.b_corner,
         hot_spots,
         mirror,
     };
@@ -56,13 +56,13 @@ fn equal_fields_give_equal_bytes_and_a_zero_field_is_drawn_too() {
     let (mut field, outline) = (fixture::field(6), fixture::outline());
     field.solution.vertex.fill(0.0);
     field.solution.edge.fill(0.0);
-    field.b_corner.fill([0.0; 3]);
+    field.cells.b_corner.fill([0.0; 3]);
     let map = FieldMap {
         title: "nothing",
         mesh: &field.mesh,
         outline: &outline,
         solution: &field.solution,
-        b_corner: &field.b_corner,
+        b_corner: &field.cells.b_corner,
         hot_spots: &[],
         mirror: false,
     };
