@@ -10,8 +10,3 @@ mod fuzz;
 mod judge;
 mod random;
 mod watch;
-
-/// Whether the long campaigns were asked for.
-fn is_slow() -> bool {
-    std::env::var_os("RUN_SLOW_TESTS").is_some()
-}

@@ -1,8 +1,9 @@
 //! The coil quadrature against published values, against doubled orders, and against identities.
 
 use super::*;
+use crate::dice::Dice;
 use crate::elliptic::nagaoka;
-use crate::random::{Generator, air_coil};
+use crate::random::air_coil;
 use crate::references::published;
 use std::f64::consts::PI;
 
@@ -37,8 +38,8 @@ fn higher_orders_change_nothing_for_any_shape() {
         centred(1.0, 1e3, 1e-1),
         centred(0.5, 1.0, 1e-5),
     ];
-    let mut generator = Generator::new(11);
-    shapes.extend((0..6).map(|_| air_coil(&mut generator)));
+    let mut dice = Dice(11);
+    shapes.extend((0..6).map(|_| air_coil(&mut dice)));
     for coil in shapes {
         let (coarse, fine) = (self_inductance(&coil), self_inductance_with(&coil, finer));
         // The error statement at the head of the file.

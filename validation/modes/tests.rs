@@ -1,7 +1,8 @@
 //! Mode matching against published values, the plane map, and itself.
 
 use super::*;
-use crate::random::{Generator, gapped_pot_case};
+use crate::dice::Dice;
+use crate::random::gapped_pot_case;
 use crate::references::published;
 
 fn filled(a: f64, b: f64, half_gap: f64, half_window: f64) -> GappedPot {
@@ -61,9 +62,9 @@ fn pot_cores_agree_with_the_published_rows() {
 
 #[test]
 fn more_functions_change_nothing_for_random_pots() {
-    let mut generator = Generator::new(5);
+    let mut dice = Dice(5);
     for _ in 0..12 {
-        let pot = gapped_pot_case(&mut generator);
+        let pot = gapped_pot_case(&mut dice);
         let (few, many) = (gapped_pot(&pot, N_FUNCTIONS), gapped_pot(&pot, [9, 1]));
         // What the campaigns rely on: a hundredth of the narrowest interval that they ask for.
         assert!((few / many - 1.0).abs() < 1e-8, "{pot:?}: {few} against {many}");

@@ -1,10 +1,11 @@
 //! The random campaign: how many sections were tried, refused (by class), solved, and held.
 
 use super::draft::{Copy, Draft};
-use super::is_slow;
 use super::judge::{Solved, Verdict, overlap, tried};
-use super::random::{Dice, section};
+use super::random::section;
 use super::watch;
+use crate::cases::is_slow;
+use crate::dice::Dice;
 use std::collections::BTreeMap;
 use std::panic::catch_unwind;
 use std::time::Instant;

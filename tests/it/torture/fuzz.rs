@@ -1,8 +1,8 @@
 //! Sheets with random bytes changed, through the whole path: no panic, no endless loop.
 
-use super::is_slow;
-use super::random::Dice;
 use super::watch;
+use crate::cases::is_slow;
+use crate::dice::Dice;
 use crate::sheets::all;
 use gapwright::adapt::run;
 use gapwright::geometry::outline;
