@@ -149,6 +149,17 @@ fn random_sections_are_solved_and_held_or_refused_by_name() {
     assert!(2 * n_solved > n as usize, "only {n_solved} of {n} solved");
 }
 
+/// One section again, its sheet printed: `SEED=912` says which.
+#[test]
+fn the_section_of_a_seed_that_is_asked_for_is_printed_and_solved() {
+    let asked = std::env::var("SEED").ok();
+    let seed = asked.as_ref().map_or(0, |seed| seed.parse().expect("SEED is a whole number"));
+    println!("{}", section(seed).text());
+    let fate = fate(seed, asked.is_some());
+    println!("seed {seed}: {}\n{:?}", fate.size(), fate.refused);
+    assert_eq!(wrong(&fate), None);
+}
+
 /// Prints the counts; tells how many were solved.
 fn report(fates: &[Fate], start: Instant) -> usize {
     let mut classes: BTreeMap<&str, usize> = BTreeMap::new();
