@@ -46,14 +46,9 @@ pub fn solve(options: &SolveOptions) -> Result<End, Stop> {
         clock.lap("writing");
     }
     let times = clock.asked(options);
-    if options.json {
-        screen::print(&result_json(&results, times.as_ref()))?;
-    } else if !options.quiet {
-        let look =
-            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
-        screen::print(&solve_screen(&results, &look))?;
-        screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
-    }
+    let json = || result_json(&results, times.as_ref());
+    let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+    screen::answer(options, &out, json, || solve_screen(&results, &look))?;
     Ok(end_of(&results))
 }
 

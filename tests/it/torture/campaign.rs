@@ -149,11 +149,11 @@ fn random_sections_are_solved_and_held_or_refused_by_name() {
     assert!(2 * n_solved > n as usize, "only {n_solved} of {n} solved");
 }
 
-/// One section again, its sheet printed: `SEED=912` says which.
+/// One section again, its sheet printed: `TORTURE_SEED=912` says which.
 #[test]
 fn the_section_of_a_seed_that_is_asked_for_is_printed_and_solved() {
-    let asked = std::env::var("SEED").ok();
-    let seed = asked.as_ref().map_or(0, |seed| seed.parse().expect("SEED is a whole number"));
+    let asked = std::env::var("TORTURE_SEED").ok();
+    let seed = asked.as_ref().map_or(0, |seed| seed.parse().expect("TORTURE_SEED is a whole number"));
     println!("{}", section(seed).text());
     let fate = fate(seed, asked.is_some());
     println!("seed {seed}: {}\n{:?}", fate.size(), fate.refused);

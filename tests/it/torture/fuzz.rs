@@ -61,7 +61,7 @@ fn tried(name: &str, text: &str, dice: &mut Dice) -> Tried {
 
 #[test]
 fn broken_bytes_never_panic_nor_run_for_ever() {
-    let n_mutations = if is_slow() { 1000 } else { 5 };
+    let n_mutations = if is_slow() { 5000 } else { 5 };
     let sheets = all();
     let work = |k: u64| {
         let (name, text) = &sheets[(k / n_mutations) as usize];
