@@ -153,7 +153,8 @@ fn random_sections_are_solved_and_held_or_refused_by_name() {
 #[test]
 fn the_section_of_a_seed_that_is_asked_for_is_printed_and_solved() {
     let asked = std::env::var("TORTURE_SEED").ok();
-    let seed = asked.as_ref().map_or(0, |seed| seed.parse().expect("TORTURE_SEED is a whole number"));
+    let seed =
+        asked.as_ref().map_or(0, |seed| seed.parse().expect("TORTURE_SEED is a whole number"));
     println!("{}", section(seed).text());
     let fate = fate(seed, asked.is_some());
     println!("seed {seed}: {}\n{:?}", fate.size(), fate.refused);
