@@ -1,6 +1,7 @@
 //! The guarantee: intervals hold the reference for any iterate, div τ = −J, quadrature suffices, bytes repeat.
 
 use crate::cases::{ALL, Case, R1, R5, R7, R8, Run, is_slow, run};
+use crate::dice::Dice;
 use gapwright::adapt::{self, Outcome};
 use gapwright::bound::{self, Field};
 use gapwright::fem::{Elements, Rules, Space, assemble};
@@ -197,14 +198,13 @@ fn zero(run: &Run) -> Solution {
 }
 
 /// The field with every unknown changed by up to `size` of its own value and of the largest one.
-fn shaken(run: &Run, size: f64, mut seed: u64) -> Solution {
+fn shaken(run: &Run, size: f64, seed: u64) -> Solution {
     let good = &run.outcome.solution;
     let mut x = run.outcome.space.restrict(&good.vertex, &good.edge);
     let largest = x.iter().fold(0.0_f64, |m, v| m.max(v.abs()));
+    let mut dice = Dice(seed);
     for value in &mut x {
-        // Numerical Recipes' 64-bit linear congruence is random enough here.
-        seed = seed.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
-        *value += size * largest * ((seed >> 11) as f64 / (1u64 << 52) as f64 - 1.0);
+        *value += size * largest * dice.uniform(-1.0, 1.0);
     }
     let (vertex, edge) = run.outcome.space.expand(&run.outcome.mesh, &x);
     Solution { vertex, edge }
