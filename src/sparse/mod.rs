@@ -1,7 +1,7 @@
 //! Sparse algebra on sprs matrices: products, conjugate gradients, the multilevel preconditioner. No physics.
 
 pub mod cg;
-mod dissection;
+mod degree;
 mod ldl;
 pub mod matrix;
 pub mod multilevel;

@@ -5,7 +5,7 @@
 //! (hierarchical splitting); J. Bramble, J. Pasciak, J. Xu, Math. Comp. 55 (1990) 1 (smoothing on every level).
 
 use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
-use super::dissection::nested_dissection;
+use super::degree::minimum_degree;
 use super::ldl::Ldl;
 use super::matrix::{Matrix, Storage, Swept, leading_block};
 use nalgebra::DMatrix;
@@ -268,10 +268,10 @@ enum Factor {
 }
 
 impl Coarse {
-    /// Factorises the leading block by nested dissection.
+    /// Factorises the leading block by minimum degree.
     fn new(matrix: &Matrix, size: usize) -> Option<Coarse> {
         let mut block = leading_block(matrix, size);
-        let order = nested_dissection(&block);
+        let order = minimum_degree(&block);
         let scale = power_of_two_below(block.data().first().copied().unwrap_or(1.0)).recip();
         block.scale(scale);
         let factor = match size <= N_LIBRARY_MAX {
