@@ -43,15 +43,16 @@ pub fn facts() -> Value {
     })
 }
 
-/// Writes the measurement under today's date; returns the path.
-pub fn store(measured: &Value) -> PathBuf {
+/// Writes the measurement under today's date, `what` behind it; returns the path.
+pub fn store(measured: &Value, what: &str) -> PathBuf {
     let text = |key: &str| measured["facts"][key].as_str().unwrap_or("unknown").to_string();
     let short: String = text("machine")
         .chars()
         .map(|c| if c.is_ascii_alphanumeric() { c.to_ascii_lowercase() } else { '-' })
         .collect();
     let words: Vec<&str> = short.split('-').filter(|w| !w.is_empty()).collect();
-    let path = folder().join("history").join(format!("{}-{}.json", text("date"), words.join("-")));
+    let path =
+        folder().join("history").join(format!("{}-{}{what}.json", text("date"), words.join("-")));
     let mut pretty = serde_json::to_string_pretty(measured).unwrap();
     pretty.push('\n');
     std::fs::create_dir_all(folder().join("history")).unwrap();

@@ -27,13 +27,14 @@ fn main() {
     match words.as_slice() {
         ["memory", case, goal] => memory::child(case, goal),
         ["iterations"] => print_iterations(&iterations_study(1_000_000)),
-        ["small"] => bench(&CASES, &[], 30_000),
-        ["only", name] => bench(&[cases::case(name)], &LADDER, 0),
-        _ => bench(&CASES, &LADDER, 1_000_000),
+        ["small"] => bench("-small", &CASES, &[], 30_000),
+        ["only", name] => bench(&format!("-{name}"), &[cases::case(name)], &LADDER, 0),
+        _ => bench("", &CASES, &LADDER, 1_000_000),
     }
 }
 
-fn bench(chosen: &[Case], ladder: &[usize], n_unknowns_max: usize) {
+/// Measures, prints and keeps under a name that ends with `what`: a part does not replace the whole.
+fn bench(what: &str, chosen: &[Case], ladder: &[usize], n_unknowns_max: usize) {
     let facts = history::facts();
     let mut plan: Vec<(Case, Goal)> = Vec::new();
     for &case in chosen {
@@ -47,10 +48,11 @@ fn bench(chosen: &[Case], ladder: &[usize], n_unknowns_max: usize) {
     let runs: Vec<Value> =
         plan.iter().flat_map(|&(c, g)| [1, 2].map(|n| run::measure(c, g, n))).collect();
     run::print(&runs);
+    run::print_costs(&runs);
     let study = iterations_study(n_unknowns_max);
     print_iterations(&study);
     let measured = json!({ "facts": facts, "solver": solver, "runs": runs, "iterations": study });
-    println!("\nkept in {}", history::store(&measured).display());
+    println!("\nkept in {}", history::store(&measured, what).display());
 }
 
 /// Iterations against size for every permeability at R1's gap and at a gap of 1e-4 of the core's radius.

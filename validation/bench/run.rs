@@ -58,6 +58,7 @@ fn facts(case: Case, goal: Goal, model: &Model, outcome: &Outcome) -> Value {
     let efforts = outcome.rounds.iter().map(|r| r.effort.n_cg_iterations);
     json!({
         "case": case.name, "goal": goal.label(), "unknowns": outcome.space.n_dofs,
+        "unknown_rounds": outcome.rounds.iter().map(|r| r.n_unknowns).sum::<usize>(),
         "triangles": outcome.mesh.triangles.len(), "rounds": outcome.rounds.len(),
         "cg_iterations": efforts.sum::<usize>(), "cg_iterations_last": outcome.rounds.last().map(|r| r.effort.n_cg_iterations),
         "width": outcome.bound.relative_width(), "error_of_middle": error,
@@ -112,6 +113,48 @@ pub fn print(rows: &[Value]) {
             word("cg_iterations"),
             number("bytes_per_unknown"),
             number("width_by_error_of_low")
+        );
+    }
+}
+
+/// What an unknown costs in one round, stage by stage, on one thread: flat as long as memory streams.
+pub fn print_costs(rows: &[Value]) {
+    println!(
+        "\nOne thread: ns an unknown and round; results and VTK file: ns an unknown of the last round"
+    );
+    println!(
+        "{:<4} {:>8} {:>9} {:>9} {:>8} {:>8} {:>8} {:>8} {:>8} | {:>8} {:>8}",
+        "case",
+        "goal",
+        "unknowns",
+        "in rounds",
+        "all",
+        "elem",
+        "solve",
+        "bound",
+        "refine",
+        "results",
+        "report"
+    );
+    for row in rows.iter().filter(|row| row["threads"] == 1) {
+        let number = |key: &str| row[key].as_f64().unwrap_or(f64::NAN);
+        let stage = |k: usize, n: f64| {
+            1e9 * row["stages"][stages::NAMES[k]].as_f64().unwrap_or(f64::NAN) / n
+        };
+        let (sum, last) = (number("unknown_rounds"), number("unknowns"));
+        println!(
+            "{:<4} {:>8} {:>9} {:>9} {:>8.0} {:>8.0} {:>8.0} {:>8.0} {:>8.0} | {:>8.0} {:>8.0}",
+            row["case"].as_str().unwrap_or(""),
+            row["goal"].as_str().unwrap_or(""),
+            row["unknowns"],
+            row["unknown_rounds"],
+            1e9 * number("seconds") / sum,
+            stage(1, sum),
+            stage(2, sum),
+            stage(3, sum),
+            stage(4, sum),
+            stage(5, last),
+            stage(6, last)
         );
     }
 }
