@@ -100,7 +100,10 @@ pub fn conjugate_gradients(
         }
         // From a start on the wrong side of zero bᵀx is negative at first: nothing to measure against yet.
         let size = dot(b, x).max(scale);
-        let decrease = if 0.0 < size { alpha * rz / size } else { f64::INFINITY };
+        if size <= 0.0 {
+            continue;
+        }
+        let decrease = alpha * rz / size;
         rest = outstanding(before, decrease);
         lowered += decrease;
         if rest <= stop.outstanding.max(stop.of_lowered * lowered) {
