@@ -59,15 +59,16 @@ fn integrand(k: f64, r1: f64, r2: f64, height: f64) -> f64 {
 mod tests {
     use super::*;
     use crate::coils;
-    use crate::random::{Generator, air_coil};
+    use crate::dice::Dice;
+    use crate::random::air_coil;
 
     #[test]
     fn two_methods_agree_on_random_coils() {
-        let mut generator = Generator::new(7);
+        let mut dice = Dice(7);
         let mut worst: f64 = 0.0;
         let mut n_compared = 0;
         for _ in 0..40 {
-            let coil = air_coil(&mut generator);
+            let coil = air_coil(&mut dice);
             let width = coil.radii[1] - coil.radii[0];
             let height = coil.heights[1] - coil.heights[0];
             // The Bessel integral needs a section that is not too small against the radius.

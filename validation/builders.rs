@@ -3,9 +3,10 @@
 use crate::coils::Coil;
 use crate::modes::GappedPot;
 use crate::sphere::SphereCoil;
+use gapwright::input;
 use gapwright::model::{
-    Accuracy, Across, Core, Corner, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Part,
-    Point, PotWall, Section, Winding,
+    Across, Core, Corner, Form, Gap, Law, Material, MaterialId, Model, Part, Point, PotWall,
+    Section, Winding,
 };
 use std::f64::consts::PI;
 
@@ -13,19 +14,8 @@ const MM: f64 = 1e-3;
 
 /// Nothing but one material of constant permeability.
 pub fn bare(permeability: f64) -> Model {
-    Model {
-        title: String::new(),
-        materials: vec![Material { name: "core".to_owned(), law: Law::Constant { permeability } }],
-        core: None,
-        gaps: Vec::new(),
-        windings: Vec::new(),
-        parts: Vec::new(),
-        probes: Vec::new(),
-        accuracy: Accuracy::default(),
-        estimate: None,
-        requirements: Vec::new(),
-        hot_spots: HotSpotWish::default(),
-    }
+    let law = Law::Constant { permeability };
+    Model { materials: vec![Material { name: "core".to_owned(), law }], ..Model::default() }
 }
 
 /// A winding of one section.
@@ -56,63 +46,45 @@ fn core(form: Form) -> Option<Core> {
     Some(Core { material: MaterialId(0), form, corner_radius: 0.0, joint: 0.0 })
 }
 
-/// A coil from millimetres.
-fn coil_mm(radii: [f64; 2], half_height: f64) -> Coil {
-    Coil { radii: radii.map(|r| r * MM), heights: [-half_height * MM, half_height * MM] }
+/// A section of `field_cases.json` by its sheet.
+fn section(sheet: &str) -> Model {
+    let no_files = |path: &str| Err(format!("{path}: these sheets name no files"));
+    let read = input::read(sheet, "section.toml", &no_files);
+    read.unwrap_or_else(|found| panic!("{}", found[0].message)).model
 }
 
-/// R1 of `field_cases.json`: gapped pot core with a hole, 42 turns.
-pub fn r1(current: f64) -> Model {
-    let form = Form::Pot {
-        wall: PotWall::OuterDiameter(25.5 * MM),
-        wall_inner_diameter: 21.2 * MM,
-        post_diameter: 11.5 * MM,
-        hole_diameter: 5.4 * MM,
-        height: 16.1 * MM,
-        window_height: 11.0 * MM,
-    };
-    let windings = vec![winding(&coil_mm([6.6, 10.2], 4.9), 42.0, current)];
-    Model { core: core(form), gaps: post_gap(0.3 * MM), windings, ..bare(2000.0) }
-}
-
-/// The core of R5, R9 and R10 with a post gap [m].
-fn solid_pot(permeability: f64, gap: f64, windings: Vec<Winding>) -> Model {
-    let form = Form::Pot {
-        wall: PotWall::OuterDiameter(32.0 * MM),
-        wall_inner_diameter: 28.0 * MM,
-        post_diameter: 14.0 * MM,
-        hole_diameter: 0.0,
-        height: 23.0 * MM,
-        window_height: 16.0 * MM,
-    };
-    Model { core: core(form), gaps: post_gap(gap), windings, ..bare(permeability) }
+/// R1: gapped pot core with a hole, 42 turns, 1.8 A.
+pub fn r1() -> Model {
+    section(include_str!("references/R1.toml"))
 }
 
 /// R5: solid post, gap 1 mm, 60 turns; the permeability is 1500 in the reference.
 pub fn r5(permeability: f64, turns: f64, current: f64) -> Model {
-    solid_pot(permeability, 1.0 * MM, vec![winding(&coil_mm([8.2, 13.4], 7.2), turns, current)])
+    let mut model = section(include_str!("references/R5.toml"));
+    model.materials[0].law = Law::Constant { permeability };
+    model.windings[0].sections[0].turns = turns;
+    model.windings[0].current = current;
+    model
 }
 
-/// R7: air coil of 100 turns.
-pub fn r7(turns: f64, current: f64) -> Model {
-    air_coils(&[(coil_mm([20.0, 30.0], 5.0), turns, current)])
+/// R7: air coil of 100 turns, 1 A.
+pub fn r7() -> Model {
+    section(include_str!("references/R7.toml"))
 }
 
 /// R8: rod with a short winding of 80 turns, 1 A.
 pub fn r8() -> Model {
-    let form = Form::Rod { diameter: 10.0 * MM, hole_diameter: 0.0, height: 100.0 * MM };
-    Model {
-        core: core(form),
-        windings: vec![winding(&coil_mm([5.5, 7.0], 10.0), 80.0, 1.0)],
-        ..bare(500.0)
-    }
+    section(include_str!("references/R8.toml"))
 }
 
 /// R9: the core of R5 with a gap of 0.1 mm and two windings of 30 and 15 turns.
 pub fn r9(currents: [f64; 2]) -> Model {
-    let primary = winding(&coil_mm([8.2, 10.4], 7.2), 30.0, currents[0]);
-    let secondary = winding(&coil_mm([11.0, 13.4], 7.2), 15.0, currents[1]);
-    solid_pot(1500.0, 0.1 * MM, vec![primary, secondary])
+    let coil =
+        |radii: [f64; 2]| Coil { radii: radii.map(|r| r * MM), heights: [-7.2 * MM, 7.2 * MM] };
+    let primary = winding(&coil([8.2, 10.4]), 30.0, currents[0]);
+    let secondary = winding(&coil([11.0, 13.4]), 15.0, currents[1]);
+    let core = section(include_str!("references/R5.toml"));
+    Model { gaps: post_gap(0.1 * MM), windings: vec![primary, secondary], ..core }
 }
 
 /// A gapped pot core with thick walls (half a post) of a large permeability round the air of `pot`; one turn, 1 A.

@@ -4,8 +4,9 @@
 
 use crate::builders::{self, Chords};
 use crate::coils::{mutual_inductance, self_inductance};
+use crate::dice::Dice;
 use crate::modes::{self, gapped_pot};
-use crate::random::{Generator, air_coil, coil_pair, gapped_pot_case, sphere_coil};
+use crate::random::{air_coil, coil_pair, gapped_pot_case, sphere_coil};
 use crate::solver::solve;
 use crate::sphere;
 use gapwright::units::MU0;
@@ -30,8 +31,8 @@ pub struct Summary {
 }
 
 /// Runs `n_cases` in parallel, each from its own seed.
-pub fn run(n_cases: usize, seed: u64, case: impl Fn(&mut Generator) -> Finding + Sync) -> Summary {
-    let one = |i: usize| case(&mut Generator::new(seed + i as u64));
+pub fn run(n_cases: usize, seed: u64, case: impl Fn(&mut Dice) -> Finding + Sync) -> Summary {
+    let one = |i: usize| case(&mut Dice(seed + i as u64));
     let findings: Vec<Finding> = (0..n_cases).into_par_iter().map(one).collect();
     let numbered = findings.iter().enumerate();
     let failures = numbered.filter_map(|(i, f)| {
@@ -46,19 +47,19 @@ pub fn run(n_cases: usize, seed: u64, case: impl Fn(&mut Generator) -> Finding +
 
 /// Number of cases of a campaign: all of them, or a tenth.
 fn share_of(n_full: usize) -> usize {
-    if std::env::var_os("RUN_SLOW_TESTS").is_some() { n_full } else { n_full / 10 }
+    if std::env::var_os("RUN_SLOW_TESTS").is_some_and(|v| v == "1") { n_full } else { n_full / 10 }
 }
 
 /// A random air coil against the quadrature.
-pub fn one_air_coil(generator: &mut Generator, interval: f64) -> Finding {
-    let coil = air_coil(generator);
+pub fn one_air_coil(dice: &mut Dice, interval: f64) -> Finding {
+    let coil = air_coil(dice);
     let exact = 0.5 * MU0 * self_inductance(&coil);
     judged(&format!("{coil:?}"), &builders::air_coil(&coil), interval, exact)
 }
 
 /// Two random coils that both carry current, against self and mutual inductance.
-pub fn one_coil_pair(generator: &mut Generator, interval: f64) -> Finding {
-    let pair = coil_pair(generator);
+pub fn one_coil_pair(dice: &mut Dice, interval: f64) -> Finding {
+    let pair = coil_pair(dice);
     let [(first, n1, i1), (second, n2, i2)] = pair;
     let (mmf1, mmf2) = (n1 * i1, n2 * i2);
     let own = mmf1 * mmf1 * self_inductance(&first) + mmf2 * mmf2 * self_inductance(&second);
@@ -87,8 +88,8 @@ fn judged(case: &str, model: &gapwright::model::Model, interval: f64, exact: f64
 ///
 /// The reluctance R = 1/L is nearly a straight line in 1/µr, and both solutions give intervals of it: the straight line
 /// to 1/µr = 0 must cover the ideal value. What is bent is of the order of the square of the core's share, below 1e-5.
-pub fn one_gapped_pot(generator: &mut Generator, interval: f64) -> Finding {
-    let pot = gapped_pot_case(generator);
+pub fn one_gapped_pot(dice: &mut Dice, interval: f64) -> Finding {
+    let pot = gapped_pot_case(dice);
     let exact = 0.5 * MU0 * gapped_pot(&pot, modes::N_FUNCTIONS);
     let solved =
         [1e6, 5e5].map(|permeability| solve(&builders::gapped_pot(&pot, permeability), interval));
@@ -112,8 +113,8 @@ pub fn one_gapped_pot(generator: &mut Generator, interval: f64) -> Finding {
 
 /// A random sphere with its coil against the series: the inscribed polygon's low end and the circumscribed polygon's
 /// high end must enclose it, for more iron in the same place cannot lower the inductance.
-pub fn one_sphere(generator: &mut Generator, interval: f64) -> Finding {
-    let case = sphere_coil(generator);
+pub fn one_sphere(dice: &mut Dice, interval: f64) -> Finding {
+    let case = sphere_coil(dice);
     let exact = 0.5 * MU0 * sphere::inductance(&case);
     let solved = [Chords::Inside, Chords::Outside]
         .map(|chords| solve(&builders::sphere(&case, 90, chords), interval));
@@ -162,8 +163,8 @@ mod tests {
     #[test]
     fn a_campaign_notices_a_wrong_inductance() {
         // Half a per cent off against an interval of 0.1 %: every case must be reported.
-        let wrong = |generator: &mut Generator| {
-            let coil = air_coil(generator);
+        let wrong = |dice: &mut Dice| {
+            let coil = air_coil(dice);
             judged(
                 "wrong on purpose",
                 &builders::air_coil(&coil),

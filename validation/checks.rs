@@ -73,7 +73,7 @@ mod tests {
 
     #[test]
     fn a_wrong_reference_fails_its_row() {
-        let solved: Result<Solved, String> = solve(&builders::r7(100.0, 1.0), 1e-3);
+        let solved: Result<Solved, String> = solve(&builders::r7(), 1e-3);
         let right = 0.5 * MU0 * 1e4 * self_inductance(&centred([0.02, 0.03], 0.01));
         let exact = |coenergy| Exact { coenergy, scale: 1.0, unit: "J", error: 0.0, source: "" };
         let row = |coenergy| guarantee("R7", 1e-3, &solved, &exact(coenergy));

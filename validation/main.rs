@@ -14,6 +14,8 @@ mod cell;
 mod checks;
 mod coils;
 mod demag;
+#[allow(dead_code, reason = "shared with the integration tests")]
+mod dice;
 mod elliptic;
 mod ideal;
 mod modes;

@@ -81,6 +81,14 @@ pub fn published(prefix: &str) -> Vec<Published> {
         .collect()
 }
 
+/// All rows whose id starts with `prefix`, which must be so many.
+#[track_caller]
+pub fn all_published(prefix: &str, n_rows: usize) -> Vec<Published> {
+    let rows = published(prefix);
+    assert_eq!(rows.len(), n_rows, "{prefix}");
+    rows
+}
+
 /// A number, or text that reads as one ("inf", "10.0").
 fn number(value: &Value) -> Option<f64> {
     value.as_f64().or_else(|| value.as_str().and_then(|text| text.parse().ok()))

@@ -2,7 +2,7 @@
 
 use super::{ALGEBRAIC_SHARE, Outcome};
 use crate::bound::{self, Bound, Field};
-use crate::fem::{Element, Rules};
+use crate::fem::{Elements, Rules};
 use crate::solve::{self, Effort, Solution, SolveError, System};
 use crate::units::{AmperePerSquareMeter, Joule};
 
@@ -10,7 +10,7 @@ use crate::units::{AmperePerSquareMeter, Joule};
 #[derive(Debug, Clone, PartialEq)]
 pub struct Again {
     pub solution: Solution,
-    pub elements: Vec<Element>,
+    pub elements: Elements,
     pub bound: Bound,
     pub effort: Effort,
 }
@@ -37,7 +37,7 @@ pub fn at_density(
 fn solve_and_bound(
     outcome: &mut Outcome,
     solution: &mut Solution,
-    elements: &mut [Element],
+    elements: &mut Elements,
     width: f64,
 ) -> Result<(Effort, Bound), SolveError> {
     let rules = Rules::working();
@@ -64,6 +64,17 @@ pub fn scaled(solution: &Solution, factor: f64) -> Solution {
     Solution {
         vertex: solution.vertex.iter().map(|v| v * factor).collect(),
         edge: solution.edge.iter().map(|v| v * factor).collect(),
+    }
+}
+
+/// A start for the field at currents `factor` times those of the outcome.
+///
+/// A saturated core keeps its flux when the current changes a little: scaled along, it would be pushed far over the bend (8 Newton
+/// steps instead of 5 were seen at −17 %). Far below, the scaled field is the nearer one.
+pub fn start_at(outcome: &Outcome, factor: f64) -> Solution {
+    match !outcome.coefficients.is_linear() && 0.5 < factor {
+        true => outcome.solution.clone(),
+        false => scaled(&outcome.solution, factor),
     }
 }
 
@@ -96,11 +107,11 @@ pub fn rate_ends_at(
 
 /// The width to hand to [`at_density`] where the flux linkage is wanted, not only the coenergy.
 ///
-/// λ errs like the field, the coenergy like its square: with η·min(1 %, 100 η) the algebraic error of λ is at most
-/// √(3e-4·100)·η = 0.17 η, and 2 % of η where η is 0.5 %.
+/// λ errs like the field, the coenergy like its square: with η·min(10 %, 1000 η) the algebraic error of λ is at most
+/// √(3e-5·1000)·η = 0.17 η, and 2 % of η where η is 0.5 %.
 pub fn linkage_width(relative_width: f64) -> f64 {
     let width = relative_width.min(1.0);
-    (width * (100.0 * width).min(1e-2)).max(1e-13)
+    (width * (1000.0 * width).min(0.1)).max(1e-13)
 }
 
 /// δ = √η.

@@ -105,7 +105,7 @@ pub fn probe_triangles(outcome: &Outcome) -> Vec<u32> {
 fn has_share(outcome: &Outcome, t: u32, share: f64) -> bool {
     let t = t as usize;
     let gradients = outcome.solution.gradients(&outcome.mesh, t);
-    share * TAU * linear_energy(&outcome.elements[t].k, &gradients) < outcome.bound.shares[t]
+    share * TAU * linear_energy(&outcome.elements.k[t], &gradients) < outcome.bound.shares[t]
 }
 
 /// The triangles whose error a probe in triangle t feels most: all that touch it.

@@ -2,7 +2,7 @@
 
 use super::{Field, Flux};
 use crate::fem::element::{Frame, GRADIENT, POSITION, Pair, blend, contract, dot, wedge};
-use crate::fem::elements::{LOCAL_EDGES, Packed, packed};
+use crate::fem::elements::{LOCAL_EDGES, Packed};
 use crate::fem::moments::rule_of;
 use crate::mesh::Mesh;
 use crate::model::Law;
@@ -30,12 +30,14 @@ impl Patchwork {
 
 /// ½ tᵀM t of the flux on a triangle: its part of `high`.
 pub fn half_square(gram: &Packed, x: &[f64; 6]) -> f64 {
-    let mut sum = 0.0;
+    let (mut sum, mut place) = (0.0, 0);
     for i in 0..6 {
-        sum += 0.5 * gram[packed(i, i)] * x[i] * x[i];
+        let mut row = 0.5 * gram[place] * x[i];
         for j in i + 1..6 {
-            sum += gram[packed(i, j)] * x[i] * x[j];
+            row += gram[place + j - i] * x[j];
         }
+        sum += row * x[i];
+        place += 6 - i;
     }
     sum
 }
@@ -43,14 +45,15 @@ pub fn half_square(gram: &Packed, x: &[f64; 6]) -> f64 {
 /// F_a = ∇λ_a·Σ w − J|det|/6, half-axis edges moved from their free end to the axis by R_e/4 (eq. 9).
 fn defects(axis: [bool; 3], w: &[Pair; 3], source: f64) -> [f64; 3] {
     let sum = [w[0][0] + w[1][0] + w[2][0], w[0][1] + w[1][1] + w[2][1]];
-    let mut defect = [0, 1, 2].map(|a| dot(GRADIENT[a], sum) - source / 6.0);
+    let share = source / 6.0;
+    let mut defect = [-sum[0] - sum[1] - share, sum[0] - share, sum[1] - share];
     for (i, j) in LOCAL_EDGES {
         let (v, pole) = match (axis[i], axis[j]) {
             (false, true) => (i, j),
             (true, false) => (j, i),
             _ => continue,
         };
-        let bubble = 4.0 * (dot(GRADIENT[pole], w[v]) + dot(GRADIENT[v], w[pole])) - source / 6.0;
+        let bubble = 4.0 * (dot(GRADIENT[pole], w[v]) + dot(GRADIENT[v], w[pole])) - share;
         defect[v] -= 0.25 * bubble;
         defect[pole] += 0.25 * bubble;
     }
@@ -61,17 +64,17 @@ fn defects(axis: [bool; 3], w: &[Pair; 3], source: f64) -> [f64; 3] {
 fn targets(axis: [bool; 3], w: &[Pair; 3]) -> [[[f64; 2]; 2]; 3] {
     let sum = [w[0][0] + w[1][0] + w[2][0], w[0][1] + w[1][1] + w[2][1]];
     let s = w.map(|w| [24.0 * w[0] - 6.0 * sum[0], 24.0 * w[1] - 6.0 * sum[1]]);
-    [0, 1, 2].map(|a| {
-        [(a + 1) % 3, (a + 2) % 3].map(|j| {
-            let e = [POSITION[j][0] - POSITION[a][0], POSITION[j][1] - POSITION[a][1]];
-            let (at_a, at_j) = (wedge(s[a], e), wedge(s[j], e));
-            match (axis[a], axis[j]) {
-                (true, false) => [at_a * (5.0 / 12.0) + 0.25 * at_j, 0.55 * at_a - 0.05 * at_j],
-                (false, true) => [0.25 * at_a + at_j / 12.0, 0.45 * at_a + 0.05 * at_j],
-                _ => [at_a / 3.0 + at_j / 6.0, 0.5 * at_a],
-            }
-        })
-    })
+    let mut targets = [[[0.0; 2]; 2]; 3];
+    for (a, j, side) in [(0, 1, 0), (0, 2, 1), (1, 2, 0), (1, 0, 1), (2, 0, 0), (2, 1, 1)] {
+        let e = [POSITION[j][0] - POSITION[a][0], POSITION[j][1] - POSITION[a][1]];
+        let (at_a, at_j) = (wedge(s[a], e), wedge(s[j], e));
+        targets[a][side] = match (axis[a], axis[j]) {
+            (true, false) => [at_a * (5.0 / 12.0) + 0.25 * at_j, 0.55 * at_a - 0.05 * at_j],
+            (false, true) => [0.25 * at_a + at_j / 12.0, 0.45 * at_a + 0.05 * at_j],
+            _ => [at_a / 3.0 + at_j / 6.0, 0.5 * at_a],
+        };
+    }
+    targets
 }
 
 /// (flux, flux, flux, tilt, tilt, tilt) on the local edges, fluxes turned into local direction.
@@ -88,15 +91,16 @@ pub fn local_numbers(mesh: &Mesh, t: usize, flux: &Flux) -> [f64; 6] {
 
 /// Values ω^m of τ's 1-form at the three vertices, from its local numbers: ω = Σ λ_m ω^m.
 pub fn local_form(x: &[f64; 6]) -> [Pair; 3] {
-    [0, 1, 2].map(|m| {
-        let (next, last) = ((m + 1) % 3, (m + 2) % 3);
+    let mut form = [[0.0; 2]; 3];
+    for (m, next, last) in [(0, 1, 2), (1, 2, 0), (2, 0, 1)] {
         // Edge m leaves the vertex towards `next`; edge `last` arrives from `last`.
         let (out, back) = (x[m] + x[3 + m], x[3 + last] - x[last]);
-        [
+        form[m] = [
             out * GRADIENT[next][0] + back * GRADIENT[last][0],
             out * GRADIENT[next][1] + back * GRADIENT[last][1],
-        ]
-    })
+        ];
+    }
+    form
 }
 
 /// ∫ dψ∧ω = ∫ ∇ψ·τ over the reference triangle.

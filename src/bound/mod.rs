@@ -10,8 +10,8 @@ mod tree;
 pub use tree::{defect, scale};
 
 use crate::fem::element::Frame;
-use crate::fem::moments::{linear_energy, linear_flux, rule_of, saturating_flux};
-use crate::fem::{Coefficients, Element, Reluctivity, Rules};
+use crate::fem::moments::{energy_of_flux, linear_flux, rule_of, saturating_flux};
+use crate::fem::{Coefficients, Elements, Reluctivity, Rules};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
 use crate::solve::Solution;
@@ -20,9 +20,13 @@ use element::Patchwork;
 use rayon::prelude::*;
 use std::f64::consts::TAU;
 
-/// Quadrature and rounding, as a share of the coenergy, added to both ends: the interval moves by less under a
-/// higher rule (tested), and sums of 1e6 terms in double precision round to about 1e-12.
+/// Rounding, as a share of the coenergy, added to both ends: sums of 1e6 terms in double precision round to about 1e-12.
 pub const MARGIN: f64 = 1e-9;
+/// Quadrature, as a share of the interval, added to both ends: coarse triangles are where it errs, and there the interval is
+/// wide too. Constant laws: ν/r is smooth, and a higher rule moves the ends by at most 1.5e-6 of the interval (tested).
+const MARGIN_OF_WIDTH: f64 = 1e-5;
+/// The same with a saturating law, whose bends lie inside triangles: a higher rule moves the ends by up to 7e-3 (tested).
+const MARGIN_OF_WIDTH_SATURATING: f64 = 2e-2;
 
 /// τ in the Raviart–Thomas space of degree 1, its divergence constant on each triangle: two numbers an edge, none inside.
 #[derive(Debug, Clone, PartialEq, Default)]
@@ -39,6 +43,8 @@ pub struct Bound {
     /// Ends with the margin [J].
     pub low: Joule,
     pub high: Joule,
+    /// What was taken off and added for quadrature and rounding [J].
+    pub margin: Joule,
     /// Share of each triangle in high − low [J], ≥ 0 up to rounding.
     pub shares: Vec<Joule>,
     pub flux: Flux,
@@ -58,7 +64,7 @@ pub struct Field<'a> {
     pub coefficients: &'a Coefficients,
     pub rules: &'a Rules,
     /// Of the constant coefficient, or of the tangent at `solution`.
-    pub elements: &'a [Element],
+    pub elements: &'a Elements,
     pub solution: &'a Solution,
 }
 
@@ -82,8 +88,8 @@ fn flux_and_energy(field: &Field, t: usize) -> ([[f64; 2]; 3], f64) {
     let gradients = field.solution.gradients(field.mesh, t);
     match &field.coefficients.reluctivity[field.mesh.regions[t].0 as usize] {
         Reluctivity::Constant(_) => {
-            let k = &field.elements[t].k;
-            (linear_flux(k, &gradients), linear_energy(k, &gradients))
+            let flux = linear_flux(&field.elements.k[t], &gradients);
+            (flux, energy_of_flux(&flux, &gradients))
         }
         Reluctivity::Saturating(law) => {
             let frame = Frame::new(field.mesh, t);
@@ -112,7 +118,7 @@ fn evaluate(field: &Field, primal: &[f64], flux: Flux) -> Bound {
             };
             let product = element::wedge_integral(&gradients, &form);
             let dual = match &field.coefficients.reluctivity[mesh.regions[t].0 as usize] {
-                Reluctivity::Constant(_) => element::half_square(&field.elements[t].gram, &numbers),
+                Reluctivity::Constant(_) => element::half_square(&field.elements.gram[t], &numbers),
                 Reluctivity::Saturating(law) => element::saturating_coenergy(field, t, law, &form),
             };
             let share = dual - product + primal[t];
@@ -127,6 +133,15 @@ fn evaluate(field: &Field, primal: &[f64], flux: Flux) -> Bound {
     let sum = |k: usize| TAU * parts.iter().map(|p| p[k]).sum::<f64>();
     let shares = parts.iter().map(|p| TAU * p[2]).collect();
     let (low, high) = (sum(0), sum(1));
-    let margin = MARGIN * high.abs();
-    Bound { low: low - margin, high: high + margin, shares, flux }
+    let of_width = margin_of_width(field.coefficients);
+    let margin = MARGIN * high.abs() + of_width * (high - low).abs();
+    Bound { low: low - margin, high: high + margin, margin, shares, flux }
+}
+
+/// What quadrature may move, as a share of the interval.
+pub fn margin_of_width(coefficients: &Coefficients) -> f64 {
+    match coefficients.is_linear() {
+        true => MARGIN_OF_WIDTH,
+        false => MARGIN_OF_WIDTH_SATURATING,
+    }
 }

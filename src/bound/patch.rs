@@ -2,43 +2,40 @@
 
 use super::element::Patchwork;
 use super::{Field, Flux};
-use crate::fem::Element;
-use crate::fem::elements::packed;
+use crate::fem::batches::in_order;
+use crate::fem::elements::{PLACE, Packed};
 use crate::mesh::Mesh;
 use crate::mesh::fans::{Blade, Fans};
-use rayon::prelude::*;
-
-/// Vertices a thread takes at a time.
-const N_VERTICES_CHUNK: usize = 1024;
 
 /// Adds up the patch fluxes of all vertices.
+///
+/// An edge gets one part from either end, so the order of the vertices does not matter; it follows the triangles, whose
+/// matrices are then read once and not three times from memory.
 pub fn equilibrate(field: &Field, fans: &Fans, patchwork: &[Patchwork]) -> Flux {
+    /// Vertices of one piece of work.
+    const N_PIECE: usize = 512;
     let mesh = field.mesh;
-    let n = mesh.points.len();
-    let chunks: Vec<Vec<[f64; 2]>> = (0..n.div_ceil(N_VERTICES_CHUNK))
-        .into_par_iter()
-        .map_init(Workspace::default, |work, chunk| {
-            let mut spokes = Vec::with_capacity(8 * N_VERTICES_CHUNK);
-            for v in chunk * N_VERTICES_CHUNK..((chunk + 1) * N_VERTICES_CHUNK).min(n) {
-                work.solve(fans.around(v), mesh.on_axis[v], field.elements, patchwork, &mut spokes);
-            }
-            spokes
-        })
-        .collect();
-
     let mut flux = Flux { through: vec![0.0; mesh.edges.len()], tilt: vec![0.0; mesh.edges.len()] };
-    for (chunk, spokes) in chunks.iter().enumerate() {
+    let pieces: Vec<&[u32]> = fans.tour.chunks(N_PIECE).collect();
+    let solve = |piece: usize| {
+        let mut work = Workspace::default();
+        let mut spokes = Vec::with_capacity(8 * N_PIECE);
+        for &v in pieces[piece] {
+            let (fan, is_open) = (fans.around(v as usize), mesh.on_axis[v as usize]);
+            work.solve(fan, is_open, &field.elements.gram, patchwork, &mut spokes);
+        }
+        (piece, spokes)
+    };
+    in_order(pieces.len(), solve, |(piece, spokes)| {
         let mut spokes = spokes.iter();
-        for v in chunk * N_VERTICES_CHUNK..((chunk + 1) * N_VERTICES_CHUNK).min(n) {
-            for (e, &[through, tilt]) in
-                spoke_edges(mesh, fans.around(v), mesh.on_axis[v]).zip(spokes.by_ref())
-            {
-                let leaves = mesh.edges[e][0] as usize == v;
-                flux.through[e] += if leaves { through } else { -through };
+        for &v in pieces[piece] {
+            let (fan, is_open) = (fans.around(v as usize), mesh.on_axis[v as usize]);
+            for (e, &[through, tilt]) in spoke_edges(mesh, fan, is_open).zip(spokes.by_ref()) {
+                flux.through[e] += if mesh.edges[e][0] == v { through } else { -through };
                 flux.tilt[e] += tilt;
             }
         }
-    }
+    });
     flux
 }
 
@@ -63,6 +60,8 @@ struct Workspace {
     /// Tridiagonal matrix of the tilts: diagonal, and coupling of spoke q with q + 1.
     diagonal: Vec<f64>,
     coupling: Vec<f64>,
+    /// 1/diagonal after elimination.
+    inverse: Vec<f64>,
     /// Right-hand sides: load, coupling to the shift, coupling to the first tilt.
     columns: Vec<[f64; 3]>,
 }
@@ -73,13 +72,13 @@ impl Workspace {
         &mut self,
         fan: &[Blade],
         is_open: bool,
-        elements: &[Element],
+        gram: &[Packed],
         patchwork: &[Patchwork],
         spokes: &mut Vec<[f64; 2]>,
     ) {
         let n_triangles = fan.len();
         let n_spokes = n_triangles + usize::from(is_open);
-        let (shift_square, shift_load) = self.collect(fan, n_spokes, elements, patchwork);
+        let (shift_square, shift_load) = self.collect(fan, n_spokes, gram, patchwork);
         let (shift, first_tilt) = self.eliminate(n_spokes, is_open, shift_square, shift_load);
         for q in 0..n_spokes {
             let [load, with_shift, with_first] = self.columns[q];
@@ -97,12 +96,12 @@ impl Workspace {
         &mut self,
         fan: &[Blade],
         n_spokes: usize,
-        elements: &[Element],
+        gram: &[Packed],
         patchwork: &[Patchwork],
     ) -> (f64, f64) {
         self.sweep.clear();
         self.sweep.push(0.0);
-        for v in [&mut self.diagonal, &mut self.coupling] {
+        for v in [&mut self.diagonal, &mut self.coupling, &mut self.inverse] {
             v.clear();
             v.resize(n_spokes, 0.0);
         }
@@ -112,29 +111,24 @@ impl Workspace {
         for (q, blade) in fan.iter().enumerate() {
             let a = blade.corner as usize;
             let work = &patchwork[blade.triangle as usize];
-            let matrix = &elements[blade.triangle as usize].gram;
-            let next = (q + 1) % n_spokes;
+            let m = corner_gram(&gram[blade.triangle as usize], a);
+            let next = if q + 1 == n_spokes { 0 } else { q + 1 };
             let (flux, flux_next) = (self.sweep[q], self.sweep[q] - work.defect[a]);
             self.sweep.push(flux_next);
 
-            // Basis of the patch on this triangle, all pointing away from the vertex: w to a+1, w to a+2, both tilts.
-            let (out, back) = (a, (a + 2) % 3);
-            let index = [out, back, 3 + out, 3 + back];
-            let sign = [1.0, -1.0, 1.0, 1.0];
-            let gram = |i: usize, j: usize| sign[i] * sign[j] * matrix[packed(index[i], index[j])];
             let [[f1, c1], [f2, c2]] = work.target[a];
             let x = [flux - f1, flux_next - f2, -c1, -c2];
-            let g = [0, 1, 2, 3].map(|i| (0..4).map(|j| gram(i, j) * x[j]).sum::<f64>());
+            let g = m.map(|row| row[0] * x[0] + row[1] * x[1] + row[2] * x[2] + row[3] * x[3]);
 
-            shift_square += gram(0, 0) + 2.0 * gram(0, 1) + gram(1, 1);
+            shift_square += m[0][0] + 2.0 * m[0][1] + m[1][1];
             shift_load -= g[0] + g[1];
-            self.diagonal[q] += gram(2, 2);
-            self.diagonal[next] += gram(3, 3);
-            self.coupling[q] = gram(2, 3);
+            self.diagonal[q] += m[2][2];
+            self.diagonal[next] += m[3][3];
+            self.coupling[q] = m[2][3];
             self.columns[q][0] -= g[2];
             self.columns[next][0] -= g[3];
-            self.columns[q][1] += gram(0, 2) + gram(1, 2);
-            self.columns[next][1] += gram(0, 3) + gram(1, 3);
+            self.columns[q][1] += m[0][2] + m[1][2];
+            self.columns[next][1] += m[0][3] + m[1][3];
         }
         (shift_square, shift_load)
     }
@@ -159,24 +153,25 @@ impl Workspace {
         let mut load = [shift_load, first[0]];
         for q in 1..n {
             if 1 < q {
-                let ratio = self.coupling[q - 1] / self.diagonal[q - 1];
+                let ratio = self.coupling[q - 1] * self.inverse[q - 1];
                 self.diagonal[q] -= ratio * self.coupling[q - 1];
                 for k in 0..3 {
                     self.columns[q][k] -= ratio * self.columns[q - 1][k];
                 }
             }
             let [b, s, w] = self.columns[q];
-            let d = self.diagonal[q];
-            square[0] -= s * s / d;
-            square[1] -= s * w / d;
-            square[2] -= w * w / d;
-            load[0] -= s * b / d;
-            load[1] -= w * b / d;
+            let inverse = 1.0 / self.diagonal[q];
+            self.inverse[q] = inverse;
+            square[0] -= s * s * inverse;
+            square[1] -= s * w * inverse;
+            square[2] -= w * w * inverse;
+            load[0] -= s * b * inverse;
+            load[1] -= w * b * inverse;
         }
         for q in (1..n).rev() {
             for k in 0..3 {
                 let later = if q + 1 < n { self.coupling[q] * self.columns[q + 1][k] } else { 0.0 };
-                self.columns[q][k] = (self.columns[q][k] - later) / self.diagonal[q];
+                self.columns[q][k] = (self.columns[q][k] - later) * self.inverse[q];
             }
         }
         let det = square[0] * square[2] - square[1] * square[1];
@@ -184,4 +179,21 @@ impl Workspace {
         let first_tilt = (load[1] * square[0] - load[0] * square[1]) / det;
         (shift, first_tilt)
     }
+}
+
+/// Gram matrix of a corner's basis, all of it pointing away from the vertex: w to a + 1, w to a + 2, both tilts.
+#[inline]
+fn corner_gram(gram: &Packed, a: usize) -> [[f64; 4]; 4] {
+    let (out, back) = (a, (a + 2) % 3);
+    let at = |i: usize, j: usize| gram[PLACE[i][j]];
+    // The form on the edge from a + 2 to a points towards the vertex.
+    let with_back = [-at(out, back), -at(back, 3 + out), -at(back, 3 + back)];
+    let (tilt_out, tilt_back) = (at(out, 3 + out), at(out, 3 + back));
+    let tilts = at(3 + out, 3 + back);
+    [
+        [at(out, out), with_back[0], tilt_out, tilt_back],
+        [with_back[0], at(back, back), with_back[1], with_back[2]],
+        [tilt_out, with_back[1], at(3 + out, 3 + out), tilts],
+        [tilt_back, with_back[2], tilts, at(3 + back, 3 + back)],
+    ]
 }

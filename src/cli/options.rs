@@ -1,6 +1,7 @@
 //! The arguments: commands and their common options.
 
 use clap::{Args, Parser, Subcommand};
+use gapwright::input;
 use gapwright::units::{self, Dimension};
 use std::path::PathBuf;
 
@@ -109,19 +110,9 @@ fn current(text: &str) -> Result<f64, String> {
     }
 }
 
-/// Narrowest and widest interval that may be asked for; the sheet's key has the same bounds.
-const INTERVALS: [f64; 2] = [1e-7, 0.5];
-
 /// "0.01%" or "1e-4" → 1e-4.
 fn interval(text: &str) -> Result<f64, String> {
-    let value = units::read(text, Dimension::Ratio, (0, 1.0))
-        .map_err(|e| format!("{e}; write 0.1% or 0.001"))?;
-    let [low, high] = INTERVALS;
-    if (low..=high).contains(&value) {
-        Ok(value)
-    } else {
-        Err(format!("{value} is outside {low} … {high}; write 0.1% or 0.001"))
-    }
+    input::interval(text).map_err(|e| format!("{e}; write 0.1% or 0.001"))
 }
 
 /// "core=table.csv" → its two halves.

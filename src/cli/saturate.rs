@@ -41,14 +41,9 @@ pub fn saturate(options: &SaturateOptions) -> Result<End, Stop> {
         clock.lap("writing");
     }
     let times = clock.asked(common);
-    if common.json {
-        screen::print(&saturate_json(&found, times.as_ref()))?;
-    } else if !common.quiet {
-        let look =
-            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
-        screen::print(&saturate_screen(&found, &look))?;
-        screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
-    }
+    let json = || saturate_json(&found, times.as_ref());
+    let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+    screen::answer(common, &out, json, || saturate_screen(&found, &look))?;
     Ok(end_of(&found))
 }
 

@@ -1,9 +1,11 @@
 //! Text → stdout and stderr, progress on a terminal.
 
-use super::{End, Stop};
+use super::options::Options;
+use super::{End, Stop, files};
 use gapwright::report::terminal::progress_line;
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
 use std::io::{self, ErrorKind, IsTerminal, Write};
+use std::path::Path;
 
 /// Prints to stdout. A reader that has closed the pipe has seen enough: that is no error.
 pub fn print(text: &str) -> Result<(), Stop> {
@@ -11,10 +13,26 @@ pub fn print(text: &str) -> Result<(), Stop> {
     match stdout.write_all(text.as_bytes()).and_then(|()| stdout.flush()) {
         Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(Stop::new(
             End::NotWritten,
-            format!("the screen could not be written: {}", super::files::plain(&error)),
+            format!("the screen could not be written: {}", files::plain(&error)),
         )),
         _ => Ok(()),
     }
+}
+
+/// Prints what a run has found: as JSON, as text with the place of the files, or not at all, as the options ask.
+pub fn answer(
+    options: &Options,
+    out: &Path,
+    json: impl FnOnce() -> String,
+    text: impl FnOnce() -> String,
+) -> Result<(), Stop> {
+    if options.json {
+        print(&json())?;
+    } else if !options.quiet {
+        print(&text())?;
+        print(&format!("\nFiles are in {}\n", files::shown(out)))?;
+    }
+    Ok(())
 }
 
 /// Prints to stderr; there is nobody left to tell when that fails.

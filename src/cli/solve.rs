@@ -13,7 +13,7 @@ use gapwright::report::field_map::{FieldMap, field_svg};
 use gapwright::report::json::result_json;
 use gapwright::report::section::section_svg;
 use gapwright::report::terminal::{Look, solve_screen};
-use gapwright::report::vtk::{FieldCells, field_vtu};
+use gapwright::report::vtk::field_vtu;
 use gapwright::results::sample::Sampler;
 use gapwright::results::{self, Results};
 use gapwright::solve::SolveError;
@@ -46,14 +46,9 @@ pub fn solve(options: &SolveOptions) -> Result<End, Stop> {
         clock.lap("writing");
     }
     let times = clock.asked(options);
-    if options.json {
-        screen::print(&result_json(&results, times.as_ref()))?;
-    } else if !options.quiet {
-        let look =
-            Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
-        screen::print(&solve_screen(&results, &look))?;
-        screen::print(&format!("\nFiles are in {}\n", files::shown(&out)))?;
-    }
+    let json = || result_json(&results, times.as_ref());
+    let look = Look { colour: screen::has_colour(), seconds: Some(seconds), times: times.as_ref() };
+    screen::answer(options, &out, json, || solve_screen(&results, &look))?;
     Ok(end_of(&results))
 }
 
@@ -100,17 +95,17 @@ fn drawings(
     results: &Results,
     mirror: bool,
 ) -> Result<Vec<Finished>, Stop> {
-    let (cells, b_corner) = sampled(outline, outcome);
+    let cells = Sampler::new(outline, outcome).cell_values();
     let map = FieldMap {
         title: &results.title,
         mesh: &outcome.mesh,
         outline,
         solution: &outcome.solution,
-        b_corner: &b_corner,
+        b_corner: &cells.b_corner,
         hot_spots: &results.hot_spots,
         mirror,
     };
-    let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells)
+    let vtu = field_vtu(&outcome.mesh, &outcome.solution, &cells, &outcome.bound.shares)
         .map_err(|e| Stop::new(End::NotWritten, format!("field.vtu: {e}")))?;
     let quantity = if results.is_linear && results.inductance.is_some() {
         "inductance [H]"
@@ -127,18 +122,6 @@ fn drawings(
         finished.push(("probes.csv", csv::probes(&results.probes).into_bytes()));
     }
     Ok(finished)
-}
-
-/// The field of every triangle as plain numbers: at the centroid for VTK, |B| at the corners for the picture.
-fn sampled(outline: &Outline, outcome: &Outcome) -> (FieldCells, Vec<[f64; 3]>) {
-    let values = Sampler::new(outline, outcome).cell_values();
-    let cells = FieldCells {
-        b: values.b,
-        h: values.h,
-        permeability: values.permeability,
-        share: outcome.bound.shares.clone(),
-    };
-    (cells, values.b_corner)
 }
 
 /// A stage of the rounds as the table of times names it.

@@ -1,133 +1,195 @@
 //! Stiffness matrix and load vector of the quadratic space.
 
+use super::batches::in_order;
 use super::coefficients::Coefficients;
 use super::element::{Frame, GRADIENT, Pair};
-use super::elements::{Element, LOCAL_EDGES, packed};
+use super::elements::{Elements, LOCAL_EDGES, PLACE};
 use super::space::{NONE, Space};
 use crate::mesh::Mesh;
 use crate::mesh::fans::{Fans, NO_TRIANGLE};
-use crate::sparse::Matrix;
-use rayon::prelude::*;
+use crate::sparse::{Matrix, Storage};
 use std::ops::Range;
 
-/// Rows a thread takes at a time.
-const N_ROWS_CHUNK: usize = 8192;
-
-/// Assembles ∫ ∇φ_i·K∇φ_j over all unknowns; each row is summed in the order of its triangles, so threads do not matter.
-pub fn stiffness(mesh: &Mesh, space: &Space, fans: &Fans, elements: &[Element]) -> Matrix {
+/// Assembles ∫ ∇φ_i·K∇φ_j over all unknowns, row by row.
+///
+/// What a row looks like is known from the mesh: unknown i of a vertex meets the spokes and the rim of its fan, one of an edge
+/// the two triangles beside it. Every entry off the diagonal is a sum of at most two terms, so the matrix is symmetric to
+/// the last bit and threads do not matter.
+///
+/// - `storage`: the arrays to use; their contents are lost
+pub fn stiffness(
+    mesh: &Mesh,
+    space: &Space,
+    fans: &Fans,
+    elements: &Elements,
+    storage: Storage,
+) -> Matrix {
+    /// Vertices or edges of one piece of work.
+    const N_PIECE: usize = 1024;
     let dofs = (0..mesh.triangles.len()).map(|t| space.dofs(mesh, t)).collect();
-    let rows = Rows { mesh, space, fans, elements, dofs, owner: owners(space) };
-    let n = space.n_dofs;
-    let chunk = |c: usize| rows.gather(c * N_ROWS_CHUNK..((c + 1) * N_ROWS_CHUNK).min(n));
-    let chunks: Vec<Chunk> = (0..n.div_ceil(N_ROWS_CHUNK)).into_par_iter().map(chunk).collect();
-    join(n, chunks)
-}
-
-/// The vertex or the edge of every unknown.
-fn owners(space: &Space) -> Vec<u32> {
-    let free = |dofs: &[u32]| {
-        (0..dofs.len() as u32).filter(|&k| dofs[k as usize] != NONE).collect::<Vec<_>>()
-    };
-    let mut owner = free(&space.vertex_dof);
-    owner.extend(free(&space.edge_dof));
-    owner
+    let rows = Rows { mesh, space, fans, elements, dofs };
+    let Storage { mut start, mut columns, mut values } = storage;
+    start.clear();
+    start.push(0);
+    columns.clear();
+    values.clear();
+    // Three a corner and one a vertex, nine an edge; constrained ones are fewer.
+    let n_most = 9 * mesh.triangles.len() + mesh.points.len() + 9 * mesh.edges.len();
+    columns.reserve(n_most);
+    values.reserve(n_most);
+    let n_owners = mesh.points.len() + mesh.edges.len();
+    in_order(
+        n_owners.div_ceil(N_PIECE),
+        |piece| rows.gather(piece * N_PIECE..n_owners.min((piece + 1) * N_PIECE)),
+        |piece| {
+            let before = columns.len();
+            start.extend(piece.ends.iter().map(|end| before + end));
+            columns.extend_from_slice(&piece.columns);
+            values.extend_from_slice(&piece.values);
+        },
+    );
+    Matrix::new((space.n_dofs, space.n_dofs), start, columns, values)
 }
 
 /// Consecutive finished rows.
-#[derive(Default)]
-struct Chunk {
+struct Piece {
     ends: Vec<usize>,
     columns: Vec<u32>,
     values: Vec<f64>,
+}
+
+impl Piece {
+    fn with_room(n_rows: usize) -> Piece {
+        // Twelve entries a row on average; a fan of many triangles has more.
+        let n = 14 * n_rows;
+        Piece {
+            ends: Vec::with_capacity(n_rows),
+            columns: Vec::with_capacity(n),
+            values: Vec::with_capacity(n),
+        }
+    }
+
+    /// Appends entries to the row at hand, ordered by column; entries of constrained unknowns fall away.
+    fn push(&mut self, keys: &mut [u64], values: &[f64]) {
+        keys.sort_unstable();
+        // Those of constrained unknowns are last: no number is larger than NONE.
+        let n_constrained = keys.iter().rev().take_while(|&&k| key(NONE, 0) <= k).count();
+        let entries = &keys[..keys.len() - n_constrained];
+        self.columns.extend(entries.iter().map(|k| (k >> 32) as u32));
+        self.values.extend(entries.iter().map(|&k| values[k as u32 as usize]));
+    }
+
+    fn end_row(&mut self) {
+        self.ends.push(self.columns.len());
+    }
+}
+
+/// What is sorted instead of an entry: its column, and its place below.
+#[inline]
+fn key(column: u32, place: usize) -> u64 {
+    u64::from(column) << 32 | place as u64
 }
 
 struct Rows<'a> {
     mesh: &'a Mesh,
     space: &'a Space,
     fans: &'a Fans,
-    elements: &'a [Element],
+    elements: &'a Elements,
     /// Unknowns of every triangle, in one place: a row asks for those of all its triangles.
     dofs: Vec<[u32; 6]>,
-    owner: Vec<u32>,
 }
 
 impl Rows<'_> {
-    fn gather(&self, rows: Range<usize>) -> Chunk {
-        let mut chunk = Chunk::default();
-        // Position of a column in the row at hand.
-        let mut slot = vec![NONE; self.space.n_dofs];
-        let mut parts: Vec<(usize, usize)> = Vec::with_capacity(16);
-        for i in rows {
-            self.triangles_of(i, &mut parts);
-            let start = chunk.columns.len();
-            for &(t, _) in &parts {
-                for &j in self.dofs[t].iter().filter(|&&j| j != NONE) {
-                    if slot[j as usize] == NONE {
-                        slot[j as usize] = 0;
-                        chunk.columns.push(j);
-                    }
+    /// The rows of owners `range`: vertices, then edges, those without an unknown left out.
+    fn gather(&self, range: Range<usize>) -> Piece {
+        let n_vertices = self.mesh.points.len();
+        let mut piece = Piece::with_room(range.len());
+        let (mut keys, mut values) = (Vec::new(), Vec::new());
+        for owner in range {
+            if owner < n_vertices {
+                if self.space.vertex_dof[owner] != NONE {
+                    self.vertex_row(owner, &mut keys, &mut values, &mut piece);
                 }
+            } else if self.space.edge_dof[owner - n_vertices] != NONE {
+                self.edge_row(owner - n_vertices, &mut piece);
             }
-            chunk.columns[start..].sort_unstable();
-            for (k, &j) in chunk.columns[start..].iter().enumerate() {
-                slot[j as usize] = k as u32;
-            }
-            chunk.values.resize(chunk.columns.len(), 0.0);
-            let values = &mut chunk.values[start..];
-            for &(t, k) in &parts {
-                for (l, &j) in self.dofs[t].iter().enumerate() {
-                    if j != NONE {
-                        values[slot[j as usize] as usize] +=
-                            self.elements[t].stiffness[packed(k, l)];
-                    }
-                }
-            }
-            for &j in &chunk.columns[start..] {
-                slot[j as usize] = NONE;
-            }
-            chunk.ends.push(chunk.columns.len());
         }
-        chunk
+        piece
     }
 
-    /// The triangles that carry unknown i, with its local index there.
-    fn triangles_of(&self, i: usize, parts: &mut Vec<(usize, usize)>) {
-        parts.clear();
-        let owner = self.owner[i] as usize;
-        if i < self.space.n_vertex_dofs {
-            parts.extend(
-                self.fans.around(owner).iter().map(|b| (b.triangle as usize, b.corner as usize)),
-            );
-            return;
+    /// The spokes' far ends and the vertex itself; the spokes and the rim.
+    fn vertex_row(
+        &self,
+        vertex: usize,
+        keys: &mut Vec<u64>,
+        values: &mut Vec<f64>,
+        piece: &mut Piece,
+    ) {
+        let fan = self.fans.around(vertex);
+        let n = fan.len();
+        // Places: far ends 0.., the vertex n, spokes n + 1.., rim 2n + 1...
+        keys.clear();
+        keys.resize(3 * n + 1, 0);
+        values.clear();
+        values.resize(3 * n + 1, 0.0);
+        for (q, blade) in fan.iter().enumerate() {
+            let (t, a) = (blade.triangle as usize, blade.corner as usize);
+            let (b, c) = ((a + 1) % 3, (a + 2) % 3);
+            let next = if q + 1 == n { 0 } else { q + 1 };
+            let (dofs, stiffness) = (&self.dofs[t], &self.elements.stiffness[t]);
+            let entry = |k: usize| stiffness[PLACE[a][k]];
+            keys[n] = key(dofs[a], n);
+            keys[q] = key(dofs[b], q);
+            keys[n + 1 + q] = key(dofs[3 + a], n + 1 + q);
+            keys[2 * n + 1 + q] = key(dofs[3 + b], 2 * n + 1 + q);
+            values[n] += entry(a);
+            values[q] += entry(b);
+            values[next] += entry(c);
+            values[n + 1 + q] += entry(3 + a);
+            values[n + 1 + next] += entry(3 + c);
+            values[2 * n + 1 + q] = entry(3 + b);
         }
-        for t in self.fans.edge_triangles[owner] {
-            if t != NO_TRIANGLE {
-                let edges = self.mesh.triangle_edges[t as usize];
-                let k = usize::from(edges[1] as usize == owner)
-                    + 2 * usize::from(edges[2] as usize == owner);
-                parts.push((t as usize, 3 + k));
-            }
-        }
+        // Unknowns of vertices have smaller numbers than those of edges.
+        let (vertices, edges) = keys.split_at_mut(n + 1);
+        piece.push(vertices, values);
+        piece.push(edges, values);
+        piece.end_row();
     }
-}
 
-fn join(n: usize, mut chunks: Vec<Chunk>) -> Matrix {
-    let mut start = Vec::with_capacity(n + 1);
-    start.push(0);
-    if chunks.len() == 1 {
-        let chunk = chunks.remove(0);
-        start.extend(chunk.ends);
-        return Matrix::new((n, n), start, chunk.columns, chunk.values);
+    /// Both ends and both far corners; the edge itself and the four others of its triangles.
+    fn edge_row(&self, edge: usize, piece: &mut Piece) {
+        let (mut vertices, mut edges) = ([key(NONE, 0); 4], [key(NONE, 0); 5]);
+        // Places: start 0, end 1, far corners 2 and 3, the edge 4, two of either triangle 5 and 7.
+        let mut values = [0.0; 9];
+        for (side, &t) in self.fans.edge_triangles[edge].iter().enumerate() {
+            if t == NO_TRIANGLE {
+                continue;
+            }
+            let t = t as usize;
+            let own = self.mesh.triangle_edges[t];
+            let k = usize::from(own[1] as usize == edge) + 2 * usize::from(own[2] as usize == edge);
+            let (next, far) = ((k + 1) % 3, (k + 2) % 3);
+            let (dofs, stiffness) = (&self.dofs[t], &self.elements.stiffness[t]);
+            let entry = |l: usize| stiffness[PLACE[3 + k][l]];
+            // The two triangles run along the edge in opposite directions.
+            let (start, end) = if side == 0 { (k, next) } else { (next, k) };
+            vertices[0] = key(dofs[start], 0);
+            vertices[1] = key(dofs[end], 1);
+            vertices[2 + side] = key(dofs[far], 2 + side);
+            edges[0] = key(dofs[3 + k], 4);
+            edges[1 + 2 * side] = key(dofs[3 + next], 5 + 2 * side);
+            edges[2 + 2 * side] = key(dofs[3 + far], 6 + 2 * side);
+            values[0] += entry(start);
+            values[1] += entry(end);
+            values[2 + side] = entry(far);
+            values[4] += entry(3 + k);
+            values[5 + 2 * side] = entry(3 + next);
+            values[6 + 2 * side] = entry(3 + far);
+        }
+        piece.push(&mut vertices, &values);
+        piece.push(&mut edges, &values);
+        piece.end_row();
     }
-    let n_entries = chunks.iter().map(|c| c.columns.len()).sum();
-    let (mut columns, mut values) = (Vec::with_capacity(n_entries), Vec::with_capacity(n_entries));
-    for chunk in chunks {
-        let offset = columns.len();
-        start.extend(chunk.ends.iter().map(|end| offset + end));
-        columns.extend(chunk.columns);
-        values.extend(chunk.values);
-    }
-    Matrix::new((n, n), start, columns, values)
 }
 
 /// b_i = ∫ J φ_i dr dz [A]; J is constant on a triangle: J·|det|/6 for vertices and for bubbles alike.

@@ -3,6 +3,7 @@
 //! Knows no file format, no solver and no report. The equations are numbered in DEVELOPERS.md.
 
 pub mod assemble;
+pub mod batches;
 pub mod coefficients;
 pub mod element;
 pub mod elements;
@@ -12,6 +13,6 @@ pub mod quadrature;
 pub mod space;
 
 pub use coefficients::{Coefficients, Reluctivity};
-pub use elements::Element;
+pub use elements::{Element, Elements};
 pub use quadrature::Rules;
 pub use space::Space;

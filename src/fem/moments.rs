@@ -2,7 +2,7 @@
 //!
 //! k_mn = ∫ λ_m λ_n K̂ and c_mn = ∫ λ_m λ_n C with C = K̂/det K̂, both over the reference triangle (eq. 7).
 
-use super::element::{Frame, Pair, Tensor, apply, blend, contract};
+use super::element::{Frame, Pair, Tensor, apply, blend, contract, dot};
 use super::quadrature::{Rule, Rules};
 use crate::model::{Law, LawPoint};
 
@@ -59,24 +59,37 @@ pub fn constant_moments(frame: &Frame, rule: &Rule, reluctivity: f64) -> Moments
         }
     } else {
         // Inside the metric is constant: two scalars a pair are enough.
-        let mut scalar = [[0.0; 2]; 6];
         let r = frame.corners.map(|c| c.r);
-        for (lambda, &weight) in rule.points.iter().zip(&rule.weights) {
-            let radius = lambda[0] * r[0] + lambda[1] * r[1] + lambda[2] * r[2];
-            let (primal, dual) = (weight * reluctivity / radius, weight * radius / reluctivity);
-            for (index, (m, n)) in PAIRS.into_iter().enumerate() {
-                let product = lambda[m] * lambda[n];
-                scalar[index][0] += primal * product;
-                scalar[index][1] += dual * product;
-            }
-        }
+        let primal = inverse_radius_moments(&r, rule).map(|moment| reluctivity * moment);
+        let dual = radius_moments(&r).map(|moment| moment / reluctivity);
         for index in 0..6 {
-            moments.k[index] = frame.metric.map(|s| scalar[index][0] * s);
-            moments.c[index] = frame.metric.map(|s| scalar[index][1] * s);
+            moments.k[index] = frame.metric.map(|s| primal[index] * s);
+            moments.c[index] = frame.metric.map(|s| dual[index] * s);
         }
     }
     moments.clear_axis_pairs(frame);
     moments
+}
+
+/// ∫ λ_m λ_n/r for every pair, r the corners' radii [1/m].
+fn inverse_radius_moments(r: &[f64; 3], rule: &Rule) -> [f64; 6] {
+    let mut moments = [0.0; 6];
+    for (lambda, products) in rule.points.iter().zip(&rule.products) {
+        let inverse = 1.0 / (lambda[0] * r[0] + lambda[1] * r[1] + lambda[2] * r[2]);
+        for index in 0..6 {
+            moments[index] += products[index] * inverse;
+        }
+    }
+    moments
+}
+
+/// ∫ λ_m λ_n r for every pair [m]: a cubic, so in closed form what every rule here gives to rounding.
+fn radius_moments(r: &[f64; 3]) -> [f64; 6] {
+    let sum = r[0] + r[1] + r[2];
+    PAIRS.map(|(m, n)| match m == n {
+        true => (sum + 2.0 * r[m]) / 60.0,
+        false => (sum + r[m] + r[n]) / 120.0,
+    })
 }
 
 /// |∇ψ|/r at a point of an inside triangle from the reference gradient u: √(u·S u/|det J|)/r [T].
@@ -175,6 +188,11 @@ pub fn linear_flux(k: &[Tensor; 6], gradients: &[Pair; 3]) -> [Pair; 3] {
 /// ½ ∫ dψ·K̂ dψ of a triangle with a constant law.
 #[inline]
 pub fn linear_energy(k: &[Tensor; 6], gradients: &[Pair; 3]) -> f64 {
-    let flux = linear_flux(k, gradients);
-    0.5 * (0..3).map(|m| gradients[m][0] * flux[m][0] + gradients[m][1] * flux[m][1]).sum::<f64>()
+    energy_of_flux(&linear_flux(k, gradients), gradients)
+}
+
+/// The same from its [`linear_flux`].
+#[inline]
+pub fn energy_of_flux(flux: &[Pair; 3], gradients: &[Pair; 3]) -> f64 {
+    0.5 * (dot(gradients[0], flux[0]) + dot(gradients[1], flux[1]) + dot(gradients[2], flux[2]))
 }

@@ -2,11 +2,23 @@
 //!
 //! Knows no coefficient. Every rule lists barycentric points and weights that sum to ½, the reference area.
 
+use super::moments::PAIRS;
+
 /// One rule: barycentric coordinates and weights (Σ weights = ½).
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct Rule {
     pub points: Vec<[f64; 3]>,
     pub weights: Vec<f64>,
+    /// Weight × λ_m λ_n of every point, in the order of [`PAIRS`].
+    pub products: Vec<[f64; 6]>,
+}
+
+impl Rule {
+    fn push(&mut self, point: [f64; 3], weight: f64) {
+        self.points.push(point);
+        self.weights.push(weight);
+        self.products.push(PAIRS.map(|(m, n)| weight * point[m] * point[n]));
+    }
 }
 
 /// The rules of one computation: `plain` away from the axis, `collapsed[k]` into local vertex k.
@@ -20,7 +32,7 @@ impl Rules {
     /// The working rules: 16 points of degree 8, and 7 × 8 Gauss points collapsed into a vertex.
     ///
     /// The coefficient ν/r is rational, so a rule that is too low *underestimates the high end*; with
-    /// these the interval moves by ≤ 1e-9 under a higher rule at intervals of 0.1 % and below (tested in `tests/it/guarantee.rs`).
+    /// these a higher rule moves the ends by less than the margin of `bound` (tested in `tests/it/guarantee.rs`).
     pub fn working() -> Rules {
         Rules { plain: degree_8(), collapsed: collapsed_rules(7, 8) }
     }
@@ -46,22 +58,18 @@ fn degree_8() -> Rule {
     const SIX: (f64, f64, f64) =
         (0.027_230_314_174_434_994, 0.263_112_829_634_638_1, 0.728_492_392_955_404_3);
 
-    let mut rule = Rule { points: Vec::with_capacity(16), weights: Vec::with_capacity(16) };
-    let mut push = |point: [f64; 3], weight: f64| {
-        rule.points.push(point);
-        rule.weights.push(0.5 * weight);
-    };
-    push([1.0 / 3.0; 3], CENTROID_WEIGHT);
+    let mut rule = Rule::default();
+    rule.push([1.0 / 3.0; 3], 0.5 * CENTROID_WEIGHT);
     for (weight, a) in THREE {
         let b = 1.0 - 2.0 * a;
         for point in [[b, a, a], [a, b, a], [a, a, b]] {
-            push(point, weight);
+            rule.push(point, 0.5 * weight);
         }
     }
     let (weight, a, b) = SIX;
     let c = 1.0 - a - b;
     for point in [[a, b, c], [b, c, a], [c, a, b], [a, c, b], [c, b, a], [b, a, c]] {
-        push(point, weight);
+        rule.push(point, 0.5 * weight);
     }
     rule
 }
@@ -72,15 +80,14 @@ fn degree_8() -> Rule {
 fn collapsed_rules(n_t: usize, n_s: usize) -> [Rule; 3] {
     let (along, across) = (gauss_legendre(n_t), gauss_legendre(n_s));
     [0, 1, 2].map(|k| {
-        let mut rule = Rule { points: Vec::new(), weights: Vec::new() };
+        let mut rule = Rule::default();
         for &(t, weight_t) in &along {
             for &(s, weight_s) in &across {
                 let mut point = [0.0; 3];
                 point[k] = 1.0 - t;
                 point[(k + 1) % 3] = t * (1.0 - s);
                 point[(k + 2) % 3] = t * s;
-                rule.points.push(point);
-                rule.weights.push(weight_t * weight_s * t);
+                rule.push(point, weight_t * weight_s * t);
             }
         }
         rule

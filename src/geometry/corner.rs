@@ -14,7 +14,9 @@ use std::f64::consts::{PI, TAU};
 /// 3 600 unknowns, at 1.1e-5 it does not close with 200 000.
 const ANGLE_MIN: f64 = 1e-4;
 
-/// Decades between the section's size and the smallest triangle that the refinement can make of rounded coordinates.
+/// Decades of the distance over which the energy must fall to the wanted interval: what is refused never closes. Measured on
+/// two squares beside a coil, at exponents just above: 1e-2, 1e-3 and 1e-4 close. Where the point is in the flux's way fewer
+/// decades are too many; the rounds then end at triangles of rounding size, and a note names the point.
 const N_DECADES: f64 = 14.0;
 
 /// Largest exponent that is looked for: energies like ρ^0.5 converge in a few rounds. Where the permeability rises to one

@@ -1,31 +1,21 @@
-//! Models of the reference sections R1, R5, R7, R8 for tests (lengths in millimetres here, in metres in the model).
+//! Models of the reference sections R1, R5, R7, R8 and others for unit tests (lengths in millimetres here, in metres in the
+//! model).
 
-use crate::model::{
-    Accuracy, Core, Corner, Gap, HotSpotWish, Law, Material, MaterialId, Part, Point, Section,
-    Winding,
-};
 pub use crate::model::{Across, Form, Model, PotWall};
+use crate::model::{Core, Corner, Gap, Law, Material, MaterialId, Part, Point, Section, Winding};
 
 const MM: f64 = 1e-3;
 
 /// A model of nothing but one constant material.
 pub fn empty() -> Model {
-    Model {
-        title: "test".to_string(),
-        materials: vec![Material {
-            name: "ferrite".to_string(),
-            law: Law::Constant { permeability: 2000.0 },
-        }],
-        core: None,
-        gaps: Vec::new(),
-        windings: Vec::new(),
-        parts: Vec::new(),
-        probes: Vec::new(),
-        accuracy: Accuracy::default(),
-        estimate: None,
-        requirements: Vec::new(),
-        hot_spots: HotSpotWish::default(),
-    }
+    of(2000.0)
+}
+
+/// A model of nothing but one material of that permeability.
+fn of(permeability: f64) -> Model {
+    let law = Law::Constant { permeability };
+    let materials = vec![Material { name: "ferrite".to_string(), law }];
+    Model { title: "test".to_string(), materials, ..Model::default() }
 }
 
 /// A core of a form without fillets and joint.
@@ -85,7 +75,7 @@ pub fn r5() -> Model {
         core: Some(core(form)),
         gaps: vec![gap("post gap", Across::Post, 1.0, 0.0)],
         windings: vec![winding("main", 60.0, [8.2, 13.4], [-7.2, 7.2])],
-        ..empty()
+        ..of(1500.0)
     }
 }
 
@@ -100,7 +90,7 @@ pub fn r8() -> Model {
     Model {
         core: Some(core(form)),
         windings: vec![winding("coil", 80.0, [5.5, 7.0], [-10.0, 10.0])],
-        ..empty()
+        ..of(500.0)
     }
 }
 

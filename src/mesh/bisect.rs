@@ -4,7 +4,7 @@
 //! exactly: a new vertex takes the edge's midpoint value, new bubbles follow from second differences.
 //! Source: W. F. Mitchell, ACM Trans. Math. Softw. 15 (1989) 326 (bisection by newest vertex).
 
-use super::{Mesh, Point};
+use super::{Chart, Mesh, Point, RegionId};
 
 /// Marks an edge that is not cut.
 const UNCUT: u32 = u32::MAX;
@@ -16,38 +16,122 @@ pub struct Carried<'a> {
     pub edge: &'a mut Vec<f64>,
 }
 
-/// Cuts all three edges of every marked triangle, closes the mesh, and returns the triangles that changed, ascending.
+/// What a call did to the triangles, in their new numbers.
+#[derive(Debug, Clone, Default)]
+pub struct Changes {
+    /// Triangles that this call made, ascending.
+    pub fresh: Vec<u32>,
+    /// Old number of every triangle that stayed, [`MADE`] for the fresh ones; no triangle moves to a smaller number.
+    pub origin: Vec<u32>,
+}
+
+/// Marks a triangle that this call made.
+pub const MADE: u32 = u32::MAX;
+
+/// Cuts all three edges of every marked triangle and closes the mesh.
 ///
+/// Children take their parent's place in the order and edges follow the triangles, so that what touches in the plane lies
+/// near in memory at every size.
+///
+/// - `edge_triangles`: of the mesh as it is
 /// - `marked`: triangles to refine
 /// - `carried`: coefficients on the old mesh in, on the new mesh out
-pub fn bisect(mesh: &mut Mesh, marked: &[u32], carried: &mut Carried) -> Vec<u32> {
-    let is_cut = close(mesh, marked);
+pub fn bisect(
+    mesh: &mut Mesh,
+    edge_triangles: &[[u32; 2]],
+    marked: &[u32],
+    carried: &mut Carried,
+) -> Changes {
+    let is_cut = close(mesh, edge_triangles, marked);
     let cut = cut_edges(mesh, &is_cut, carried);
-    let n_old = mesh.triangles.len();
-    let mut changed = Vec::new();
-    for t in 0..n_old {
-        let edges = mesh.triangle_edges[t];
-        if cut[edges[0] as usize].vertex == UNCUT {
+    let is_old_and_cut = |e: u32| cut.get(e as usize).is_some_and(|cut| cut.vertex != UNCUT);
+    let mut new = Reordered::with_room(mesh);
+    for t in 0..mesh.triangles.len() {
+        let whole = Piece { corners: mesh.triangles[t], edges: mesh.triangle_edges[t] };
+        if !is_old_and_cut(whole.edges[0]) {
+            new.push(mesh, t, whole, t as u32);
             continue;
         }
-        changed.push(t as u32);
-        let second = bisect_triangle(mesh, t, &cut, Generation::First, carried);
-        for child in [t, second] {
+        for half in split(mesh, whole, &cut, Generation::First, carried) {
             // The parent's other edges are the children's refinement edges; they may be cut as well.
-            let e = mesh.triangle_edges[child][0] as usize;
-            if e < cut.len() && cut[e].vertex != UNCUT {
-                bisect_triangle(mesh, child, &cut, Generation::Second, carried);
+            if is_old_and_cut(half.edges[0]) {
+                for quarter in split(mesh, half, &cut, Generation::Second, carried) {
+                    new.push(mesh, t, quarter, MADE);
+                }
+            } else {
+                new.push(mesh, t, half, MADE);
             }
         }
     }
-    changed.extend(n_old as u32..mesh.triangles.len() as u32);
+    let changes = new.replace(mesh, carried.edge);
     mesh.level_sizes.push(mesh.points.len());
-    changed
+    changes
+}
+
+/// The new triangles in their order, and the edges in the order in which these meet them.
+struct Reordered {
+    triangles: Vec<[u32; 3]>,
+    triangle_edges: Vec<[u32; 3]>,
+    regions: Vec<RegionId>,
+    charts: Vec<Chart>,
+    changes: Changes,
+    /// Final number of an edge, [`UNMET`] as long as no triangle has met it.
+    place: Vec<u32>,
+    /// Edges in their final order.
+    edges: Vec<u32>,
+}
+
+/// Marks an edge without a final number.
+const UNMET: u32 = u32::MAX;
+
+impl Reordered {
+    /// Room for what becomes of a mesh whose new vertices are there already: of a disc, twice as many triangles.
+    fn with_room(mesh: &Mesh) -> Reordered {
+        let n_new = 2 * mesh.points.len();
+        Reordered {
+            triangles: Vec::with_capacity(n_new),
+            triangle_edges: Vec::with_capacity(n_new),
+            regions: Vec::with_capacity(n_new),
+            charts: Vec::with_capacity(n_new),
+            changes: Changes { fresh: Vec::new(), origin: Vec::with_capacity(n_new) },
+            place: vec![UNMET; mesh.edges.len()],
+            edges: Vec::with_capacity(mesh.edges.len()),
+        }
+    }
+
+    /// Appends a triangle, `parent` being the old one whose region and chart it has.
+    fn push(&mut self, mesh: &Mesh, parent: usize, piece: Piece, origin: u32) {
+        if origin == MADE {
+            self.changes.fresh.push(self.triangles.len() as u32);
+        }
+        self.changes.origin.push(origin);
+        self.triangles.push(piece.corners);
+        self.regions.push(mesh.regions[parent]);
+        self.charts.push(mesh.charts[parent]);
+        self.place.resize(mesh.edges.len(), UNMET);
+        self.triangle_edges.push(piece.edges.map(|e| {
+            let place = &mut self.place[e as usize];
+            if *place == UNMET {
+                *place = self.edges.len() as u32;
+                self.edges.push(e);
+            }
+            *place
+        }));
+    }
+
+    fn replace(self, mesh: &mut Mesh, coefficients: &mut Vec<f64>) -> Changes {
+        mesh.triangles = self.triangles;
+        mesh.triangle_edges = self.triangle_edges;
+        mesh.regions = self.regions;
+        mesh.charts = self.charts;
+        mesh.edges = self.edges.iter().map(|&e| mesh.edges[e as usize]).collect();
+        *coefficients = self.edges.iter().map(|&e| coefficients[e as usize]).collect();
+        self.changes
+    }
 }
 
 /// Edges to cut: those of the marked triangles, and the refinement edge wherever any other edge is cut.
-fn close(mesh: &Mesh, marked: &[u32]) -> Vec<bool> {
-    let pairs = super::fans::edge_triangles(mesh);
+fn close(mesh: &Mesh, edge_triangles: &[[u32; 2]], marked: &[u32]) -> Vec<bool> {
     let mut is_cut = vec![false; mesh.edges.len()];
     let mut stack: Vec<u32> = Vec::new();
     for &t in marked {
@@ -60,7 +144,7 @@ fn close(mesh: &Mesh, marked: &[u32]) -> Vec<bool> {
     }
     // Every edge enters the stack at most once.
     while let Some(e) = stack.pop() {
-        for t in pairs[e as usize] {
+        for t in edge_triangles[e as usize] {
             if t == super::fans::NO_TRIANGLE {
                 continue;
             }
@@ -121,43 +205,47 @@ enum Generation {
     Second,
 }
 
-/// Cuts triangle t across its refinement edge; child one replaces it, child two is appended and returned.
-fn bisect_triangle(
+/// A triangle on its way into the new mesh.
+#[derive(Debug, Clone, Copy)]
+struct Piece {
+    corners: [u32; 3],
+    edges: [u32; 3],
+}
+
+/// Cuts a triangle across its refinement edge.
+fn split(
     mesh: &mut Mesh,
-    t: usize,
+    whole: Piece,
     cut: &[Cut],
     generation: Generation,
     carried: &mut Carried,
-) -> usize {
-    let [a, b, c] = mesh.triangles[t];
-    let [ab, bc, ca] = mesh.triangle_edges[t];
+) -> [Piece; 2] {
+    let [a, b, c] = whole.corners;
+    let [ab, bc, ca] = whole.edges;
     let Cut { vertex: m, second_half, bubble } = cut[ab as usize];
     let (half_a, half_b) =
         if mesh.edges[ab as usize][0] == a { (ab, second_half) } else { (second_half, ab) };
 
     // ψ along m → c: bubble (b_bc + b_ca)/2 − b_ab/4 with the uncut edges' coefficients (eq. 13).
-    let whole = |e: u32| match generation {
+    let uncut = |e: u32| match generation {
         Generation::First => cut[e as usize].bubble,
         Generation::Second => carried.edge[e as usize],
     };
-    let inner_bubble = 0.5 * (whole(bc) + whole(ca)) - 0.25 * bubble;
+    let inner_bubble = 0.5 * (uncut(bc) + uncut(ca)) - 0.25 * bubble;
     let inner = mesh.edges.len() as u32;
     mesh.edges.push([m, c]);
     carried.edge.push(inner_bubble);
-
-    mesh.triangles[t] = [c, a, m];
-    mesh.triangle_edges[t] = [ca, half_a, inner];
-    mesh.triangles.push([b, c, m]);
-    mesh.triangle_edges.push([bc, inner, half_b]);
-    mesh.regions.push(mesh.regions[t]);
-    mesh.charts.push(mesh.charts[t]);
-    mesh.triangles.len() - 1
+    [
+        Piece { corners: [c, a, m], edges: [ca, half_a, inner] },
+        Piece { corners: [b, c, m], edges: [bc, inner, half_b] },
+    ]
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::mesh::{Cap, Chart, RegionId};
+    use crate::mesh::Cap;
+    use crate::mesh::fans::edge_triangles;
 
     /// The square 1 < r < 2, 0 < z < 1 in two triangles, no axis.
     fn square() -> Mesh {
@@ -216,11 +304,17 @@ mod tests {
         for round in 0..5 {
             let marked: Vec<u32> =
                 (0..mesh.triangles.len() as u32).filter(|t| t % 3 == round % 2).collect();
-            let n_before = mesh.triangles.clone();
-            let changed =
-                bisect(&mut mesh, &marked, &mut Carried { vertex: &mut vertex, edge: &mut edge });
-            for (t, old) in n_before.iter().enumerate() {
-                assert_eq!(changed.contains(&(t as u32)), mesh.triangles[t] != *old);
+            let before_cut = mesh.triangles.clone();
+            let pairs = edge_triangles(&mesh);
+            let mut carried = Carried { vertex: &mut vertex, edge: &mut edge };
+            let Changes { fresh, origin } = bisect(&mut mesh, &pairs, &marked, &mut carried);
+            assert_eq!(origin.len(), mesh.triangles.len());
+            for (t, &old) in origin.iter().enumerate() {
+                assert_eq!(fresh.contains(&(t as u32)), old == MADE);
+                if old != MADE {
+                    assert!(old as usize <= t);
+                    assert_eq!(mesh.triangles[t], before_cut[old as usize]);
+                }
             }
             let total: f64 = (0..mesh.triangles.len()).map(|t| area(&mesh, t)).sum();
             assert!((total - 1.0).abs() < 1e-14);

@@ -21,6 +21,8 @@ pub struct Fans {
     /// `blades[start[v]..start[v + 1]]` are the triangles round v, in the surface's orientation.
     pub start: Vec<u32>,
     pub blades: Vec<Blade>,
+    /// All vertices in the order in which the triangles meet them.
+    pub tour: Vec<u32>,
 }
 
 impl Fans {
@@ -29,11 +31,15 @@ impl Fans {
         let edge_triangles = edge_triangles(mesh);
         let n = mesh.points.len();
         let mut start = vec![0u32; n + 1];
+        let mut tour = Vec::with_capacity(n);
         let mut first = vec![Blade { triangle: NO_TRIANGLE, corner: 0 }; n];
         for (t, corners) in mesh.triangles.iter().enumerate() {
             for (k, &v) in corners.iter().enumerate() {
                 let v = v as usize;
                 start[v + 1] += 1;
+                if first[v].triangle == NO_TRIANGLE {
+                    tour.push(v as u32);
+                }
                 let opens = edge_triangles[mesh.triangle_edges[t][k] as usize][1] == NO_TRIANGLE;
                 if first[v].triangle == NO_TRIANGLE || opens {
                     first[v] = Blade { triangle: t as u32, corner: k as u8 };
@@ -54,7 +60,7 @@ impl Fans {
                 }
             }
         }
-        Fans { edge_triangles, start, blades }
+        Fans { edge_triangles, start, blades, tour }
     }
 
     /// The triangles round vertex v.

@@ -234,7 +234,7 @@ impl Default for HotSpotWish {
 }
 
 /// The whole problem.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct Model {
     pub title: String,
     pub materials: Vec<Material>,

@@ -1,12 +1,9 @@
 //! Values for tests: the results, section, mesh and field of a gapped pot core, made by hand.
 
-use super::vtk::FieldCells;
-use crate::geometry::{Cap, Leg, Outline, Region, RegionId, RegionKind};
+use crate::geometry::{Cap, Leg, Outline, Region, RegionId, RegionKind, samples};
 use crate::mesh::{Chart, Mesh};
-use crate::model::{
-    Accuracy, Across, Core, Form, Gap, HotSpotWish, Law, Material, MaterialId, Model, Point,
-    PotWall, Section, Winding,
-};
+use crate::model::{MaterialId, Model, Point};
+use crate::results::sample::CellValues;
 use crate::results::{
     GapResult, Guaranteed, HotSpot, LedgerRow, PartResult, ProbePoint, ProbeResult,
     RequirementResult, Results, RippleCurrent, RipplePart, RippleResult, Round, Verdict,
@@ -154,48 +151,11 @@ fn gaps() -> Vec<GapResult> {
 
 /// The model of the same core.
 pub(crate) fn model() -> Model {
-    Model {
-        title: "Buoy charger choke".to_string(),
-        materials: vec![Material {
-            name: "soft_ferrite".to_string(),
-            law: Law::Constant { permeability: 2000.0 },
-        }],
-        core: Some(Core {
-            material: MaterialId(0),
-            form: Form::Pot {
-                wall: PotWall::OuterDiameter(25.5e-3),
-                wall_inner_diameter: 21.2e-3,
-                post_diameter: 11.5e-3,
-                hole_diameter: 5.4e-3,
-                height: 16.1e-3,
-                window_height: 11e-3,
-            },
-            corner_radius: 0.0,
-            joint: 0.0,
-        }),
-        gaps: vec![Gap {
-            name: "post gap".to_string(),
-            across: Across::Post,
-            length: 0.3e-3,
-            center: 0.0,
-        }],
-        windings: vec![Winding {
-            name: "main".to_string(),
-            sections: vec![Section {
-                turns: 42.0,
-                radii: [6.6e-3, 10.2e-3],
-                heights: [-4.9e-3, 4.9e-3],
-            }],
-            current: 1.8,
-            ripple: 0.0,
-        }],
-        parts: vec![],
-        probes: vec![],
-        accuracy: Accuracy::default(),
-        estimate: None,
-        requirements: vec![],
-        hot_spots: HotSpotWish::default(),
-    }
+    let mut model = samples::r1();
+    model.title = "Buoy charger choke".to_string();
+    model.materials[0].name = "soft_ferrite".to_string();
+    model.windings[0].current = 1.8;
+    model
 }
 
 /// A counter-clockwise rectangle, corners in millimetres.
@@ -252,13 +212,13 @@ pub(crate) fn outline() -> Outline {
     }
 }
 
-/// A smooth made-up field on a regular mesh over the section: ψ = B r²/2·exp(−(r/a)⁴ − (z/b)²), and its B.
+/// A smooth made-up field on a regular mesh over the section: ψ = B r²/2·exp(−(r/a)⁴ − (z/b)²), its B and shares.
 #[derive(Debug, Clone, PartialEq)]
 pub(crate) struct Field {
     pub mesh: Mesh,
     pub solution: Solution,
-    pub b_corner: Vec<[f64; 3]>,
-    pub cells: FieldCells,
+    pub cells: CellValues,
+    pub shares: Vec<f64>,
 }
 
 const PEAK: f64 = 0.4;
@@ -308,12 +268,13 @@ pub(crate) fn field(n: usize) -> Field {
     let norm = |p: Point| flux_density(p)[0].hypot(flux_density(p)[1]);
     let b_corner = triangles.iter().map(|t| t.map(|v| norm(points[v as usize]))).collect();
     let b: Vec<[f64; 2]> = triangles.iter().map(|t| flux_density(middle(t[0], t[2]))).collect();
-    let cells = FieldCells {
+    let cells = CellValues {
         h: b.iter().map(|b| b.map(|x| x / crate::units::MU0)).collect(),
         b,
         permeability: vec![1.0; triangles.len()],
-        share: vec![1e-9; triangles.len()],
+        b_corner,
     };
+    let shares = vec![1e-9; triangles.len()];
     let mesh = Mesh {
         on_axis: points.iter().map(|p| p.r == 0.0).collect(),
         parents: vec![[u32::MAX; 2]; points.len()],
@@ -326,7 +287,7 @@ pub(crate) fn field(n: usize) -> Field {
         charts,
         cap: outline().cap,
     };
-    Field { mesh, solution, b_corner, cells }
+    Field { mesh, solution, cells, shares }
 }
 
 /// Numbers the edges of `triangles` in order of first appearance; local edges (a,b), (b,c), (c,a).

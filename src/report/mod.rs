@@ -37,10 +37,15 @@ pub fn shortfall(results: &Results) -> Option<String> {
         (true, Some(inductance)) => (numbers::relative_width(inductance), "inductance"),
         _ => (numbers::relative_width(&results.coenergy), "coenergy"),
     };
-    Some(format!(
-        "the interval of the {kind} is {} wide, {} was wanted: the guarantee holds, but for the wider interval; \
-         raise max_unknowns or ask for a wider interval",
+    Some(too_wide(kind, width, results.wanted))
+}
+
+/// That the interval of something is wider than wanted, and what can be done.
+fn too_wide(of: &str, width: f64, wanted: f64) -> String {
+    format!(
+        "the interval of the {of} is {} wide, {} was wanted: the guarantee holds, but for the wider interval; raise \
+         max_unknowns or ask for a wider interval",
         numbers::percent(width, 2),
-        numbers::percent(results.wanted, 2)
-    ))
+        numbers::percent(wanted, 2)
+    )
 }

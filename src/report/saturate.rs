@@ -6,14 +6,14 @@ mod tests;
 
 pub use plot::saturate_svg;
 
-use super::StageTimes;
 use super::csv::field;
 use super::json::{RequireEntry, TimingEntry, require_entries, timing_entries};
 use super::numbers::{clip, grouped, percent, wrap};
 use super::terminal::{
-    BOLD, Look, NAME_WIDTH, WARN, WIDTH, heading, notes, paint, push, push_table, requirement_line,
+    Look, NAME_WIDTH, WIDTH, heading, notes, opening, push, push_table, requirement_line,
     stage_times,
 };
+use super::{StageTimes, too_wide};
 use crate::study::saturate::{Row, Saturation};
 use crate::units::engineering;
 use schemars::JsonSchema;
@@ -219,27 +219,13 @@ fn shortfall(found: &Saturation) -> Option<String> {
     let width = |row: &Row| (row.coenergy.high - row.coenergy.low) / row.coenergy.value;
     let rows = found.rows.iter().filter(|row| 0.0 < row.current);
     let widest = rows.max_by(|a, b| width(a).total_cmp(&width(b)))?;
-    Some(format!(
-        "the interval of the coenergy at {} is {} wide, {} was wanted: the guarantee holds, but for the wider \
-         interval; raise max_unknowns or ask for a wider interval",
-        engineering(widest.current, "A", 3),
-        percent(width(widest), 2),
-        percent(found.wanted, 2)
-    ))
+    let what = format!("coenergy at {}", engineering(widest.current, "A", 3));
+    Some(too_wide(&what, width(widest), found.wanted))
 }
 
 /// The whole screen of `saturate`, ending in a line break.
 pub fn saturate_screen(found: &Saturation, look: &Look) -> String {
-    let mut text = String::new();
-    for line in wrap(&found.title, WIDTH) {
-        push(&mut text, &paint(&line, BOLD, look.colour));
-    }
-    if let Some(sentence) = shortfall(found) {
-        for (i, line) in wrap(&format!("Not reached: {sentence}."), WIDTH - 4).iter().enumerate() {
-            let mark = if i == 0 { "  !" } else { "   " };
-            push(&mut text, &format!("{mark} {}", paint(line, WARN, look.colour)));
-        }
-    }
+    let mut text = opening(&found.title, shortfall(found), look);
     falls(&mut text, found);
     for requirement in &found.requirements {
         requirement_line(&mut text, requirement, look);

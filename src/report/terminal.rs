@@ -28,22 +28,7 @@ pub struct Look<'a> {
 
 /// The whole screen of `solve`, ending in a line break.
 pub fn solve_screen(results: &Results, look: &Look) -> String {
-    let mut text = String::new();
-    for line in wrap(&results.title, WIDTH) {
-        push(&mut text, &paint(&line, BOLD, look.colour));
-    }
-    if let Some(sentence) = shortfall(results) {
-        for (i, line) in wrap(&format!("Not reached: {sentence}."), WIDTH - 4).iter().enumerate() {
-            push(
-                &mut text,
-                &format!(
-                    "{} {}",
-                    if i == 0 { "  !" } else { "   " },
-                    paint(line, WARN, look.colour)
-                ),
-            );
-        }
-    }
+    let mut text = opening(&results.title, shortfall(results), look);
     answer::answer(&mut text, results, look);
     tables::ledger(&mut text, results, look);
     tables::gaps(&mut text, results, look);
@@ -53,6 +38,21 @@ pub fn solve_screen(results: &Results, look: &Look) -> String {
     notes(&mut text, &results.notes, look);
     if let Some(times) = look.times {
         timings(&mut text, results, times, look);
+    }
+    text
+}
+
+/// The title, and the sentence that stands first when the interval was not reached.
+pub(super) fn opening(title: &str, shortfall: Option<String>, look: &Look) -> String {
+    let mut text = String::new();
+    for line in wrap(title, WIDTH) {
+        push(&mut text, &paint(&line, BOLD, look.colour));
+    }
+    if let Some(sentence) = shortfall {
+        for (i, line) in wrap(&format!("Not reached: {sentence}."), WIDTH - 4).iter().enumerate() {
+            let mark = if i == 0 { "  !" } else { "   " };
+            push(&mut text, &format!("{mark} {}", paint(line, WARN, look.colour)));
+        }
     }
     text
 }
@@ -67,11 +67,11 @@ pub fn progress_line(round: usize, n_unknowns: usize, low: f64, high: f64) -> St
     )
 }
 
-pub(super) const BOLD: &str = "1";
+const BOLD: &str = "1";
 const GOOD: &str = "32";
-pub(super) const WARN: &str = "33";
+const WARN: &str = "33";
 
-pub(super) fn paint(text: &str, code: &str, colour: bool) -> String {
+fn paint(text: &str, code: &str, colour: bool) -> String {
     if colour { format!("\u{1b}[{code}m{text}\u{1b}[0m") } else { text.to_string() }
 }
 

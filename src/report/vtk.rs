@@ -3,24 +3,12 @@
 //! Only the XML path of vtkio is used; its other writers put legacy text under a `.vtu` name.
 
 use crate::mesh::{Chart, Mesh};
+use crate::results::sample::CellValues;
 use crate::solve::Solution;
 use vtkio::model::{
     Attribute, Attributes, ByteOrder, CellType, Cells, DataSet, UnstructuredGridPiece, Version,
     VertexNumbers, Vtk,
 };
-
-/// Cell values, one entry a triangle of the mesh (those of the cap are skipped in the file).
-#[derive(Debug, Clone, PartialEq, Default)]
-pub struct FieldCells {
-    /// (B_r, B_z) at the centroid [T].
-    pub b: Vec<[f64; 2]>,
-    /// (H_r, H_z) at the centroid [A/m].
-    pub h: Vec<[f64; 2]>,
-    /// Relative permeability B/(µ0 H) at the centroid.
-    pub permeability: Vec<f64>,
-    /// Share of the interval's width [J].
-    pub share: Vec<f64>,
-}
 
 /// Why the file could not be made.
 #[derive(Debug, thiserror::Error)]
@@ -34,13 +22,17 @@ pub enum VtkError {
 /// Bytes of an XML unstructured grid (r, z, 0) [m]: corners then middles 01, 12, 20, cell type 22.
 ///
 /// ψ at a middle is ½(ψ_i + ψ_j) + edge coefficient, since the edge function 4λ_iλ_j is 1 there.
+/// - `cells`, `shares`: the field, and the share of the interval's width [J]; one entry a triangle of the mesh (those of the
+///   cap are skipped in the file)
+///
 /// Fails when an array does not match the mesh.
 pub fn field_vtu(
     mesh: &Mesh,
     solution: &Solution,
-    cells: &FieldCells,
+    cells: &CellValues,
+    shares: &[f64],
 ) -> Result<Vec<u8>, VtkError> {
-    check_lengths(mesh, solution, cells)?;
+    check_lengths(mesh, solution, cells, shares)?;
     let inside: Vec<usize> =
         (0..mesh.triangles.len()).filter(|&t| mesh.charts[t] == Chart::Inside).collect();
     let nodes = number_nodes(mesh, solution, &inside);
@@ -56,7 +48,7 @@ pub fn field_vtu(
         },
         data: Attributes {
             point: vec![Attribute::scalars("psi [Wb per rad]", 1).with_data(nodes.psi)],
-            cell: cell_data(mesh, cells, &inside),
+            cell: cell_data(mesh, cells, shares, &inside),
         },
     };
     let file = Vtk {
@@ -72,7 +64,12 @@ pub fn field_vtu(
     Ok(bytes)
 }
 
-fn check_lengths(mesh: &Mesh, solution: &Solution, cells: &FieldCells) -> Result<(), VtkError> {
+fn check_lengths(
+    mesh: &Mesh,
+    solution: &Solution,
+    cells: &CellValues,
+    shares: &[f64],
+) -> Result<(), VtkError> {
     let n = mesh.triangles.len();
     for (what, found, wanted) in [
         ("charts", mesh.charts.len(), n),
@@ -80,7 +77,7 @@ fn check_lengths(mesh: &Mesh, solution: &Solution, cells: &FieldCells) -> Result
         ("B", cells.b.len(), n),
         ("H", cells.h.len(), n),
         ("permeability", cells.permeability.len(), n),
-        ("share", cells.share.len(), n),
+        ("share", shares.len(), n),
         ("vertex coefficients", solution.vertex.len(), mesh.points.len()),
         ("edge coefficients", solution.edge.len(), mesh.edges.len()),
     ] {
@@ -133,7 +130,7 @@ fn node(mesh: &Mesh, solution: &Solution, key: usize) -> (f64, f64, f64) {
     (0.5 * (p.r + q.r), 0.5 * (p.z + q.z), psi)
 }
 
-fn cell_data(mesh: &Mesh, cells: &FieldCells, inside: &[usize]) -> Vec<Attribute> {
+fn cell_data(mesh: &Mesh, cells: &CellValues, shares: &[f64], inside: &[usize]) -> Vec<Attribute> {
     let vectors = |name: &str, values: &[[f64; 2]]| {
         let flat: Vec<f64> =
             inside.iter().flat_map(|&t| [values[t][0], values[t][1], 0.0]).collect();
@@ -150,7 +147,7 @@ fn cell_data(mesh: &Mesh, cells: &FieldCells, inside: &[usize]) -> Vec<Attribute
         scalars("magnitude of B [T]", &|t| cells.b[t][0].hypot(cells.b[t][1])),
         scalars("relative permeability", &|t| cells.permeability[t]),
         Attribute::scalars("region", 1).with_data(regions),
-        scalars("interval share [J]", &|t| cells.share[t]),
+        scalars("interval share [J]", &|t| shares[t]),
     ]
 }
 
@@ -174,7 +171,9 @@ mod tests {
     #[test]
     fn file_reads_back_with_quadratic_triangles_and_without_the_cap() {
         let field = fixture::field(4);
-        let piece = read_back(&field_vtu(&field.mesh, &field.solution, &field.cells).unwrap());
+        let piece = read_back(
+            &field_vtu(&field.mesh, &field.solution, &field.cells, &field.shares).unwrap(),
+        );
         let n_inside = field.mesh.triangles.len() - 1;
         assert_eq!(piece.cells.types, vec![CellType::QuadraticTriangle; n_inside]);
         assert_eq!(piece.data.cell.len(), 6);
@@ -183,7 +182,9 @@ mod tests {
     #[test]
     fn middles_lie_half_way_in_the_order_01_12_20_and_carry_the_quadratic_value() {
         let field = fixture::field(4);
-        let piece = read_back(&field_vtu(&field.mesh, &field.solution, &field.cells).unwrap());
+        let piece = read_back(
+            &field_vtu(&field.mesh, &field.solution, &field.cells, &field.shares).unwrap(),
+        );
         let points: Vec<f64> = piece.points.into_vec().unwrap();
         let Attribute::DataArray(psi) = &piece.data.point[0] else { panic!("no array") };
         let psi: Vec<f64> = psi.data.clone().into_vec().unwrap();
@@ -207,8 +208,9 @@ mod tests {
     #[test]
     fn a_missing_value_is_named() {
         let mut field = fixture::field(2);
-        field.cells.share.pop();
-        let error = field_vtu(&field.mesh, &field.solution, &field.cells).unwrap_err();
+        field.shares.pop();
+        let error =
+            field_vtu(&field.mesh, &field.solution, &field.cells, &field.shares).unwrap_err();
         assert_eq!(error.to_string(), "share: 16 values for 17");
     }
 }

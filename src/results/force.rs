@@ -46,7 +46,7 @@ fn coenergy_rate(sampler: &Sampler, t: usize, speed: [f64; 3]) -> f64 {
 
     let energy_rate = match sampler.reluctivity(t) {
         Reluctivity::Constant(_) => {
-            linear_energy_rate(&frame, &gradients, metric_rate, &sampler.outcome.elements[t].k)
+            linear_energy_rate(&frame, &gradients, metric_rate, &sampler.outcome.elements.k[t])
         }
         Reluctivity::Saturating(law) => {
             let rule = rule_of(&sampler.rules, &frame);

@@ -5,11 +5,11 @@ use super::collect::single_carrier;
 use super::sample::Sampler;
 use crate::adapt::Outcome;
 use crate::fem::element::Frame;
-use crate::fem::{Coefficients, Element, assemble};
+use crate::fem::{Coefficients, Elements, assemble};
 use crate::geometry::{Outline, Region, RegionKind};
 use crate::model::{Model, Section};
 use crate::sparse::cg::dot;
-use crate::sparse::{CgError, Multilevel, Stop, Swept, Workspace};
+use crate::sparse::{CgError, Multilevel, Stop, Storage, Swept, Workspace};
 use crate::units::{AmperePerSquareMeter, Henry, Weber};
 use std::f64::consts::TAU;
 
@@ -97,15 +97,21 @@ const N_TANGENT_MAX: usize = 2000;
 /// - `rate`: load that the currents gain for each ampere of winding w; `unit` itself where w alone carries current
 pub fn tangent(
     outcome: &Outcome,
-    elements: &[Element],
+    elements: &Elements,
     unit: &[f64],
     rate: &[f64],
 ) -> Result<Henry, CgError> {
-    let matrix =
-        Swept::new(assemble::stiffness(&outcome.mesh, &outcome.space, &outcome.fans, elements));
+    let matrix = Swept::new(assemble::stiffness(
+        &outcome.mesh,
+        &outcome.space,
+        &outcome.fans,
+        elements,
+        Storage::default(),
+    ));
     let mut work = Workspace::default();
     let mut y = vec![0.0; rate.len()];
-    let stop = Stop { decrease: TANGENT_DECREASE, n_iterations_max: N_TANGENT_MAX };
+    let stop =
+        Stop { outstanding: TANGENT_DECREASE, of_lowered: 0.0, n_iterations_max: N_TANGENT_MAX };
     Multilevel::new(&matrix, &outcome.hierarchy, &mut work).solve(rate, &mut y, &stop, 0.0)?;
     Ok(TAU * dot(unit, &y))
 }

@@ -3,7 +3,7 @@
 use super::linkage::{load, tangent, unit_density};
 use super::{RequirementResult, single_carrier};
 use crate::adapt::Outcome;
-use crate::adapt::again::{Again, at_density, linkage_width, rate_ends_at, scaled};
+use crate::adapt::again::{Again, at_density, linkage_width, rate_ends_at, start_at};
 use crate::geometry::Outline;
 use crate::model::{InductanceKind, Model, Requirement};
 use crate::solve::SolveError;
@@ -52,8 +52,8 @@ fn check(
     let density = scaled_density(model, outline, w, current);
     let width = linkage_width(outcome.bound.relative_width());
     let start = match model.windings[w].current {
-        0.0 => scaled(&outcome.solution, 0.0),
-        of_sheet => scaled(&outcome.solution, current / of_sheet),
+        0.0 => start_at(outcome, 0.0),
+        of_sheet => start_at(outcome, current / of_sheet),
     };
     let again = at_density(outcome, &density, &start, width)?;
     let unit = load(outcome, &unit_density(model, outline, w));

@@ -4,7 +4,7 @@ use super::linkage::unit_density;
 use super::sample::Sampler;
 use super::{RippleCurrent, RipplePart, RippleResult, parts};
 use crate::adapt::Outcome;
-use crate::adapt::again::{at_density, linkage_width, scaled};
+use crate::adapt::again::{at_density, linkage_width, start_at};
 use crate::geometry::Outline;
 use crate::model::{Model, Winding};
 use crate::solve::{Solution, SolveError};
@@ -70,7 +70,7 @@ fn field_at(
     // A ripple of twice the bias ends at 0 A: a start that is not scaled along would be infinitely far from that field.
     let of_sheet = &outcome.coefficients.current_density;
     let factor = dot(&density, of_sheet) / dot(of_sheet, of_sheet);
-    let start = scaled(&outcome.solution, factor);
+    let start = start_at(outcome, factor);
     let width = linkage_width(outcome.bound.relative_width());
     Ok(at_density(outcome, &density, &start, width)?.solution)
 }

@@ -99,7 +99,7 @@ impl<'a> Sampler<'a> {
         let gradients = solution.gradients(mesh, t);
         match self.reluctivity(t) {
             Reluctivity::Constant(_) => {
-                let energy = TAU * linear_energy(&elements[t].k, &gradients);
+                let energy = TAU * linear_energy(&elements.k[t], &gradients);
                 (2.0 * energy, energy)
             }
             Reluctivity::Saturating(law) => {

@@ -2,8 +2,8 @@
 
 use super::Solution;
 use crate::fem::element::{Frame, Pair};
-use crate::fem::moments::{Saturated, linear_energy, linear_flux, rule_of, saturated};
-use crate::fem::{Coefficients, Element, Reluctivity, Rules, Space, assemble, space};
+use crate::fem::moments::{Saturated, energy_of_flux, linear_flux, rule_of, saturated};
+use crate::fem::{Coefficients, Element, Elements, Reluctivity, Rules, Space, assemble, space};
 use crate::mesh::Mesh;
 use crate::mesh::fans::Fans;
 use crate::sparse::cg::dot;
@@ -18,9 +18,11 @@ const N_NEWTON_MAX: usize = 60;
 const N_HALVINGS_MAX: usize = 40;
 /// CG iterations before giving up; 20–40 are usual.
 const N_CG_MAX: usize = 2000;
-/// CG iterations above which the coarser levels are taken for stale (of another current) and rebuilt: good ones need
-/// 20–36 for 1e-10 from zero.
-const N_CG_STALE: usize = 25;
+/// A Newton step is solved to this share of the energy that it lowers: the next one would find that much anyway.
+const FORCING: f64 = 3e-4;
+/// CG iterations of a Newton step above which the coarser levels are taken for stale (of another current) and rebuilt: good ones
+/// need 2–6 for [`FORCING`].
+const N_CG_STALE: usize = 12;
 /// F rounds to about this share of itself: a smaller predicted decrease cannot be told from noise.
 const ROUNDING: f64 = 1e-15;
 /// Where no step lowers F, a predicted decrease below this share of 2|F| is the rounding of F's sum and means convergence.
@@ -58,13 +60,13 @@ pub enum SolveError {
     Stalled { n_steps: usize, decrement: f64, wanted: f64 },
 }
 
-/// Improves `solution` until a further step would lower F by less than `decrease`·bᵀx.
+/// Improves `solution` until all further steps would lower F by less than about `decrease`·bᵀx.
 ///
 /// - `elements`: constant laws' filled in; those of saturating triangles are set to the tangent at the solution
 /// - `hierarchy`: levels of the earlier rounds in, this mesh's level added
 pub fn solve(
     system: &System,
-    elements: &mut [Element],
+    elements: &mut Elements,
     hierarchy: &mut Hierarchy,
     solution: &mut Solution,
     decrease: f64,
@@ -73,17 +75,23 @@ pub fn solve(
     let load = assemble::load(system.mesh, system.space, system.coefficients);
     let mut x = system.space.restrict(&solution.vertex, &solution.edge);
     let effort = if system.coefficients.is_linear() {
-        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
-        let matrix = Swept::new(matrix);
+        let matrix = assembled(system, elements, hierarchy);
         set_level(system, hierarchy, matrix.matrix(), &interpolation)?;
-        let stop = Stop { decrease, n_iterations_max: N_CG_MAX };
+        let stop = Stop { outstanding: decrease, of_lowered: 0.0, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &load, &mut x, &stop, 0.0)?;
+        hierarchy.work.storage = matrix.into_storage();
         Effort { n_cg_iterations: convergence.n_iterations, n_newton_steps: 0 }
     } else {
         newton(system, elements, hierarchy, &interpolation, &load, &mut x, decrease)?
     };
     (solution.vertex, solution.edge) = system.space.expand(system.mesh, &x);
     Ok(effort)
+}
+
+/// The matrix of the present elements, in the arrays of the last one.
+fn assembled(system: &System, elements: &Elements, hierarchy: &mut Hierarchy) -> Swept {
+    let storage = std::mem::take(&mut hierarchy.work.storage);
+    Swept::new(assemble::stiffness(system.mesh, system.space, system.fans, elements, storage))
 }
 
 /// Conjugate gradients with the hierarchy's own workspace.
@@ -115,7 +123,7 @@ fn set_level(
 
 fn newton(
     system: &System,
-    elements: &mut [Element],
+    elements: &mut Elements,
     hierarchy: &mut Hierarchy,
     interpolation: &[Interpolation],
     load: &[f64],
@@ -128,18 +136,19 @@ fn newton(
     let mut state = State::new(&problem, elements, x);
     loop {
         state.store_tangents(&problem, elements);
-        let matrix = assemble::stiffness(system.mesh, system.space, system.fans, elements);
-        let matrix = Swept::new(matrix);
+        let matrix = assembled(system, elements, hierarchy);
         set_level(system, hierarchy, matrix.matrix(), interpolation)?;
         let residual: Vec<f64> = load.iter().zip(&state.force).map(|(b, g)| b - g).collect();
         // |F| bounds the coenergy from below; in the first step from zero there is nothing yet to compare with.
         let scale = 2.0 * state.value.abs();
         let mut step = vec![0.0; x.len()];
-        let stop = Stop { decrease: 0.1 * decrease, n_iterations_max: N_CG_MAX };
+        let stop =
+            Stop { outstanding: 0.1 * decrease, of_lowered: FORCING, n_iterations_max: N_CG_MAX };
         let convergence = iterate(hierarchy, &matrix, &residual, &mut step, &stop, scale)?;
         if N_CG_STALE < convergence.n_iterations && !hierarchy.renew(matrix.matrix()) {
             return Err(SolveError::CoarseNotPositive);
         }
+        hierarchy.work.storage = matrix.into_storage();
         effort.n_cg_iterations += convergence.n_iterations;
         effort.n_newton_steps += 1;
         let predicted = dot(&residual, &step);
@@ -186,7 +195,7 @@ fn law_of<'a>(system: &System<'a>, t: usize) -> &'a Reluctivity {
 /// Halves the step until F falls enough; moves `x` and returns the new state.
 fn backtrack(
     problem: &Problem,
-    elements: &[Element],
+    elements: &Elements,
     x: &mut Vec<f64>,
     step: &[f64],
     predicted: f64,
@@ -217,7 +226,7 @@ struct State {
 
 impl State {
     /// - `elements`: of the triangles with constant laws
-    fn new(problem: &Problem, elements: &[Element], x: &[f64]) -> State {
+    fn new(problem: &Problem, elements: &Elements, x: &[f64]) -> State {
         let system = problem.system;
         let (vertex, edge) = system.space.expand(system.mesh, x);
         let solution = Solution { vertex, edge };
@@ -232,9 +241,9 @@ impl State {
         State { value, force, tangents: bent.into_iter().map(|part| part.2).collect() }
     }
 
-    fn store_tangents(&self, problem: &Problem, elements: &mut [Element]) {
+    fn store_tangents(&self, problem: &Problem, elements: &mut Elements) {
         for (&t, tangent) in problem.saturating.iter().zip(&self.tangents) {
-            elements[t as usize] = *tangent;
+            elements.set(t as usize, tangent);
         }
     }
 }
@@ -242,13 +251,14 @@ impl State {
 /// Flux elements and energy of the triangles with constant laws; zeros elsewhere.
 fn linear_parts(
     system: &System,
-    elements: &[Element],
+    elements: &Elements,
     solution: &Solution,
 ) -> Vec<([Pair; 3], f64)> {
     let part = |t: usize| match law_of(system, t) {
         Reluctivity::Constant(_) => {
             let gradients = solution.gradients(system.mesh, t);
-            (linear_flux(&elements[t].k, &gradients), linear_energy(&elements[t].k, &gradients))
+            let flux = linear_flux(&elements.k[t], &gradients);
+            (flux, energy_of_flux(&flux, &gradients))
         }
         Reluctivity::Saturating(_) => ([[0.0; 2]; 3], 0.0),
     };

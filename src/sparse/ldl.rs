@@ -157,10 +157,10 @@ impl RowWork {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::sparse::dissection::nested_dissection;
+    use crate::sparse::degree::minimum_degree;
 
     #[test]
-    fn solves_a_grid_to_rounding_in_the_dissected_order() {
+    fn solves_a_grid_to_rounding_in_the_order_of_minimum_degree() {
         let (m, n) = (25, 625);
         let mut triplets = sprs::TriMatI::<f64, u32>::new((n, n));
         for x in 0..m {
@@ -176,7 +176,7 @@ mod tests {
             }
         }
         let matrix: Matrix = triplets.to_csr();
-        let order = nested_dissection(&matrix);
+        let order = minimum_degree(&matrix);
         let exact: Vec<f64> = (0..n).map(|i| (0.37 * i as f64).sin()).collect();
         let mut b = vec![0.0; n];
         crate::sparse::Swept::new(matrix.clone()).multiply(&exact, &mut b);

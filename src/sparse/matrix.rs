@@ -6,6 +6,14 @@ use sprs::CsMatI;
 /// Sparse symmetric matrix, CSR, columns sorted within a row.
 pub type Matrix = CsMatI<f64, u32, usize>;
 
+/// The arrays of a matrix, handed from one that is done with to the next: fresh memory costs more than its filling.
+#[derive(Debug, Default)]
+pub struct Storage {
+    pub start: Vec<usize>,
+    pub columns: Vec<u32>,
+    pub values: Vec<f64>,
+}
+
 /// Rows above which a product is shared between threads; below, the hand-over costs more than it gives.
 const N_ROWS_PARALLEL: usize = 40_000;
 /// Rows a thread takes at a time.
@@ -37,6 +45,12 @@ impl Swept {
         Swept { matrix, diagonal, inverse_diagonal }
     }
 
+    /// The arrays, for the next matrix.
+    pub fn into_storage(self) -> Storage {
+        let (start, columns, values) = self.matrix.into_raw_storage();
+        Storage { start, columns, values }
+    }
+
     /// The matrix itself.
     pub fn matrix(&self) -> &Matrix {
         &self.matrix
@@ -51,12 +65,6 @@ impl Swept {
     pub fn multiply(&self, x: &[f64], y: &mut [f64]) {
         let start = self.matrix.indptr().into_raw_storage();
         self.for_rows(y, |i, y| *y = self.dot(start[i], start[i + 1], x));
-    }
-
-    /// y += L x, L the strictly lower part.
-    pub fn add_lower(&self, x: &[f64], y: &mut [f64]) {
-        let start = self.matrix.indptr().into_raw_storage();
-        self.for_rows(y, |i, y| *y += self.dot(start[i], self.diagonal[i], x));
     }
 
     /// Calls `row` for each entry of y; large matrices share the rows between threads.
@@ -97,15 +105,40 @@ impl Swept {
         }
     }
 
-    /// Gauss–Seidel from x, last row to first: (D + U) x_new = b − L x_old. Leaves the right-hand side in `rest`.
-    ///
-    /// Afterwards A·x_new = rest + L·x_new, half of a product.
-    pub fn backward(&self, b: &[f64], x: &mut [f64], rest: &mut [f64]) {
+    /// Gauss–Seidel from x, last row to first: (D + U) x_new = b − L x_old.
+    pub fn backward(&self, b: &[f64], x: &mut [f64]) {
         let start = self.matrix.indptr().into_raw_storage();
         for i in (0..self.n_rows()).rev() {
             let place = self.diagonal[i];
-            rest[i] = b[i] - self.dot(start[i], place, x);
-            x[i] = (rest[i] - self.dot(place + 1, start[i + 1], x)) * self.inverse_diagonal[i];
+            let rest = b[i] - self.dot(start[i], place, x);
+            x[i] = (rest - self.dot(place + 1, start[i + 1], x)) * self.inverse_diagonal[i];
+        }
+    }
+
+    /// The backward sweep after [`Swept::forward_from_zero`] and a correction of the leading unknowns by `e`, with the product
+    /// A·x_new in one go.
+    ///
+    /// The forward sweep has left L x + D x = b, so b − L (x + e) = D x − L e and b is not needed; the rest of the product,
+    /// L x_new, is added column by column as soon as an unknown is known.
+    pub fn backward_with_product(&self, e: &[f64], x: &mut [f64], product: &mut [f64]) {
+        let start = self.matrix.indptr().into_raw_storage();
+        let (columns, values) = (self.matrix.indices(), self.matrix.data());
+        for i in (0..self.n_rows()).rev() {
+            let place = self.diagonal[i];
+            let lower = start[i]..place;
+            let upper = place + 1..start[i + 1];
+            let mut rest = values[place] * x[i];
+            // Columns ascend: those that `e` changes come first.
+            for (&j, v) in columns[lower.clone()].iter().zip(&values[lower]) {
+                let Some(e) = e.get(j as usize) else { break };
+                rest -= v * e;
+            }
+            let new = (rest - self.dot(upper.start, upper.end, x)) * self.inverse_diagonal[i];
+            x[i] = new;
+            product[i] = rest;
+            for (&j, v) in columns[upper.clone()].iter().zip(&values[upper]) {
+                product[j as usize] += v * new;
+            }
         }
     }
 }
@@ -145,7 +178,7 @@ mod tests {
     }
 
     #[test]
-    fn half_a_product_after_a_backward_sweep_is_the_whole_product() {
+    fn sweeps_leave_the_residual_and_the_product() {
         let a = sample(9);
         let b: Vec<f64> = (0..9).map(|i| (1.3 * i as f64).sin()).collect();
         let (mut x, mut y, mut residual) = (vec![0.0; 9], vec![0.0; 9], vec![0.0; 9]);
@@ -155,12 +188,15 @@ mod tests {
         for i in 0..9 {
             assert!((b[i] - y[i] - residual[i]).abs() < 1e-15);
         }
-        x[3] += 0.2;
+        let correction = [0.1, -0.3, 0.0, 0.2];
+        let mut corrected = x.clone();
+        corrected.iter_mut().zip(correction).for_each(|(x, e)| *x += e);
+        a.backward(&b, &mut corrected);
         let mut product = vec![0.0; 9];
-        a.backward(&b, &mut x, &mut product);
-        a.add_lower(&x, &mut product);
+        a.backward_with_product(&correction, &mut x, &mut product);
         a.multiply(&x, &mut y);
         for i in 0..9 {
+            assert!((x[i] - corrected[i]).abs() < 1e-15);
             assert!((product[i] - y[i]).abs() < 1e-15);
         }
     }

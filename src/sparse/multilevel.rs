@@ -5,9 +5,9 @@
 //! (hierarchical splitting); J. Bramble, J. Pasciak, J. Xu, Math. Comp. 55 (1990) 1 (smoothing on every level).
 
 use super::cg::{CgError, Convergence, Operator, Stop, Vectors, conjugate_gradients};
-use super::dissection::nested_dissection;
+use super::degree::minimum_degree;
 use super::ldl::Ldl;
-use super::matrix::{Matrix, Swept, leading_block};
+use super::matrix::{Matrix, Storage, Swept, leading_block};
 use nalgebra::DMatrix;
 use nalgebra_sparse::factorization::CscCholesky;
 use nalgebra_sparse::{CooMatrix, CscMatrix};
@@ -33,14 +33,16 @@ pub struct Hierarchy {
     pub work: Workspace,
 }
 
-/// Vectors of one V-cycle, reused from call to call: solution, right-hand side and scratch per level.
+/// Vectors of one V-cycle, reused from call to call: solution and right-hand side per level.
 #[derive(Debug, Default)]
 pub struct Workspace {
-    levels: Vec<[Vec<f64>; 3]>,
+    levels: Vec<[Vec<f64>; 2]>,
     /// Residual before restriction, correction after prolongation.
     transfer: Vec<f64>,
     /// Vectors of the conjugate gradients around it.
     pub vectors: Vectors,
+    /// Arrays of the last matrix, for the next one.
+    pub storage: Storage,
 }
 
 #[derive(Debug)]
@@ -156,7 +158,7 @@ impl Hierarchy {
         let Workspace { levels, transfer, .. } = work;
         for level in (1..self.sizes.len()).rev() {
             let (coarser, finer) = levels.split_at_mut(level);
-            let [x, b, _] = &mut finer[0];
+            let [x, b] = &mut finer[0];
             let matrix = &self.levels[level - 1];
             matrix.forward_from_zero(b, x);
             transfer.resize(x.len(), 0.0);
@@ -165,19 +167,19 @@ impl Hierarchy {
             coarser[level - 1][1].copy_from_slice(&transfer[..self.sizes[level - 1]]);
         }
         if let Some(coarse) = &self.coarse {
-            let [x, b, _] = &mut levels[0];
+            let [x, b] = &mut levels[0];
             coarse.solve(b, x);
         }
         for level in 1..self.sizes.len() {
             let (coarser, finer) = levels.split_at_mut(level);
-            let [x, b, rest] = &mut finer[0];
+            let [x, b] = &mut finer[0];
             transfer.clear();
             transfer.extend_from_slice(&coarser[level - 1][0]);
             prolong(&self.interpolation, x.len(), transfer);
             for (x, e) in x.iter_mut().zip(transfer.iter()) {
                 *x += e;
             }
-            self.levels[level - 1].backward(b, x, rest);
+            self.levels[level - 1].backward(b, x);
         }
     }
 }
@@ -222,15 +224,13 @@ impl Operator for Multilevel<'_> {
 
     fn precondition(&mut self, r: &[f64], z: &mut [f64], az: &mut [f64]) {
         self.matrix.forward_from_zero(r, z);
-        if let Some(finest) = self.hierarchy.sizes.len().checked_sub(1) {
+        let finest = self.hierarchy.sizes.len().checked_sub(1);
+        if let Some(finest) = finest {
             self.matrix.residual_after_forward(z, &mut self.work.levels[finest][1]);
             self.hierarchy.v_cycle(self.work);
-            for (z, e) in z.iter_mut().zip(&self.work.levels[finest][0]) {
-                *z += e;
-            }
         }
-        self.matrix.backward(r, z, az);
-        self.matrix.add_lower(z, az);
+        let correction = finest.map_or(&[][..], |finest| &self.work.levels[finest][0]);
+        self.matrix.backward_with_product(correction, z, az);
     }
 }
 
@@ -268,10 +268,10 @@ enum Factor {
 }
 
 impl Coarse {
-    /// Factorises the leading block by nested dissection.
+    /// Factorises the leading block by minimum degree.
     fn new(matrix: &Matrix, size: usize) -> Option<Coarse> {
         let mut block = leading_block(matrix, size);
-        let order = nested_dissection(&block);
+        let order = minimum_degree(&block);
         let scale = power_of_two_below(block.data().first().copied().unwrap_or(1.0)).recip();
         block.scale(scale);
         let factor = match size <= N_LIBRARY_MAX {

@@ -40,7 +40,7 @@ fn interval_of_every_bench_case_holds_the_reference() {
 
 /// Sizes of the ladder that this run affords; run the large ones in the release profile.
 fn sizes() -> &'static [usize] {
-    match std::env::var("RUN_SLOW_TESTS").is_ok_and(|v| v == "1") {
+    match crate::cases::is_slow() {
         true => &[1_000, 10_000, 100_000, 1_000_000],
         false => &[1_000, 10_000],
     }

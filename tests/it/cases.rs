@@ -17,87 +17,20 @@ pub struct Case {
 }
 
 /// Gapped pot core with a hole.
-pub const R1: Case = Case {
-    name: "R1",
-    sheet: r#"
-[materials.ferrite]
-permeability = 2000
-[core]
-material = "ferrite"
-form = "pot"
-outer_diameter = 25.5
-wall_inner_diameter = 21.2
-post_diameter = 11.5
-hole_diameter = 5.4
-height = 16.1
-window_height = 11.0
-[[gaps]]
-across = "post"
-length = 0.3
-[[windings]]
-name = "main"
-turns = 42
-radii = [6.6, 10.2]
-heights = [-4.9, 4.9]
-current = "1.8 A"
-"#,
-};
+pub const R1: Case =
+    Case { name: "R1", sheet: include_str!("../../validation/references/R1.toml") };
 
 /// Gapped pot core with a solid post.
-pub const R5: Case = Case {
-    name: "R5",
-    sheet: r#"
-[materials.ferrite]
-permeability = 1500
-[core]
-material = "ferrite"
-form = "pot"
-outer_diameter = 32
-wall_inner_diameter = 28
-post_diameter = 14
-height = 23
-window_height = 16
-[[gaps]]
-across = "post"
-length = 1.0
-[[windings]]
-name = "main"
-turns = 60
-radii = [8.2, 13.4]
-heights = [-7.2, 7.2]
-"#,
-};
+pub const R5: Case =
+    Case { name: "R5", sheet: include_str!("../../validation/references/R5.toml") };
 
 /// Air coil.
-pub const R7: Case = Case {
-    name: "R7",
-    sheet: r#"
-[[windings]]
-name = "coil"
-turns = 100
-radii = [20, 30]
-heights = [-5, 5]
-"#,
-};
+pub const R7: Case =
+    Case { name: "R7", sheet: include_str!("../../validation/references/R7.toml") };
 
 /// Rod with a short winding.
-pub const R8: Case = Case {
-    name: "R8",
-    sheet: r#"
-[materials.ferrite]
-permeability = 500
-[core]
-material = "ferrite"
-form = "rod"
-diameter = 10
-height = 100
-[[windings]]
-name = "coil"
-turns = 80
-radii = [5.5, 7]
-heights = [-10, 10]
-"#,
-};
+pub const R8: Case =
+    Case { name: "R8", sheet: include_str!("../../validation/references/R8.toml") };
 
 /// All four.
 pub const ALL: [Case; 4] = [R1, R5, R7, R8];

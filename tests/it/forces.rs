@@ -1,7 +1,7 @@
 //! The gap force against the difference quotient of the coenergy, the inductance's derivative, and the thin gap.
 
-use crate::cases::{R1, R5, Run, model};
-use gapwright::model::{Across, Model};
+use crate::cases::{R1, R5, R8, Run, model};
+use gapwright::model::{Across, Form, Model};
 use gapwright::results::GapResult;
 use gapwright::units::MU0;
 use std::f64::consts::PI;
@@ -102,24 +102,11 @@ fn force_on_a_spacer_is_the_derivative_of_the_coenergy() {
 
 #[test]
 fn force_on_the_pole_of_a_drum_or_rod_is_the_derivative_of_the_coenergy() {
-    let rod = r#"
-[materials.ferrite]
-permeability = 500
-[core]
-material = "ferrite"
-form = "rod"
-diameter = 10
-height = 60
-[[gaps]]
-across = "post"
-length = 1
-[[windings]]
-name = "coil"
-turns = 80
-radii = [5.5, 7]
-heights = [-10, 10]
-"#;
-    check("rod with a gap", model(rod, WIDTH));
+    let mut rod = R8.model(WIDTH);
+    rod.core.as_mut().unwrap().form =
+        Form::Rod { diameter: 10e-3, hole_diameter: 0.0, height: 60e-3 };
+    rod.gaps = R5.model(WIDTH).gaps;
+    check("rod with a gap", rod);
     let drum = r#"
 [materials.ferrite]
 permeability = 500

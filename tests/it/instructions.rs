@@ -4,6 +4,7 @@
 
 #![allow(clippy::print_stdout)]
 
+use crate::cases::is_slow;
 use serde_json::{Value, json};
 use std::path::{Path, PathBuf};
 use std::process::Command;
@@ -59,7 +60,7 @@ fn count(sheet: &str, interval: &str) -> u64 {
 
 #[test]
 fn instruction_counts_keep_their_band() {
-    if !is_set("RUN_SLOW_TESTS") {
+    if !is_slow() {
         println!("skipped, RUN_SLOW_TESTS is not set");
         return;
     }

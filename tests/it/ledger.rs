@@ -141,12 +141,12 @@ fn energy_is_half_of_inductance_and_current_squared() {
         equal("λI/2", 0.5 * results.windings[0].flux_linkage * current, results.energy, 1e-14);
         equal("dλ/dI", results.incremental_inductance.unwrap(), l.value, 1e-14);
         // The field's own energy is that of the low end but for a(ψ_h, e), of first order in the solver's rest e, whose
-        // energy is at most 3e-4 of an interval of 2e-3: √6e-7 = 8e-4 in the worst case; measured 1.4e-5.
+        // energy is at most 3e-5 of an interval of 2e-3: √6e-8 = 2e-4 in the worst case; measured 1.4e-5.
         let outcome = &run.outcome;
         let of_field: f64 = (0..outcome.mesh.triangles.len())
             .map(|t| {
                 TAU * linear_energy(
-                    &outcome.elements[t].k,
+                    &outcome.elements.k[t],
                     &outcome.solution.gradients(&outcome.mesh, t),
                 )
             })

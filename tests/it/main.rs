@@ -6,6 +6,8 @@ mod bench_smoke;
 mod blame;
 mod cases;
 mod cli;
+#[path = "../../validation/dice.rs"]
+mod dice;
 mod forces;
 mod guarantee;
 mod hot_spots;

@@ -1,18 +1,10 @@
 //! Sheets broken at random, with fixed seeds: a message each time, never a panic.
 
-use super::sheets::all;
+use crate::cases::is_slow;
+use crate::dice::Dice;
+use crate::sheets::all;
 use gapwright::geometry::outline;
 use gapwright::input::{read, render};
-
-/// Knuth's 64-bit linear congruence: the same sheets in every run.
-struct Dice(u64);
-
-impl Dice {
-    fn below(&mut self, n: usize) -> usize {
-        self.0 = self.0.wrapping_mul(6364136223846793005).wrapping_add(1442695040888963407);
-        (self.0 >> 33) as usize % n.max(1)
-    }
-}
 
 const SCRAPS: [&str; 26] = [
     "nan",
@@ -72,7 +64,7 @@ fn replace_a_value(letters: &mut Vec<char>, dice: &mut Dice) {
 
 #[test]
 fn broken_sheets_get_messages_and_no_panic() {
-    let n_mutations = if std::env::var_os("RUN_SLOW_TESTS").is_some() { 20_000 } else { 300 };
+    let n_mutations = if is_slow() { 20_000 } else { 300 };
     let table = "H [A/m],B [T]\n0,0\n100,0.3\n200,0.4\n";
     let mut n_read = 0;
     for (name, text) in all() {

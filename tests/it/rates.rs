@@ -12,13 +12,15 @@ use expect_test::expect_file;
 use fields::{AcrossAnEdge, AllSpace, AtTheAxis, all_space, skewed_box};
 use gapwright::mesh::Mesh;
 use gapwright::mesh::bisect::{Carried, bisect};
+use gapwright::mesh::fans::edge_triangles;
 use std::fmt::Write;
 
 /// Cuts every triangle into four.
 fn refine(mesh: &mut Mesh) {
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
     let (mut vertex, mut edge) = (vec![0.0; mesh.points.len()], vec![0.0; mesh.edges.len()]);
-    bisect(mesh, &all, &mut Carried { vertex: &mut vertex, edge: &mut edge });
+    let pairs = edge_triangles(mesh);
+    bisect(mesh, &pairs, &all, &mut Carried { vertex: &mut vertex, edge: &mut edge });
 }
 
 /// Errors on a mesh and on `n` refinements of it.

@@ -44,6 +44,15 @@ pub fn sheet(name: &str, text: &str) -> Sheet {
     })
 }
 
+/// No place of the value is against the schema.
+#[track_caller]
+pub fn satisfies(validator: &jsonschema::Validator, name: &str, value: &serde_json::Value) {
+    let errors = validator.iter_errors(value);
+    let errors: Vec<String> =
+        errors.map(|e| format!("{name}: {} {e}", e.instance_path())).collect();
+    assert!(errors.is_empty(), "{errors:#?}");
+}
+
 #[test]
 fn every_sheet_is_read_and_drawn() {
     for (name, text) in all() {
@@ -119,11 +128,7 @@ fn what_a_sheet_says_to_expect_is_what_comes_out() {
         let times = StageTimes { stages: vec![("first mesh".to_string(), 0.004)] };
         for times in [None, Some(&times)] {
             let value = serde_json::from_str(&result_json(&results, times)).unwrap();
-            let errors: Vec<String> = validator
-                .iter_errors(&value)
-                .map(|e| format!("{name}: {} {e}", e.instance_path()))
-                .collect();
-            assert!(errors.is_empty(), "{errors:#?}");
+            satisfies(&validator, &name, &value);
         }
     }
 }
@@ -188,11 +193,7 @@ fn the_table_of_every_sheet_satisfies_its_schema() {
         let wish = Wish { to, n_points: 4 };
         let found = saturate(&model, &outline, &wish, &mut |_, _| {}).unwrap();
         let value = serde_json::from_str(&saturate_json(&found, None)).unwrap();
-        let errors: Vec<String> = validator
-            .iter_errors(&value)
-            .map(|e| format!("{name}: {} {e}", e.instance_path()))
-            .collect();
-        assert!(errors.is_empty(), "{errors:#?}");
+        satisfies(&validator, &name, &value);
     }
 }
 
@@ -222,11 +223,7 @@ fn json(text: &str) -> serde_json::Value {
 fn every_sheet_validates_against_the_schema() {
     let validator = jsonschema::validator_for(&schema()).unwrap();
     for (name, text) in all() {
-        let errors: Vec<String> = validator
-            .iter_errors(&json(&text))
-            .map(|e| format!("{name}: {} {e}", e.instance_path()))
-            .collect();
-        assert!(errors.is_empty(), "{errors:#?}");
+        satisfies(&validator, &name, &json(&text));
     }
 }
 

@@ -9,8 +9,4 @@ mod draft;
 mod fuzz;
 mod judge;
 mod random;
-
-/// Whether the long campaigns were asked for.
-fn is_slow() -> bool {
-    std::env::var_os("RUN_SLOW_TESTS").is_some()
-}
+mod watch;

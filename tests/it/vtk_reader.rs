@@ -77,7 +77,7 @@ sections = [
 #[test]
 fn the_linkage_of_one_winding_is_the_low_end() {
     // λ(ψ_h) = b·x/I, the low end 2(b·x − ½ x·Ax)/I less the margin of 1e-9. They differ by x·(b − Ax)/I, of first order
-    // in what the solver left: at an interval of 1e-6 at most √(3e-4 · 1e-6) ≈ 2e-5 of λ in the worst direction, 1e-6 or
+    // in what the solver left: at an interval of 1e-6 at most √(3e-5 · 1e-6) ≈ 5e-6 of λ in the worst direction, 1e-6 or
     // less in practice, because conjugate gradients leave a rest that is nearly orthogonal to x.
     let Some(windings) = windings(R5.sheet, "1e-6") else { return };
     let [by_file, low, high] =

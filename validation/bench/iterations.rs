@@ -5,7 +5,7 @@ use gapwright::adapt::Outcome;
 use gapwright::fem::assemble;
 use gapwright::mesh::fans::Fans;
 use gapwright::sparse::cg::dot;
-use gapwright::sparse::{Multilevel, Stop, Swept, Workspace};
+use gapwright::sparse::{Multilevel, Stop, Storage, Swept, Workspace};
 use std::cell::RefCell;
 
 /// Relative error of the energy, ‖x − x*‖²_A/‖x*‖²_A, that counts as solved.
@@ -35,15 +35,16 @@ impl<'a> LastSystem<'a> {
     /// Assembles the last round's system again.
     pub fn new(outcome: &'a Outcome) -> LastSystem<'a> {
         let fans = Fans::new(&outcome.mesh);
-        let matrix = assemble::stiffness(&outcome.mesh, &outcome.space, &fans, &outcome.elements);
+        let Outcome { mesh, space, elements, .. } = outcome;
+        let matrix = assemble::stiffness(mesh, space, &fans, elements, Storage::default());
         let load = assemble::load(&outcome.mesh, &outcome.space, &outcome.coefficients);
         LastSystem { outcome, matrix: Swept::new(matrix), load, work: RefCell::default() }
     }
 
-    /// The iterate from zero after `n_iterations_max` iterations or at the wanted decrease, and how many were used.
-    pub fn solve(&self, decrease: f64, n_iterations_max: usize) -> (Vec<f64>, usize) {
+    /// The iterate from zero after `n_iterations_max` iterations or at the wanted error, and how many were used.
+    pub fn solve(&self, outstanding: f64, n_iterations_max: usize) -> (Vec<f64>, usize) {
         let mut work = self.work.borrow_mut();
-        let stop = Stop { decrease, n_iterations_max };
+        let stop = Stop { outstanding, of_lowered: 0.0, n_iterations_max };
         let mut x = vec![0.0; self.load.len()];
         let used = Multilevel::new(&self.matrix, &self.outcome.hierarchy, &mut work)
             .solve(&self.load, &mut x, &stop, 0.0);

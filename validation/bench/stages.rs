@@ -3,7 +3,7 @@
 use gapwright::adapt::{self, Event, Outcome, Stage};
 use gapwright::geometry::Outline;
 use gapwright::model::Model;
-use gapwright::report::vtk::{FieldCells, field_vtu};
+use gapwright::report::vtk::field_vtu;
 use gapwright::results::{collect, sample::Sampler};
 use std::time::Instant;
 
@@ -54,14 +54,8 @@ pub fn finish(stages: &mut Stages, model: &Model, outline: &Outline, outcome: &O
     std::hint::black_box(collect(model, outline, outcome));
     stages.seconds[5] = start.elapsed().as_secs_f64();
     let start = Instant::now();
-    let values = Sampler::new(outline, outcome).cell_values();
-    let cells = FieldCells {
-        b: values.b,
-        h: values.h,
-        permeability: values.permeability,
-        share: outcome.bound.shares.clone(),
-    };
-    let bytes = field_vtu(&outcome.mesh, &outcome.solution, &cells).unwrap();
+    let cells = Sampler::new(outline, outcome).cell_values();
+    let bytes = field_vtu(&outcome.mesh, &outcome.solution, &cells, &outcome.bound.shares).unwrap();
     stages.seconds[6] = start.elapsed().as_secs_f64();
     assert!(!bytes.is_empty());
 }

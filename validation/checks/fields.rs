@@ -20,9 +20,9 @@ pub fn rows() -> Vec<Row> {
 fn linear() -> Vec<Row> {
     let cases = field_cases();
     let models = [
-        ("R1", builders::r1(1.8), 1.8),
+        ("R1", builders::r1(), 1.8),
         ("R5", builders::r5(1500.0, 60.0, 1.0), 1.0),
-        ("R7", builders::r7(100.0, 1.0), 1.0),
+        ("R7", builders::r7(), 1.0),
         ("R8", builders::r8(), 1.0),
     ];
     let names = ["R1 gapped pot, hole", "R5 gapped pot, solid post", "R7 air coil", "R8 rod"];

@@ -1,9 +1,10 @@
 //! The coil quadrature against published values, against doubled orders, and against identities.
 
 use super::*;
+use crate::dice::Dice;
 use crate::elliptic::nagaoka;
-use crate::random::{Generator, air_coil};
-use crate::references::published;
+use crate::random::air_coil;
+use crate::references::{all_published, published};
 use std::f64::consts::PI;
 
 fn centred(r1: f64, r2: f64, h: f64) -> Coil {
@@ -12,9 +13,7 @@ fn centred(r1: f64, r2: f64, h: f64) -> Coil {
 
 #[test]
 fn self_inductance_agrees_with_the_published_rows() {
-    let rows = published("SELF-");
-    assert_eq!(rows.len(), 13);
-    for row in rows {
+    for row in all_published("SELF-", 13) {
         let (r1, r2, h) = (row.input("r1"), row.input("r2"), row.input("h"));
         // The rows carry 11 digits (9 for the flat discs).
         match h {
@@ -37,8 +36,8 @@ fn higher_orders_change_nothing_for_any_shape() {
         centred(1.0, 1e3, 1e-1),
         centred(0.5, 1.0, 1e-5),
     ];
-    let mut generator = Generator::new(11);
-    shapes.extend((0..6).map(|_| air_coil(&mut generator)));
+    let mut dice = Dice(11);
+    shapes.extend((0..6).map(|_| air_coil(&mut dice)));
     for coil in shapes {
         let (coarse, fine) = (self_inductance(&coil), self_inductance_with(&coil, finer));
         // The error statement at the head of the file.

@@ -5,13 +5,17 @@ use crate::report::fixture;
 use crate::report::svg::tests::{check_texts, text_boxes};
 
 fn draw(mirror: bool, hot_spots: &[HotSpot]) -> String {
-    let (field, outline) = (fixture::field(24), fixture::outline());
+    draw_field(&fixture::field(24), mirror, hot_spots)
+}
+
+fn draw_field(field: &fixture::Field, mirror: bool, hot_spots: &[HotSpot]) -> String {
+    let outline = fixture::outline();
     let map = FieldMap {
         title: "Buoy charger choke",
         mesh: &field.mesh,
         outline: &outline,
         solution: &field.solution,
-        b_corner: &field.b_corner,
+        b_corner: &field.cells.b_corner,
         hot_spots,
         mirror,
     };
@@ -53,20 +57,11 @@ fn plain_numbers_are_never_below_the_value() {
 #[test]
 fn equal_fields_give_equal_bytes_and_a_zero_field_is_drawn_too() {
     assert_eq!(draw(true, &[]), draw(true, &[]));
-    let (mut field, outline) = (fixture::field(6), fixture::outline());
+    let mut field = fixture::field(6);
     field.solution.vertex.fill(0.0);
     field.solution.edge.fill(0.0);
-    field.b_corner.fill([0.0; 3]);
-    let map = FieldMap {
-        title: "nothing",
-        mesh: &field.mesh,
-        outline: &outline,
-        solution: &field.solution,
-        b_corner: &field.b_corner,
-        hot_spots: &[],
-        mirror: false,
-    };
-    check_texts(&field_svg(&map));
+    field.cells.b_corner.fill([0.0; 3]);
+    check_texts(&draw_field(&field, false, &[]));
 }
 
 #[test]

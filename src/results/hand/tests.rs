@@ -1,72 +1,10 @@
 //! The hand sum against the field's references, and the blame on made-up wrong estimates.
 
 use super::*;
-use crate::model::{
-    Accuracy, Claim, Core, Estimate, Gap, HotSpotWish, Law, Material, MaterialId, Part, PotWall,
-    Section, Winding,
-};
+use crate::geometry::samples::{gap, r1 as choke, r5 as solid_choke};
+use crate::model::{Claim, Estimate, Law, MaterialId, Part};
 use crate::results::LedgerRow;
 use std::f64::consts::PI;
-
-/// A hollow pot core with one post gap, 42 turns: the buoy's choke. Lengths in metres.
-fn choke() -> Model {
-    Model {
-        title: "choke".into(),
-        materials: vec![Material { name: "m".into(), law: Law::Constant { permeability: 2000.0 } }],
-        core: Some(Core {
-            material: MaterialId(0),
-            form: Form::Pot {
-                wall: PotWall::OuterDiameter(25.5e-3),
-                wall_inner_diameter: 21.2e-3,
-                post_diameter: 11.5e-3,
-                hole_diameter: 5.4e-3,
-                height: 16.1e-3,
-                window_height: 11.0e-3,
-            },
-            corner_radius: 0.0,
-            joint: 0.0,
-        }),
-        gaps: vec![gap("post gap", Across::Post, 0.3e-3, 0.0)],
-        windings: vec![Winding {
-            name: "main".into(),
-            sections: vec![Section {
-                turns: 42.0,
-                radii: [6.6e-3, 10.2e-3],
-                heights: [-4.9e-3, 4.9e-3],
-            }],
-            current: 1.8,
-            ripple: 0.0,
-        }],
-        parts: vec![],
-        probes: vec![],
-        accuracy: Accuracy::default(),
-        estimate: None,
-        requirements: vec![],
-        hot_spots: HotSpotWish::default(),
-    }
-}
-
-/// A solid pot core with a 1 mm post gap, 60 turns.
-fn solid_choke() -> Model {
-    let mut model = choke();
-    model.materials[0].law = Law::Constant { permeability: 1500.0 };
-    model.core.as_mut().unwrap().form = Form::Pot {
-        wall: PotWall::OuterDiameter(32e-3),
-        wall_inner_diameter: 28e-3,
-        post_diameter: 14e-3,
-        hole_diameter: 0.0,
-        height: 23e-3,
-        window_height: 16e-3,
-    };
-    model.gaps[0].length = 1e-3;
-    let section = Section { turns: 60.0, radii: [8.2e-3, 13.4e-3], heights: [-7.2e-3, 7.2e-3] };
-    model.windings[0].sections = vec![section];
-    model
-}
-
-fn gap(name: &str, across: Across, length: f64, center: f64) -> Gap {
-    Gap { name: name.into(), across, length, center }
-}
 
 fn estimate(claim: Claim, gap_correction: GapCorrection) -> Estimate {
     Estimate { claim, gap_correction, tolerance: 0.05 }
@@ -142,7 +80,7 @@ fn legs_lose_what_is_ground_out_of_them() {
 #[test]
 fn a_spacer_gives_a_row_in_each_leg_and_no_leg_gets_shorter() {
     let mut model = choke();
-    model.gaps = vec![gap("shim", Across::Spacer, 0.2e-3, 0.0)];
+    model.gaps = vec![gap("shim", Across::Spacer, 0.2, 0.0)];
     model.core.as_mut().unwrap().joint = 3e-6;
     let sum = hand_sum(&model).unwrap();
     let names: Vec<&str> = sum.rows.iter().map(|row| row.region.as_str()).collect();
@@ -182,11 +120,11 @@ fn poles_know_the_room_on_their_flanks() {
     assert_eq!(gap_pole(&model, 0, Leg::Wall), None);
     assert_eq!(gap_area(&model, 0, Leg::Wall), 0.0);
 
-    model.gaps.push(gap("second", Across::Post, 0.3e-3, 2.3e-3));
+    model.gaps.push(gap("second", Across::Post, 0.3, 2.3));
     let pole = gap_pole(&model, 0, Leg::Post).unwrap();
     close(pole.outer_heights[1], 1e-3, 1e-9); // half of the 2 mm of post between the two
     close(pole.outer_heights[0], 5.35e-3, 1e-12);
-    let wall = Model { gaps: vec![gap("w", Across::Wall, 0.2e-3, 0.0)], ..choke() };
+    let wall = Model { gaps: vec![gap("w", Across::Wall, 0.2, 0.0)], ..choke() };
     let pole = gap_pole(&wall, 0, Leg::Wall).unwrap();
     close(pole.inner_heights[0], 5.4e-3, 1e-12);
     close(pole.outer_heights[0], 7.95e-3, 1e-12); // to the core's end
@@ -195,24 +133,21 @@ fn poles_know_the_room_on_their_flanks() {
 #[test]
 fn gaps_that_touch_bulge_as_one() {
     let mut model = choke();
-    model.gaps = vec![
-        gap("lower", Across::Post, 0.2e-3, -0.1e-3),
-        gap("upper", Across::Post, 0.1e-3, 0.05e-3),
-    ];
+    model.gaps = vec![gap("lower", Across::Post, 0.2, -0.1), gap("upper", Across::Post, 0.1, 0.05)];
     let halves = hand_sum(&model).unwrap();
-    model.gaps = vec![gap("one", Across::Post, 0.3e-3, -0.05e-3)];
+    model.gaps = vec![gap("one", Across::Post, 0.3, -0.05)];
     close(halves.total, hand_sum(&model).unwrap().total, 1e-9);
 }
 
 #[test]
 fn spacers_are_stacked_and_bulge_as_one() {
     let mut model = choke();
-    model.gaps = [0.1e-3, 0.2e-3].map(|length| gap("shim", Across::Spacer, length, 0.0)).to_vec();
+    model.gaps = [0.1, 0.2].map(|length| gap("shim", Across::Spacer, length, 0.0)).to_vec();
     let pole = gap_pole(&model, 1, Leg::Wall).unwrap();
     close(pole.length, 0.3e-3, 1e-12);
     close(pole.inner_heights[0], 5.5e-3, 1e-12); // the plates have moved with the legs
     let two = hand_sum(&model).unwrap();
-    model.gaps = vec![gap("shim", Across::Spacer, 0.3e-3, 0.0)];
+    model.gaps = vec![gap("shim", Across::Spacer, 0.3, 0.0)];
     close(two.total, hand_sum(&model).unwrap().total, 1e-12);
 }
 
@@ -221,7 +156,7 @@ fn distributed_gaps_have_more_reluctance_than_one_of_the_same_length() {
     // The plain sums agree; each short gap bulges less than the long one.
     let mut model = choke();
     model.gaps = (0..3)
-        .map(|i| gap(&format!("gap {i}"), Across::Post, 0.1e-3, 3e-3 * (f64::from(i) - 1.0)))
+        .map(|i| gap(&format!("gap {i}"), Across::Post, 0.1, 3.0 * (f64::from(i) - 1.0)))
         .collect();
     for correction in [
         GapCorrection::OneGapLength,
@@ -341,7 +276,7 @@ fn a_plate_that_is_half_as_thick_is_named() {
 #[test]
 fn of_two_gaps_the_wrong_one_is_named() {
     let mut model = choke();
-    model.gaps = vec![gap("shim", Across::Spacer, 0.15e-3, 0.0)];
+    model.gaps = vec![gap("shim", Across::Spacer, 0.15, 0.0)];
     let claimed = with_correction(model, GapCorrection::Corner);
     let mut truth = claimed.clone();
     truth.rows[5].reluctance *= 0.6;

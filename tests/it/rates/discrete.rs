@@ -4,14 +4,14 @@
 
 use gapwright::fem::assemble;
 use gapwright::fem::element::{Frame, Pair, blend, contract, dot};
-use gapwright::fem::elements::{LOCAL_EDGES, update_constant};
+use gapwright::fem::elements::{Elements, LOCAL_EDGES};
 use gapwright::fem::moments::rule_of;
 use gapwright::fem::{Coefficients, Reluctivity, Rules, Space, evaluate};
 use gapwright::mesh::fans::{Fans, NO_TRIANGLE, edge_triangles};
 use gapwright::mesh::{Mesh, RegionId};
 use gapwright::model::Point;
 use gapwright::solve::Solution;
-use gapwright::sparse::{Hierarchy, Matrix, Multilevel, Stop, Swept, Workspace};
+use gapwright::sparse::{Hierarchy, Matrix, Multilevel, Stop, Storage, Swept, Workspace};
 
 /// A field that is known everywhere: ψ, ∇ψ and the current density that drives it, in physical space.
 pub trait Exact {
@@ -82,10 +82,10 @@ pub fn errors(mesh: &Mesh, exact: &dyn Exact) -> Errors {
             .collect(),
         current_density: vec![0.0; n_regions as usize],
     };
-    let mut elements = Vec::new();
+    let mut elements = Elements::default();
     let all: Vec<u32> = (0..mesh.triangles.len() as u32).collect();
-    update_constant(mesh, &coefficients, &Rules::working(), &all, &mut elements);
-    let matrix = assemble::stiffness(mesh, &space, &Fans::new(mesh), &elements);
+    elements.update_constant(mesh, &coefficients, &Rules::working(), &all);
+    let matrix = assemble::stiffness(mesh, &space, &Fans::new(mesh), &elements, Storage::default());
     let load = load(mesh, &space, exact);
     let fixed = border_values(mesh, &space, exact);
     let x = solve(&matrix, load, &fixed);
@@ -185,7 +185,7 @@ fn solve(matrix: &Matrix, mut b: Vec<f64>, fixed: &[Option<f64>]) -> Vec<f64> {
     let reduced = Swept::new(Matrix::new((n, n), start, columns, values));
     let mut x = vec![0.0; n];
     // 1e-22 of the energy is 1e-11 of the field: far below the smallest error that is measured.
-    let stop = Stop { decrease: 1e-22, n_iterations_max: 20_000 };
+    let stop = Stop { outstanding: 1e-22, of_lowered: 0.0, n_iterations_max: 20_000 };
     let (hierarchy, mut work) = (Hierarchy::default(), Workspace::default());
     Multilevel::new(&reduced, &hierarchy, &mut work).solve(&b, &mut x, &stop, 0.0).unwrap();
     for (x, given) in x.iter_mut().zip(fixed) {

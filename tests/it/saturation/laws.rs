@@ -1,6 +1,8 @@
 //! Random laws and hard starts: no failed Newton iteration, no negative share, intervals that hold a finer solve.
 
 use super::{Run, sheet};
+use crate::cases::is_slow;
+use crate::dice::Dice;
 use gapwright::adapt::again::at_density;
 use gapwright::model::{BhTable, Interpolation, Law, Model};
 use gapwright::solve::Solution;
@@ -9,31 +11,19 @@ use gapwright::units::MU0;
 /// Newton steps that the hardest laws may need.
 const N_STEPS_MAX: usize = 25;
 
-/// Numbers in 0 … 1 by a linear congruence: the same in every run.
-struct Numbers(u64);
-
-impl Numbers {
-    fn next(&mut self) -> f64 {
-        self.0 =
-            self.0.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
-        (self.0 >> 11) as f64 / (1_u64 << 53) as f64
-    }
-}
-
 /// A monotone table with slopes from µ0 to 10⁵ µ0 in random order: corners, knees, wasp waists.
-fn random_table(numbers: &mut Numbers) -> Law {
-    let n = 2 + (8.0 * numbers.next()) as usize;
+fn random_table(dice: &mut Dice) -> Law {
+    let n = 2 + (8.0 * dice.uniform(0.0, 1.0)) as usize;
     let (mut h, mut b) = (vec![0.0], vec![0.0]);
     for i in 0..n {
-        let step = 10f64.powf(1.0 + 3.0 * numbers.next());
-        let slope = MU0 * 10f64.powf(5.0 * numbers.next()).max(1.000_01);
+        let step = dice.log_uniform(10.0, 1e4);
+        let slope = MU0 * dice.log_uniform(1.0, 1e5).max(1.000_01);
         // The steps of B stay below 1 T, so that the energies are those of materials.
-        let rise = (slope * step).min(MU0 * step + numbers.next());
+        let rise = (slope * step).min(MU0 * step + dice.uniform(0.0, 1.0));
         h.push(h[i] + step);
         b.push(b[i] + rise);
     }
-    let interpolation =
-        if numbers.next() < 0.5 { Interpolation::Smooth } else { Interpolation::Linear };
+    let interpolation = if dice.with(0.5) { Interpolation::Smooth } else { Interpolation::Linear };
     Law::Table(BhTable::new(h, b, interpolation).unwrap())
 }
 
@@ -44,17 +34,12 @@ fn with_law(law: Law, current: f64) -> Model {
     model
 }
 
-/// A tenth of the campaign unless RUN_SLOW_TESTS is set.
-fn n_cases() -> usize {
-    if std::env::var_os("RUN_SLOW_TESTS").is_some() { 100 } else { 10 }
-}
-
 #[test]
 fn random_monotone_tables_never_fail_and_every_interval_holds_a_finer_solve() {
-    let mut numbers = Numbers(20_240_611);
-    for case in 0..n_cases() {
-        let law = random_table(&mut numbers);
-        let current = 10f64.powf(-1.0 + 3.5 * numbers.next());
+    let mut dice = Dice(20_240_611);
+    for case in 0..if is_slow() { 100 } else { 10 } {
+        let law = random_table(&mut dice);
+        let current = dice.log_uniform(0.1, 300.0);
         // Shares are asserted inside: the test profile has debug assertions.
         let coarse = Run::new(with_law(law.clone(), current), 1e-2);
         let fine = Run::new(with_law(law, current), 1e-3);
@@ -71,7 +56,7 @@ fn random_monotone_tables_never_fail_and_every_interval_holds_a_finer_solve() {
 
 #[test]
 fn newton_converges_far_beyond_saturation_from_any_start() {
-    let mut numbers = Numbers(7);
+    let mut dice = Dice(7);
     for name in ["lamp_choke_saturating.toml", "saturating_choke.toml", "chamfered_tip.toml"] {
         let mut run = Run::new(sheet(name), 1e-2);
         // The knee is at a few amperes: 100 × beyond it.
@@ -81,7 +66,7 @@ fn newton_converges_far_beyond_saturation_from_any_start() {
             let zero = |field: &[f64]| vec![0.0; field.len()];
             let solution = run.outcome.solution.clone();
             let mut noise = |field: &[f64]| -> Vec<f64> {
-                field.iter().map(|_| 1e-3 * (numbers.next() - 0.5)).collect()
+                field.iter().map(|_| 1e-3 * (dice.uniform(0.0, 1.0) - 0.5)).collect()
             };
             let times = |field: &[f64], f: f64| field.iter().map(|v| f * v).collect::<Vec<f64>>();
             let starts = [

@@ -1,12 +1,14 @@
 //! Sheets with random bytes changed, through the whole path: no panic, no endless loop.
 
-use super::is_slow;
-use super::random::Dice;
+use super::watch;
+use crate::cases::is_slow;
+use crate::dice::Dice;
 use crate::sheets::all;
 use gapwright::adapt::run;
 use gapwright::geometry::outline;
 use gapwright::input::{decode, read};
 use gapwright::model::Accuracy;
+use std::panic::catch_unwind;
 use std::time::Instant;
 
 /// Longest that one broken sheet may take [s], 50 times what the slowest took at this accuracy on a busy machine.
@@ -32,33 +34,49 @@ fn mutated(text: &str, dice: &mut Dice) -> Vec<u8> {
     bytes
 }
 
+/// One broken sheet: its text if it could be read, the unknowns of its solution, and the time it took [s].
+struct Tried {
+    text: String,
+    n_unknowns: Option<usize>,
+    seconds: f64,
+}
+
+fn tried(name: &str, text: &str, dice: &mut Dice) -> Tried {
+    let table = "H [A/m],B [T]\n0,0\n100,0.3\n200,0.4\n";
+    let start = Instant::now();
+    let text = decode(&mutated(text, dice), name).unwrap_or_default();
+    let n_unknowns = catch_unwind(|| {
+        let mut sheet = read(&text, name, &|_| Ok(table.into())).ok()?;
+        sheet.model.accuracy = Accuracy { interval: 0.2, n_unknowns_max: 20_000 };
+        let outcome = run(&sheet.model, &outline(&sheet.model).ok()?, &mut |_| {}).ok()?;
+        let (low, high) = (outcome.bound.low, outcome.bound.high);
+        assert!(0.0 <= low && low <= high, "{low} {high}");
+        Some(outcome.space.n_dofs)
+    })
+    .unwrap_or_else(|_| panic!("panicked on a broken {name}:\n{text}"));
+    let seconds = start.elapsed().as_secs_f64();
+    assert!(seconds < SECONDS_MAX, "{seconds} s\n{text}");
+    Tried { text, n_unknowns, seconds }
+}
+
 #[test]
 fn broken_bytes_never_panic_nor_run_for_ever() {
-    let n_mutations = if is_slow() { 1000 } else { 5 };
-    let table = "H [A/m],B [T]\n0,0\n100,0.3\n200,0.4\n";
-    let (mut n_tried, mut n_solved, mut slowest) = (0, 0, (0.0, String::new()));
-    for (name, text) in all() {
-        let mut dice = Dice(name.len() as u64);
-        for _ in 0..n_mutations {
-            n_tried += 1;
-            let start = Instant::now();
-            let bytes = mutated(&text, &mut dice);
-            let Ok(broken) = decode(&bytes, &name) else { continue };
-            let Ok(mut sheet) = read(&broken, &name, &|_| Ok(table.into())) else { continue };
-            sheet.model.accuracy = Accuracy { interval: 0.2, n_unknowns_max: 20_000 };
-            let Ok(outline) = outline(&sheet.model) else { continue };
-            if let Ok(outcome) = run(&sheet.model, &outline, &mut |_| {}) {
-                n_solved += 1;
-                let (low, high) = (outcome.bound.low, outcome.bound.high);
-                assert!(0.0 <= low && low <= high, "{low} {high}\n{broken}");
-            }
-            let seconds = start.elapsed().as_secs_f64();
-            assert!(seconds < SECONDS_MAX, "{seconds} s\n{broken}");
-            if seconds > slowest.0 {
-                slowest = (seconds, broken);
-            }
-        }
-    }
-    println!("tried {n_tried}, solved {n_solved}, slowest {:.2} s:\n{}", slowest.0, slowest.1);
-    assert!(10 * n_solved > n_tried);
+    let n_mutations = if is_slow() { 5000 } else { 5 };
+    let sheets = all();
+    let work = |k: u64| {
+        let (name, text) = &sheets[(k / n_mutations) as usize];
+        tried(name, text, &mut Dice(k))
+    };
+    let size =
+        |tried: &Tried| format!("{} unknowns\n{}", tried.n_unknowns.unwrap_or(0), tried.text);
+    let found = watch::all("mutation", n_mutations * sheets.len() as u64, work, size);
+    let n_solved = found.iter().filter(|tried| tried.n_unknowns.is_some()).count();
+    let slowest = found.iter().max_by(|a, b| a.seconds.total_cmp(&b.seconds)).unwrap();
+    println!(
+        "tried {}, solved {n_solved}, slowest {:.2} s, {}",
+        found.len(),
+        slowest.seconds,
+        size(slowest)
+    );
+    assert!(10 * n_solved > found.len());
 }

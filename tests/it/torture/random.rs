@@ -1,45 +1,7 @@
 //! Random sections from fixed seeds: cores, gaps, windings, polygons; touching and overlapping ones included.
 
 use super::draft::{Coil, Draft, Law};
-
-/// The splitmix64 sequence. Source: G. L. Steele, D. Lea, C. H. Flood, OOPSLA 2014 (constants from memory).
-pub struct Dice(pub u64);
-
-impl Dice {
-    /// The next 64 bits.
-    pub fn bits(&mut self) -> u64 {
-        self.0 = self.0.wrapping_add(0x9e37_79b9_7f4a_7c15);
-        let mut z = self.0;
-        z = (z ^ (z >> 30)).wrapping_mul(0xbf58_476d_1ce4_e5b9);
-        z = (z ^ (z >> 27)).wrapping_mul(0x94d0_49bb_1331_11eb);
-        z ^ (z >> 31)
-    }
-
-    /// Uniform in [low, high).
-    pub fn uniform(&mut self, low: f64, high: f64) -> f64 {
-        low + (high - low) * ((self.bits() >> 11) as f64 / (1u64 << 53) as f64)
-    }
-
-    /// Uniform in the logarithm, in [low, high).
-    pub fn log_uniform(&mut self, low: f64, high: f64) -> f64 {
-        self.uniform(low.ln(), high.ln()).exp()
-    }
-
-    /// True with that probability.
-    pub fn with(&mut self, probability: f64) -> bool {
-        self.uniform(0.0, 1.0) < probability
-    }
-
-    /// A whole number below n.
-    pub fn below(&mut self, n: usize) -> usize {
-        (self.bits() % n.max(1) as u64) as usize
-    }
-
-    /// One of a list.
-    pub fn pick<T: Copy>(&mut self, list: &[T]) -> T {
-        list[self.below(list.len())]
-    }
-}
+use crate::dice::Dice;
 
 /// Radii and heights that the section already has, for things that are to touch, and the boxes of its shapes.
 struct Places {
