@@ -27,9 +27,11 @@ const N_CLIMBS_A_SPOT: usize = 3;
 const FINEST_STEP: f64 = 0.06;
 /// Places closer than this share of the radius are one: far below the finest step, far above rounding.
 const SAME_PLACE: f64 = 1e-6;
-/// A disc as close as this share of the radius to an earlier climb's top, and no hotter, is on the way there. Found the
-/// same spots as climbs to their end in 218 fields of 100 sections; with 0.5 one spot fewer in one of them.
+/// A disc as close as this share of the radius to the top of an earlier climb is on the way there, unless it lies on a ridge:
+/// less than [`FLAT`] of the top's mean below it. In 1188 fields of 594 sections that led to the same spots as climbs to
+/// their end; without the ridge one of them had a spot fewer, with 0.4 of the radius and 1e-3 six.
 const SAME_TOP: f64 = 0.25;
+const FLAT: f64 = 1e-4;
 
 /// The `count` hottest discs, hottest first, at least two radii apart.
 ///
@@ -99,10 +101,11 @@ fn climb(
     let same = SAME_PLACE * rule.radius;
     let mut step = 0.5 * rule.radius;
     for _ in 0..N_MOVES_MAX {
-        let is_below = |top: &Disc| {
-            disc.mean <= top.mean && distance(disc.at, top.at) < SAME_TOP * rule.radius
+        let leads_to = |top: &Disc| {
+            disc.mean < (1.0 - FLAT) * top.mean
+                && distance(disc.at, top.at) < SAME_TOP * rule.radius
         };
-        if tops.iter().any(is_below) {
+        if tops.iter().any(leads_to) {
             return None;
         }
         let mut best = disc;
