@@ -32,6 +32,7 @@ pub(crate) fn results() -> Results {
         ],
         wanted: 1e-3,
         reached: true,
+        unresolved: None,
         inductance: Some(Guaranteed { value: 700.616e-6, low: 700.301e-6, high: 700.949e-6 }),
         inductance_factor: Some(Guaranteed {
             value: 397.175e-9,

@@ -13,7 +13,7 @@ use super::terminal::{
     Look, NAME_WIDTH, WIDTH, heading, notes, opening, push, push_table, requirement_line,
     stage_times,
 };
-use super::{StageTimes, too_wide};
+use super::{MORE_UNKNOWNS, StageTimes, too_wide};
 use crate::study::saturate::{Row, Saturation};
 use crate::units::engineering;
 use schemars::JsonSchema;
@@ -220,7 +220,7 @@ fn shortfall(found: &Saturation) -> Option<String> {
     let rows = found.rows.iter().filter(|row| 0.0 < row.current);
     let widest = rows.max_by(|a, b| width(a).total_cmp(&width(b)))?;
     let what = format!("coenergy at {}", engineering(widest.current, "A", 3));
-    Some(too_wide(&what, width(widest), found.wanted))
+    Some(too_wide(&what, width(widest), found.wanted, MORE_UNKNOWNS))
 }
 
 /// The whole screen of `saturate`, ending in a line break.

@@ -59,6 +59,7 @@ pub fn collect(model: &Model, outline: &Outline, outcome: &Outcome) -> Results {
         rounds: rounds(model, outcome, carrier.filter(|_| is_linear)),
         wanted: model.accuracy.interval,
         reached: outcome.reached,
+        unresolved: outcome.unresolved,
         inductance,
         inductance_factor: inductance.map(|l| scaled(l, 1.0 / (turns * turns))),
         incremental_inductance,

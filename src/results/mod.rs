@@ -16,6 +16,7 @@ pub use collect::{collect, single_carrier};
 pub use requirements::check_requirements;
 pub use ripple::ripple;
 
+use crate::model::Point;
 use crate::units::{Ampere, CubicMeter, Henry, Joule, Meter, Newton, PerHenry, Tesla, Weber};
 
 /// A quantity with its guaranteed ends.
@@ -184,6 +185,8 @@ pub struct Results {
     /// Wanted relative width; `reached` tells whether the rounds got there.
     pub wanted: f64,
     pub reached: bool,
+    /// Where no mesh resolves the field, if that is what stopped the rounds.
+    pub unresolved: Option<Point>,
     /// `None` with several currents.
     pub inductance: Option<Guaranteed>,
     pub inductance_factor: Option<Guaranteed>,
