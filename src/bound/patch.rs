@@ -13,7 +13,7 @@ use crate::mesh::fans::{Blade, Fans};
 /// matrices are then read once and not three times from memory.
 pub fn equilibrate(field: &Field, fans: &Fans, patchwork: &[Patchwork]) -> Flux {
     /// Vertices of one piece of work.
-    const N_PIECE: usize = 512;
+    const N_PIECE: usize = 128;
     let mesh = field.mesh;
     let mut flux = Flux { through: vec![0.0; mesh.edges.len()], tilt: vec![0.0; mesh.edges.len()] };
     let pieces: Vec<&[u32]> = fans.tour.chunks(N_PIECE).collect();

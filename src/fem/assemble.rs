@@ -25,7 +25,7 @@ pub fn stiffness(
     storage: Storage,
 ) -> Matrix {
     /// Vertices or edges of one piece of work.
-    const N_PIECE: usize = 1024;
+    const N_PIECE: usize = 256;
     let dofs = (0..mesh.triangles.len()).map(|t| space.dofs(mesh, t)).collect();
     let rows = Rows { mesh, space, fans, elements, dofs };
     let Storage { mut start, mut columns, mut values } = storage;

@@ -98,7 +98,7 @@ impl Elements {
         fresh: &[u32],
     ) {
         /// Triangles of one piece of work.
-        const N_PIECE: usize = 256;
+        const N_PIECE: usize = 64;
         self.resize(mesh.triangles.len());
         let element =
             |&t: &u32| match &coefficients.reluctivity[mesh.regions[t as usize].0 as usize] {

@@ -11,7 +11,7 @@ use std::f64::consts::PI;
 /// about the same share of the field's variation over the triangle.
 const AXIS_NUDGE: f64 = 1e-9;
 
-/// `lambda` moved off the axis by [`AXIS_NUDGE`].
+/// `lambda` moved off the axis by `AXIS_NUDGE`.
 #[inline]
 pub fn off_axis(lambda: &[f64; 3]) -> [f64; 3] {
     lambda.map(|l| l * (1.0 - AXIS_NUDGE) + AXIS_NUDGE / 3.0)

@@ -3,7 +3,7 @@
 /// When to stop.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Stop {
-    /// Stop when the steps still to come would lower xᵀAx − 2bᵀx by less than this share of bᵀx, see [`outstanding`].
+    /// Stop when the steps still to come would lower xᵀAx − 2bᵀx by less than this share of bᵀx, as `outstanding` estimates it.
     pub outstanding: f64,
     /// Or by less than this share of what all steps have lowered: enough for a Newton step, which is not exact itself.
     pub of_lowered: f64,
