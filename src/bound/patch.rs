@@ -24,9 +24,9 @@ pub fn equilibrate(field: &Field, fans: &Fans, patchwork: &[Patchwork]) -> Flux 
             let (fan, is_open) = (fans.around(v as usize), mesh.on_axis[v as usize]);
             work.solve(fan, is_open, &field.elements.gram, patchwork, &mut spokes);
         }
-        (piece, spokes)
+        spokes
     };
-    in_order(pieces.len(), solve, |(piece, spokes)| {
+    in_order(pieces.len(), solve, |piece, spokes| {
         let mut spokes = spokes.iter();
         for &v in pieces[piece] {
             let (fan, is_open) = (fans.around(v as usize), mesh.on_axis[v as usize]);

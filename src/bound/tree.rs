@@ -4,7 +4,7 @@ use super::{Field, Flux};
 use crate::fem::Reluctivity;
 use crate::fem::element::Frame;
 use crate::mesh::Mesh;
-use crate::mesh::fans::{Fans, NO_TRIANGLE};
+use crate::mesh::fans::{Fans, NO_TRIANGLE, beside, place_of};
 use crate::units::MU0;
 use std::collections::VecDeque;
 
@@ -52,11 +52,9 @@ fn spanning_tree(field: &Field, fans: &Fans) -> (Vec<u32>, Vec<u8>) {
     while let Some(t) = queues.iter_mut().find_map(VecDeque::pop_front) {
         order.push(t);
         for &e in &mesh.triangle_edges[t as usize] {
-            let pair = fans.edge_triangles[e as usize];
-            let other = if pair[0] == t { pair[1] } else { pair[0] };
+            let other = beside(fans.edge_triangles[e as usize], t);
             if other != NO_TRIANGLE && parent[other as usize] == u8::MAX {
-                let edges = mesh.triangle_edges[other as usize];
-                parent[other as usize] = u8::from(edges[1] == e) + 2 * u8::from(edges[2] == e);
+                parent[other as usize] = place_of(&mesh.triangle_edges[other as usize], e);
                 queues[class_of(other)].push_back(other);
             }
         }

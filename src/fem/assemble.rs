@@ -6,7 +6,7 @@ use super::element::{Frame, GRADIENT, Pair};
 use super::elements::{Elements, LOCAL_EDGES, PLACE};
 use super::space::{NONE, Space};
 use crate::mesh::Mesh;
-use crate::mesh::fans::{Fans, NO_TRIANGLE};
+use crate::mesh::fans::{Fans, NO_TRIANGLE, place_of};
 use crate::sparse::{Matrix, Storage};
 use std::ops::Range;
 
@@ -41,7 +41,7 @@ pub fn stiffness(
     in_order(
         n_owners.div_ceil(N_PIECE),
         |piece| rows.gather(piece * N_PIECE..n_owners.min((piece + 1) * N_PIECE)),
-        |piece| {
+        |_, piece| {
             let before = columns.len();
             start.extend(piece.ends.iter().map(|end| before + end));
             columns.extend_from_slice(&piece.columns);
@@ -166,8 +166,7 @@ impl Rows<'_> {
                 continue;
             }
             let t = t as usize;
-            let own = self.mesh.triangle_edges[t];
-            let k = usize::from(own[1] as usize == edge) + 2 * usize::from(own[2] as usize == edge);
+            let k = usize::from(place_of(&self.mesh.triangle_edges[t], edge as u32));
             let (next, far) = ((k + 1) % 3, (k + 2) % 3);
             let (dofs, stiffness) = (&self.dofs[t], &self.elements.stiffness[t]);
             let entry = |l: usize| stiffness[PLACE[3 + k][l]];

@@ -4,18 +4,22 @@
 
 use rayon::prelude::*;
 
-/// Calls `make` for 0..n and `take` with every result, in order; a batch of `make` runs on all threads.
-pub fn in_order<T: Send>(n: usize, make: impl Fn(usize) -> T + Sync, mut take: impl FnMut(T)) {
+/// Calls `make` for the pieces 0..n and `take` with each piece and its result, in order; a batch of `make` runs on all threads.
+pub fn in_order<T: Send>(
+    n: usize,
+    make: impl Fn(usize) -> T + Sync,
+    mut take: impl FnMut(usize, T),
+) {
     /// Pieces a thread gets in one batch: enough to even out their work.
     const N_PIECES: usize = 4;
     let n_threads = rayon::current_num_threads();
     if n_threads == 1 {
-        return (0..n).for_each(|piece| take(make(piece)));
+        return (0..n).for_each(|piece| take(piece, make(piece)));
     }
     let n_batch = N_PIECES * n_threads;
     for first in (0..n).step_by(n_batch) {
         let batch = first..n.min(first + n_batch);
-        let made: Vec<T> = batch.into_par_iter().map(&make).collect();
-        made.into_iter().for_each(&mut take);
+        let made: Vec<T> = batch.clone().into_par_iter().map(&make).collect();
+        batch.zip(made).for_each(|(piece, result)| take(piece, result));
     }
 }

@@ -113,7 +113,7 @@ impl Elements {
         in_order(
             pieces.len(),
             |piece| pieces[piece].iter().filter_map(element).collect::<Vec<_>>(),
-            |made| made.iter().for_each(|(t, element)| self.set(*t as usize, element)),
+            |_, made| made.iter().for_each(|(t, element)| self.set(*t as usize, element)),
         );
     }
 }

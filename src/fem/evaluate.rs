@@ -1,7 +1,7 @@
 //! Field values at points: B from ψ in either chart, and a walk that finds the triangle of a point.
 
 use super::element::{Frame, Gauge, Pair, blend, dot, wedge};
-use crate::mesh::fans::NO_TRIANGLE;
+use crate::mesh::fans::{NO_TRIANGLE, beside};
 use crate::mesh::{Chart, Mesh};
 use crate::model::Point;
 use crate::units::{Tesla, WeberPerRadian};
@@ -114,7 +114,7 @@ pub fn lowest(lambda: &[f64; 3]) -> (usize, f64) {
 pub fn across(mesh: &Mesh, edge_triangles: &[[u32; 2]], t: usize, k: usize) -> Option<usize> {
     // The edge opposite corner k is local edge k + 1.
     let pair = edge_triangles[mesh.triangle_edges[t][(k + 1) % 3] as usize];
-    let next = if pair[0] as usize == t { pair[1] } else { pair[0] };
+    let next = beside(pair, t as u32);
     let is_in_chart = next != NO_TRIANGLE && mesh.charts[next as usize] == mesh.charts[t];
     is_in_chart.then_some(next as usize)
 }

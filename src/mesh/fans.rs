@@ -74,11 +74,21 @@ fn turn(mesh: &Mesh, edge_triangles: &[[u32; 2]], blade: Blade) -> Blade {
     let (t, k) = (blade.triangle as usize, blade.corner as usize);
     let v = mesh.triangles[t][k];
     let pair = edge_triangles[mesh.triangle_edges[t][(k + 2) % 3] as usize];
-    let next = if pair[0] == blade.triangle { pair[1] } else { pair[0] };
+    let next = beside(pair, blade.triangle);
     assert!(next != NO_TRIANGLE, "fan of vertex {v} is torn");
-    let corners = mesh.triangles[next as usize];
-    let corner = u8::from(corners[1] == v) + 2 * u8::from(corners[2] == v);
-    Blade { triangle: next, corner }
+    Blade { triangle: next, corner: place_of(&mesh.triangles[next as usize], v) }
+}
+
+/// The other triangle of an edge's two.
+#[inline]
+pub fn beside(pair: [u32; 2], triangle: u32) -> u32 {
+    if pair[0] == triangle { pair[1] } else { pair[0] }
+}
+
+/// Local index of a vertex or an edge among a triangle's three, of which it is one.
+#[inline]
+pub fn place_of(three: &[u32; 3], which: u32) -> u8 {
+    u8::from(three[1] == which) + 2 * u8::from(three[2] == which)
 }
 
 /// The one or two triangles of each edge, in triangle order.
